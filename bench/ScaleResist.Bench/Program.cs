@@ -1,0 +1,2 @@
+// Placeholder entry point, replaced as the room is built.
+Console.WriteLine();

@@ -1,0 +1,104 @@
+// Collects rows into an EdgeList: gives every label a dense index in order of first appearance.
+// Invariant: labels are integers until the first label that is not one; from then on all of them are strings.
+
+using System.Globalization;
+using System.Runtime.InteropServices;
+
+namespace ScaleResist.Graphs;
+
+/// <summary>Builds an <see cref="EdgeList"/> row by row. Not safe for several threads.</summary>
+public sealed class EdgeListBuilder
+{
+    private readonly AppendBuffer<EndNodes> links = new();
+    private readonly AppendBuffer<double>? conductances;
+    private Dictionary<long, int>? byInteger = [];
+    private Dictionary<string, int>.AlternateLookup<ReadOnlySpan<char>> byText;
+    private int nodes;
+
+    /// <summary>Creates a builder.</summary>
+    /// <param name="weighted">Whether rows carry a conductance.</param>
+    public EdgeListBuilder(bool weighted) => conductances = weighted ? new AppendBuffer<double>() : null;
+
+    /// <summary>Rows added so far.</summary>
+    public long Count => links.Count;
+
+    /// <summary>Adds a link between integer labels. <paramref name="conductance"/> must be finite and positive; it is ignored without weights.</summary>
+    public void Add(long source, long target, double conductance = 1)
+    {
+        if (byInteger is not null)
+            Append(Index(source), Index(target), conductance);
+        else
+            Append(Index(source.ToString(CultureInfo.InvariantCulture)), Index(target.ToString(CultureInfo.InvariantCulture)), conductance);
+    }
+
+    /// <summary>Adds a link between labels as they stand in the file.</summary>
+    public void Add(ReadOnlySpan<char> source, ReadOnlySpan<char> target, double conductance = 1)
+    {
+        if (byInteger is not null)
+        {
+            if (NodeLabels.TryCanonicalInteger(source, out long u) && NodeLabels.TryCanonicalInteger(target, out long v))
+            {
+                Append(Index(u), Index(v), conductance);
+                return;
+            }
+            TurnIntoTexts();
+        }
+        Append(Index(source), Index(target), conductance);
+    }
+
+    /// <summary>Ends the list. The builder is spent.</summary>
+    public EdgeList Finish(InputFacts facts)
+    {
+        NodeLabels labels;
+        if (byInteger is not null)
+        {
+            long[] values = new long[nodes];
+            foreach ((long value, int node) in byInteger)
+                values[node] = value;
+            labels = new NodeLabels(values);
+        }
+        else
+        {
+            string[] values = new string[nodes];
+            foreach ((string value, int node) in byText.Dictionary)
+                values[node] = value;
+            labels = new NodeLabels(values);
+        }
+        return new EdgeList(labels, links, conductances, facts);
+    }
+
+    private void Append(int source, int target, double conductance)
+    {
+        links.Add(new EndNodes(source, target));
+        conductances?.Add(conductance);
+    }
+
+    private int Index(long label)
+    {
+        ref int slot = ref CollectionsMarshal.GetValueRefOrAddDefault(byInteger!, label, out bool known);
+        if (!known)
+            slot = NextNode();
+        return slot;
+    }
+
+    private int Index(ReadOnlySpan<char> label)
+    {
+        ref int slot = ref CollectionsMarshal.GetValueRefOrAddDefault(byText, label, out bool known);
+        if (!known)
+            slot = NextNode();
+        return slot;
+    }
+
+    private int NextNode() => nodes < int.MaxValue
+        ? nodes++
+        : throw new InvalidOperationException("More than 2^31 - 1 nodes.");
+
+    private void TurnIntoTexts()
+    {
+        Dictionary<string, int> texts = new(byInteger!.Count);
+        foreach ((long value, int node) in byInteger)
+            texts.Add(value.ToString(CultureInfo.InvariantCulture), node);
+        byText = texts.GetAlternateLookup<ReadOnlySpan<char>>();
+        byInteger = null;
+    }
+}

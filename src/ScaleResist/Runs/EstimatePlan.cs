@@ -1,0 +1,54 @@
+// A validated plan of an estimate run: what is wanted and how. Raw options are the command line's affair.
+
+namespace ScaleResist.Runs;
+
+/// <summary>The tables an estimate can write.</summary>
+[Flags]
+public enum Want
+{
+    /// <summary>Nothing.</summary>
+    None = 0,
+
+    /// <summary>One row a component: the Kirchhoff index and its kin.</summary>
+    Index = 1,
+
+    /// <summary>One row a node: its component.</summary>
+    Components = 2,
+
+    /// <summary>One row a node: its diagonal entry of L+, closeness and rank.</summary>
+    Nodes = 4,
+
+    /// <summary>One row a link: resistance, spanning probability, bridges.</summary>
+    Links = 8,
+
+    /// <summary>One row a requested pair.</summary>
+    Pairs = 16,
+
+    /// <summary>One row a node: coordinates from which any pair's resistance follows.</summary>
+    Coordinates = 32,
+}
+
+/// <summary>What an estimate run computes.</summary>
+public sealed record EstimatePlan
+{
+    /// <summary>The probes used where the user names no number.</summary>
+    public const int DefaultProbes = 64;
+
+    /// <summary>The tables wanted.</summary>
+    public Want Want { get; init; } = Want.Index | Want.Components | Want.Nodes | Want.Links;
+
+    /// <summary>The number of probes K, at least 4.</summary>
+    public int Probes { get; init; } = DefaultProbes;
+
+    /// <summary>The confidence of the intervals, in (0, 1).</summary>
+    public double Confidence { get; init; } = 0.95;
+
+    /// <summary>The seed of all random signs.</summary>
+    public ulong Seed { get; init; } = 1;
+
+    /// <summary>Threads to use; results do not depend on it.</summary>
+    public int Threads { get; init; } = Environment.ProcessorCount;
+
+    /// <summary>The relative residual |b - Lz| / |b| at which a solve stops.</summary>
+    public double Tolerance { get; init; } = 1e-4;
+}

@@ -1,0 +1,95 @@
+// The tables of an estimate as readers of the lake know them. Names and kinds are a contract: users' queries stand on them.
+
+namespace ScaleResist.Runs;
+
+/// <summary>Definitions of the tables an estimate writes; node labels are int64 or text.</summary>
+public static class Tables
+{
+    /// <summary>Version of the layout below; it rises when a column changes.</summary>
+    public const int SchemaVersion = 1;
+
+    /// <summary>One row a component.</summary>
+    public static TableDefinition Index { get; } = new("index",
+    [
+        new("component_id", ColumnKind.Int64),
+        new("nodes", ColumnKind.Int64),
+        new("links", ColumnKind.Int64),
+        new("total_conductance", ColumnKind.Double),
+        new("kirchhoff_index", ColumnKind.Double),
+        new("kirchhoff_index_se", ColumnKind.Double),
+        new("kirchhoff_index_lower", ColumnKind.Double),
+        new("kirchhoff_index_upper", ColumnKind.Double),
+        new("mean_resistance", ColumnKind.Double),
+        new("degree_kirchhoff_index", ColumnKind.Double),
+        new("kemeny_constant", ColumnKind.Double),
+        new("node_weighted_kirchhoff_index", ColumnKind.Double, Nullable: true),
+        new("foster_sum", ColumnKind.Double),
+        new("log_spanning_trees", ColumnKind.Double, Nullable: true),
+        new("algebraic_connectivity", ColumnKind.Double, Nullable: true),
+        new("method", ColumnKind.Text),
+        new("probes", ColumnKind.Int64),
+    ]);
+
+    /// <summary>One row a node: its component.</summary>
+    public static TableDefinition Components(ColumnKind label) => new("components",
+    [
+        new("node", label),
+        new("component_id", ColumnKind.Int64),
+    ]);
+
+    /// <summary>One row a node.</summary>
+    public static TableDefinition Nodes(ColumnKind label) => new("nodes",
+    [
+        new("node", label),
+        new("component_id", ColumnKind.Int64),
+        new("degree", ColumnKind.Int64),
+        new("strength", ColumnKind.Double),
+        new("resistance_diagonal", ColumnKind.Double),
+        new("resistance_diagonal_se", ColumnKind.Double),
+        new("total_resistance", ColumnKind.Double),
+        new("closeness", ColumnKind.Double),
+        new("closeness_rank", ColumnKind.Int64),
+        new("rank_lower", ColumnKind.Int64),
+        new("rank_upper", ColumnKind.Int64),
+        new("method", ColumnKind.Text),
+    ]);
+
+    /// <summary>One row a link.</summary>
+    public static TableDefinition Links(ColumnKind label) => new("links",
+    [
+        new("source", label),
+        new("target", label),
+        new("component_id", ColumnKind.Int64),
+        new("conductance", ColumnKind.Double),
+        new("resistance", ColumnKind.Double),
+        new("resistance_se", ColumnKind.Double),
+        new("resistance_lower", ColumnKind.Double),
+        new("resistance_upper", ColumnKind.Double),
+        new("spanning_probability", ColumnKind.Double),
+        new("is_bridge", ColumnKind.Boolean),
+        new("nodes_cut_off", ColumnKind.Int64, Nullable: true),
+        new("loss_impact", ColumnKind.Double, Nullable: true),
+        new("loss_impact_se", ColumnKind.Double, Nullable: true),
+        new("method", ColumnKind.Text),
+    ]);
+
+    /// <summary>One row a requested pair.</summary>
+    public static TableDefinition Pairs(ColumnKind label) => new("pairs",
+    [
+        new("source", label),
+        new("target", label),
+        new("resistance", ColumnKind.Double),
+        new("resistance_se", ColumnKind.Double),
+        new("resistance_lower", ColumnKind.Double),
+        new("resistance_upper", ColumnKind.Double),
+        new("method", ColumnKind.Text),
+    ]);
+
+    /// <summary>One row a node: K coordinates.</summary>
+    public static TableDefinition Coordinates(ColumnKind label) => new("coordinates",
+    [
+        new("node", label),
+        new("strength", ColumnKind.Double),
+        new("r", ColumnKind.FloatList),
+    ]);
+}
