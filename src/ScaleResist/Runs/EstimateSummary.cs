@@ -1,13 +1,8 @@
 // What a finished estimate says to a person and to run.json. The tables themselves went to the sink.
 
-namespace ScaleResist.Runs;
+using ScaleResist.Estimating;
 
-/// <summary>A value with one standard error and an interval of the confidence asked for.</summary>
-/// <param name="Value">The estimate.</param>
-/// <param name="StandardError">One standard error; 0 where exact.</param>
-/// <param name="Lower">Lower end of the interval.</param>
-/// <param name="Upper">Upper end of the interval.</param>
-public readonly record struct Estimate(double Value, double StandardError, double Lower, double Upper);
+namespace ScaleResist.Runs;
 
 /// <summary>One row of the index table: the global measures of a component.</summary>
 public sealed record IndexEntry
