@@ -44,11 +44,14 @@ public sealed class ProbePanel : IDisposable
     /// <summary>Draws the right-hand sides of a panel.</summary>
     /// <param name="number">The panel's number.</param>
     /// <param name="probes">K, the probes of the whole run; the last panel may use fewer than 16 lanes.</param>
-    public void Draw(int number, int probes)
+    /// <param name="threads">Threads to share the rows among.</param>
+    public void Draw(int number, int probes, int threads)
     {
         Number = number;
         Probes = Math.Min(Width, probes - (number * Width));
-        ProbeKernels.Fill(network, seed, number, Lanes, B, 0, network.NodeCount);
+        List<(int Start, int End)> chunks = RowChunks.Of(network);
+        Parallel.For(0, chunks.Count, new ParallelOptions { MaxDegreeOfParallelism = threads }, i =>
+            ProbeKernels.Fill(network, seed, number, Lanes, B, chunks[i].Start, chunks[i].End));
     }
 
     /// <summary>The signs of the link between two nodes in this panel, as seen from the first.</summary>

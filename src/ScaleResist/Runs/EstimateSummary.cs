@@ -22,13 +22,13 @@ public sealed record IndexEntry
     /// <summary>Kf, the sum of R over unordered pairs.</summary>
     public required Estimate KirchhoffIndex { get; init; }
 
-    /// <summary>Kf / (n (n-1) / 2); NaN for a single node.</summary>
+    /// <summary>Kf / (n (n-1) / 2); 0 for a single node.</summary>
     public required double MeanResistance { get; init; }
 
     /// <summary>The sum over unordered pairs of d_u d_v R (strengths d).</summary>
     public required double DegreeKirchhoffIndex { get; init; }
 
-    /// <summary>Kemeny's constant: degree-Kirchhoff index / (2 x total conductance); NaN without links.</summary>
+    /// <summary>Kemeny's constant: degree-Kirchhoff index / (2 x total conductance); 0 for a single node.</summary>
     public required double KemenyConstant { get; init; }
 
     /// <summary>The sum over unordered pairs of w_u w_v R, or null without node weights.</summary>
