@@ -1,0 +1,189 @@
+// From typed text to a request, or to one line that says what is wrong and how to mend it. Touches no file.
+// An option this version does not serve is refused here, never accepted and ignored.
+
+using System.Globalization;
+using ScaleResist.Cli.Lake;
+using ScaleResist.Graphs;
+using ScaleResist.Runs;
+
+namespace ScaleResist.Cli.Estimate;
+
+/// <summary>Validates the options of <c>estimate</c>.</summary>
+internal static class EstimateValidation
+{
+    public const int FewestProbes = 4;
+    public const int MostProbes = 4096;
+    public const int MostThreads = 256;
+
+    private static readonly Dictionary<string, Want> Tables = new(StringComparer.Ordinal)
+    {
+        ["index"] = Want.Index,
+        ["components"] = Want.Components,
+        ["nodes"] = Want.Nodes,
+        ["links"] = Want.Links,
+        ["pairs"] = Want.Pairs,
+        ["coordinates"] = Want.Coordinates,
+    };
+
+    /// <summary>The names of the tables in a set, in the order of the contract.</summary>
+    public static IEnumerable<string> NamesOf(Want want) => Tables.Where(t => want.HasFlag(t.Value)).Select(t => t.Key);
+
+    /// <summary>Gives the request, or null and the problem.</summary>
+    public static EstimateRequest? Validate(EstimateOptions options, DateTimeOffset now, out string problem)
+    {
+        problem = Problem(options, now, out EstimateRequest? request) ?? "";
+        return problem.Length == 0 ? request : null;
+    }
+
+    private static string? Problem(EstimateOptions options, DateTimeOffset now, out EstimateRequest? request)
+    {
+        request = null;
+        if (string.IsNullOrEmpty(options.Network))
+            return "no network is named; give its file: scaleresist estimate NETWORK --lake DIR";
+        if (string.IsNullOrEmpty(options.Lake))
+            return "no lake is named; say where the tables go: --lake DIR";
+        if (NotInThisVersion(options) is string missing)
+            return missing;
+
+        string runId = options.RunId ?? RunFolder.DefaultRunId(options.Network, now);
+        if (!RunFolder.IsRunId(runId))
+        {
+            return $"--run-id '{InputException.Show(runId)}' is not a plain name; "
+                + "use up to 100 letters, digits, '.', '-' or '_', beginning with a letter or digit";
+        }
+        if (WantProblem(options, out Want want) is string wantProblem)
+            return wantProblem;
+        if (ColumnsProblem(options, out ReadOptions reading) is string columnsProblem)
+            return columnsProblem;
+        if (!TryWhole(options.Probes, EstimatePlan.DefaultProbes, FewestProbes, MostProbes, out int probes))
+            return $"--probes '{InputException.Show(options.Probes)}' is not a number from {FewestProbes} to {MostProbes}";
+        if (!TryWhole(options.Threads, Math.Min(Environment.ProcessorCount, MostThreads), 1, MostThreads, out int threads))
+            return $"--threads '{InputException.Show(options.Threads)}' is not a number from 1 to {MostThreads}";
+        if (!TryFraction(options.Confidence ?? "0.95", out double confidence))
+            return $"--confidence '{InputException.Show(options.Confidence)}' is not a number between 0 and 1, such as 0.95";
+        if (!ulong.TryParse(options.Seed ?? "1", NumberStyles.None, CultureInfo.InvariantCulture, out ulong seed))
+            return $"--seed '{InputException.Show(options.Seed)}' is not a whole number from 0 to {ulong.MaxValue}";
+
+        request = new EstimateRequest
+        {
+            Network = options.Network,
+            Reading = reading,
+            Lake = options.Lake,
+            RunId = runId,
+            Plan = new EstimatePlan { Want = want, Probes = probes, Confidence = confidence, Seed = seed, Threads = threads },
+            Pairs = options.Pairs,
+            NodeWeights = options.NodeWeights,
+            Restart = options.Restart,
+        };
+        return null;
+    }
+
+    private static string? NotInThisVersion(EstimateOptions options)
+    {
+        switch (options.Route)
+        {
+            case null or "auto" or "probe":
+                break;
+            case "exact":
+                return "--route exact is not in this version; use --route probe, with more --probes for smaller errors";
+            default:
+                return $"--route '{InputException.Show(options.Route)}' is unknown; choose auto, exact or probe";
+        }
+        if (options.TargetError is string error)
+        {
+            return TryFraction(error, out _)
+                ? "--target-error is not in this version; choose --probes (four times the probes halve the error)"
+                : $"--target-error '{InputException.Show(error)}' is not a number between 0 and 1, such as 0.01; "
+                    + "and it is not in this version: choose --probes";
+        }
+        if (options.TimeBudget is string time)
+        {
+            return Units.TryDuration(time, out _)
+                ? "--time-budget is not in this version; choose --probes (the time grows in proportion)"
+                : $"--time-budget '{InputException.Show(time)}' is not a duration such as 4h, 90m or 30s; "
+                    + "and it is not in this version: choose --probes";
+        }
+        if (options.MemoryBudget is string memory)
+        {
+            return Units.TrySize(memory, out _)
+                ? "--memory-budget is not in this version; leave it out (fewer --threads and tables in --want need less memory)"
+                : $"--memory-budget '{InputException.Show(memory)}' is not a size such as 16GiB or 500MB; "
+                    + "and it is not in this version: leave it out";
+        }
+        if (options.Shard is not null)
+            return "--shard is not in this version; run the whole estimate on one machine";
+        if (options.Terminals is not null)
+            return "--terminals is not in this version; leave it out";
+        return null;
+    }
+
+    private static string? WantProblem(EstimateOptions options, out Want want)
+    {
+        want = options.Want is null ? new EstimatePlan().Want : Want.None;
+        foreach (string name in options.Want?.Split(',', StringSplitOptions.TrimEntries) ?? [])
+        {
+            if (!Tables.TryGetValue(name, out Want table))
+            {
+                string hint = Suggestion.For(name, Tables.Keys) is string near
+                    ? $"did you mean {near}?"
+                    : $"choose from {string.Join(',', Tables.Keys)}";
+                return $"--want '{InputException.Show(name)}' is not a table; {hint}";
+            }
+            want |= table;
+        }
+        if (want.HasFlag(Want.Pairs) && options.Pairs is null)
+            return "--want pairs needs the pairs; name their file with --pairs FILE";
+        if (options.Pairs is not null)
+            want |= Want.Pairs;
+        return null;
+    }
+
+    private static string? ColumnsProblem(EstimateOptions options, out ReadOptions reading)
+    {
+        reading = new ReadOptions();
+        WeightMeaning weights;
+        switch (options.Weights)
+        {
+            case null:
+                weights = WeightMeaning.Unsaid;
+                break;
+            case "none":
+                weights = WeightMeaning.None;
+                break;
+            case "conductance":
+                weights = WeightMeaning.Conductance;
+                break;
+            case "resistance":
+                weights = WeightMeaning.Resistance;
+                break;
+            default:
+                return $"--weights '{InputException.Show(options.Weights)}' is unknown; choose none, conductance or resistance";
+        }
+        string[]? columns = options.Columns?.Split(',', StringSplitOptions.TrimEntries);
+        if (columns is not null && (columns.Length is < 2 or > 3 || columns.Any(c => c.Length == 0)))
+            return $"--columns '{InputException.Show(options.Columns)}' is not two or three columns; write SRC,DST or SRC,DST,W";
+        bool weighted = weights is WeightMeaning.Conductance or WeightMeaning.Resistance;
+        if (columns?.Length == 3 && !weighted)
+        {
+            return $"--columns names the weight column '{InputException.Show(columns[2])}'; "
+                + "say what it means: --weights conductance or --weights resistance";
+        }
+        if (columns?.Length == 2 && weighted)
+        {
+            return $"--weights {options.Weights} needs the weight's column too; "
+                + $"write --columns {InputException.Show(columns[0])},{InputException.Show(columns[1])},W";
+        }
+        reading = new ReadOptions { Weights = weights, Columns = columns };
+        return null;
+    }
+
+    private static bool TryWhole(string? text, int otherwise, int least, int most, out int value)
+    {
+        value = otherwise;
+        return text is null
+            || (int.TryParse(text, NumberStyles.None, CultureInfo.InvariantCulture, out value) && value >= least && value <= most);
+    }
+
+    private static bool TryFraction(string text, out double value) =>
+        double.TryParse(text, NumberStyles.Float, CultureInfo.InvariantCulture, out value) && value > 0 && value < 1;
+}

@@ -1,0 +1,26 @@
+// The one thing the command needs of the library: read a network, estimate, push rows.
+
+using ScaleResist.Graphs;
+using ScaleResist.Runs;
+
+namespace ScaleResist.Cli.Estimate;
+
+/// <summary>Rows that cleaning changed.</summary>
+/// <param name="SelfLoops">Links from a node to itself that dropped out.</param>
+/// <param name="ParallelLinks">Rows that were merged into another link.</param>
+internal sealed record CleaningFacts(long SelfLoops, long ParallelLinks);
+
+/// <summary>What a finished estimate leaves beside its tables.</summary>
+internal sealed record EstimateOutcome(InputFacts Input, CleaningFacts Cleaning, EstimateSummary Summary);
+
+/// <summary>Runs estimates.</summary>
+internal interface IEstimateEngine
+{
+    /// <summary>Reads the network and estimates what the plan wants.</summary>
+    /// <param name="request">The validated command.</param>
+    /// <param name="openSink">Gives the tables' sink once the input is known; called once, before the first row.</param>
+    /// <param name="observer">Follows the phases, reading included.</param>
+    /// <param name="interrupted">Ends the run with an <see cref="OperationCanceledException"/>.</param>
+    EstimateOutcome Run(EstimateRequest request, Func<InputFacts, ITableSink> openSink, IRunObserver observer,
+        CancellationToken interrupted);
+}
