@@ -1,0 +1,151 @@
+// Every vector kernel against its scalar twin, bit for bit, for every length up to 256 rows and beyond a chunk.
+
+using System.Numerics;
+using ScaleResist.DataGen.Networks;
+using ScaleResist.Graphs;
+using ScaleResist.Kernels;
+
+namespace ScaleResist.Tests.Kernels;
+
+public unsafe class KernelTwinTests
+{
+    public static TheoryData<double> Spreads => [0.0, 3.0];
+
+    [Theory]
+    [MemberData(nameof(Spreads))]
+    public void Float_kernels_equal_their_scalar_twins(double decades) => AllLengths<float>(decades);
+
+    [Theory]
+    [MemberData(nameof(Spreads))]
+    public void Double_kernels_equal_their_scalar_twins(double decades) => AllLengths<double>(decades);
+
+    [Theory]
+    [MemberData(nameof(Spreads))]
+    public void Probe_kernels_equal_their_scalar_twins(double decades)
+    {
+        Network network = TestNetworks.Of(Family.Preferential, 300, decades: decades);
+        using Panel<float> b = new(300), twin = new(300), z = Filled<float>(300, 9);
+        foreach (int panel in new[] { 0, 1, 7, 8, 13 })
+        {
+            uint lanes = ProbeKernels.LanesOf(panel == 13 ? 5 : 16);
+            ProbeKernels.Fill(network, 11, panel, lanes, b, 0, 300);
+            float[] vector = new float[2 * network.Neighbours.Length];
+            float[] scalar = new float[2 * network.Neighbours.Length];
+            double[] squares = new double[300], squaresTwin = new double[300];
+            Squares(vector);
+            NodeSquareSums sums = NodeKernels.Squares(z, b, 0.99, network.Strengths, network.Strengths, squares, 0, 300);
+            NodeSquareSums sumsTwin = default;
+            WithScalar(() =>
+            {
+                ProbeKernels.Fill(network, 11, panel, lanes, twin, 0, 300);
+                Squares(scalar);
+                sumsTwin = NodeKernels.Squares(z, b, 0.99, network.Strengths, network.Strengths, squaresTwin, 0, 300);
+            });
+            AssertSame(b, twin);
+            Assert.Equal(vector, scalar);
+            Assert.Equal(squares, squaresTwin);
+            for (int lane = 0; lane < 16; lane++)
+            {
+                Assert.Equal(sums.Plain[lane], sumsTwin.Plain[lane]);
+                Assert.Equal(sums.ByStrength[lane], sumsTwin.ByStrength[lane]);
+                Assert.Equal(sums.ByWeight[lane], sumsTwin.ByWeight[lane]);
+            }
+
+            void Squares(float[] into)
+            {
+                for (int u = 0; u < 300; u++)
+                {
+                    for (long k = network.RowStart[u]; k < network.RowStart[u + 1]; k++)
+                    {
+                        int v = network.Neighbours[k];
+                        uint signs = ProbeKernels.Signs(network.NodeKeys[u], network.NodeKeys[v], 11, panel);
+                        (into[2 * k], into[(2 * k) + 1]) = ProbeKernels.LinkSquares(
+                            z.Pointer + (16 * u), z.Pointer + (16 * v), b.Pointer + (16 * u), b.Pointer + (16 * v),
+                            0.3f, 0.7f, signs, 1.5f, lanes);
+                    }
+                }
+            }
+        }
+    }
+
+    private static void AllLengths<T>(double decades)
+        where T : unmanaged, INumber<T>
+    {
+        for (int n = 2; n <= 256; n += n < 40 ? 1 : 9)
+            Compare<T>(TestNetworks.Of(Family.Cycle, Math.Max(n, 3), decades: decades), 0);
+        Compare<T>(TestNetworks.Of(Family.Grid, 900, decades: decades), 0);
+        Compare<T>(TestNetworks.Of(Family.SmallWorld, 700, decades: decades), 130);
+    }
+
+    private static void Compare<T>(Network network, int start)
+        where T : unmanaged, INumber<T>
+    {
+        int n = network.NodeCount;
+        using Panel<T> x = Filled<T>(n, 1), r = Filled<T>(n, 2), p = Filled<T>(n, 3), q = Filled<T>(n, 4), s = new(n);
+        using Panel<T> x2 = Filled<T>(n, 1), r2 = Filled<T>(n, 2), p2 = Filled<T>(n, 3), q2 = Filled<T>(n, 4), s2 = new(n);
+        LaneSums factors = default;
+        for (int lane = 0; lane < 16; lane++)
+            factors[lane] = 0.1 * lane;
+        List<LaneSums> vector = Run(x, r, p, q, s);
+        List<LaneSums> scalar = [];
+        WithScalar(() => scalar = Run(x2, r2, p2, q2, s2));
+        AssertSame(x, x2);
+        AssertSame(r, r2);
+        AssertSame(p, p2);
+        AssertSame(q, q2);
+        AssertSame(s, s2);
+        for (int i = 0; i < vector.Count; i++)
+        {
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+                Assert.Equal(scalar[i][lane], vector[i][lane]);
+        }
+
+        List<LaneSums> Run(Panel<T> x, Panel<T> r, Panel<T> p, Panel<T> q, Panel<T> s)
+        {
+            List<LaneSums> sums =
+            [
+                PanelKernels.Multiply(network, p, q, start, n),
+                PanelKernels.Residual(network, r, x, start, n),
+                PanelKernels.Step(x, r, p, q, factors, start, n),
+                PanelKernels.Scale(network.Strengths, r, s, start, n),
+            ];
+            PanelKernels.Direction(p, s, factors, start, n);
+            PanelKernels.Centre(x, start, n);
+            return sums;
+        }
+    }
+
+    // The switch is shared with tests that run beside this one; both settings give the same bits, so they may run either.
+    private static void WithScalar(Action action)
+    {
+        PanelKernels.Scalar = true;
+        try
+        {
+            action();
+        }
+        finally
+        {
+            PanelKernels.Scalar = false;
+        }
+    }
+
+    private static Panel<T> Filled<T>(int rows, int seed)
+        where T : unmanaged, INumber<T>
+    {
+        Panel<T> panel = new(rows);
+        Random random = new(seed);
+        for (int u = 0; u < rows; u++)
+        {
+            foreach (ref T value in panel.Row(u))
+                value = T.CreateTruncating(random.NextDouble() - 0.5);
+        }
+        return panel;
+    }
+
+    private static void AssertSame<T>(Panel<T> one, Panel<T> other)
+        where T : unmanaged
+    {
+        for (int u = 0; u < one.Rows; u++)
+            Assert.True(one.Row(u).SequenceEqual(other.Row(u)), $"row {u}");
+    }
+}
