@@ -25,7 +25,8 @@ public sealed class CommandTests : IDisposable
         foreach (string form in forms)
         {
             string path = Path.Combine(folder, "network" + form);
-            (int code, string output, string error) = await Run(family, "--nodes", "2000", "--decades", decades, "--seed", "7", "--out", path);
+            (int code, string output, string error) = await Run(
+                family, "--nodes", "2000", "--decades", decades, "--seed", "7", "--out", path);
             Assert.Equal("", error);
             Assert.Equal(0, code);
             List<string> links = form == ".parquet" ? ReadParquet(path, decades != "0") : ReadText(path);
@@ -182,11 +183,13 @@ public sealed class CommandTests : IDisposable
         };
         bool matrix = path.Contains(".mtx");
         int header = matrix ? 3 : path.Contains(".csv") ? 1 : 0;
-        return [.. new StreamReader(stream).ReadToEnd().Split('\n', StringSplitOptions.RemoveEmptyEntries).Skip(header).Select(line =>
+        int first = matrix ? 1 : 0;
+        string[] lines = new StreamReader(stream).ReadToEnd().Split('\n', StringSplitOptions.RemoveEmptyEntries);
+        return [.. lines.Skip(header).Select(line =>
         {
             string[] fields = line.Split(',', '\t', ' ');
-            long shift = matrix ? 1 : 0;
-            return Show(long.Parse(fields[0]) - shift, long.Parse(fields[1]) - shift, fields.Length > 2 ? double.Parse(fields[2]) : 1);
+            double conductance = fields.Length > 2 ? double.Parse(fields[2]) : 1;
+            return Show(long.Parse(fields[0]) - first, long.Parse(fields[1]) - first, conductance);
         })];
     }
 

@@ -77,7 +77,10 @@ public class DrawTests
         CollectedNetwork network = CollectedNetwork.Of(family, 2_000, seed: 11, decades: 4);
         StringBuilder text = new();
         for (int i = 0; i < network.Links.Count; i++)
-            text.Append(CultureInfo.InvariantCulture, $"{network.Links[i].Source} {network.Links[i].Target} {network.Conductances[i]:R}\n");
+        {
+            (long source, long target) = network.Links[i];
+            text.Append(CultureInfo.InvariantCulture, $"{source} {target} {network.Conductances[i]:R}\n");
+        }
         Assert.Equal(digest, Convert.ToHexStringLower(SHA256.HashData(Encoding.UTF8.GetBytes(text.ToString())))[..16]);
     }
 
