@@ -33,7 +33,7 @@ internal static class DataGenCommand
         }
         catch (OperationCanceledException)
         {
-            return Fail(error, ExitCodes.Interrupted, "interrupted, and nothing was written; give the same command to start again");
+            return Fail(error, ExitCodes.Interrupted, "interrupted, and nothing was written; the same command starts again");
         }
         catch (Exception fault) when (fault is IOException or UnauthorizedAccessException)
         {
@@ -49,33 +49,43 @@ internal static class DataGenCommand
             Arity = ArgumentArity.ZeroOrOne,
         };
         Option<long?> nodes = Count("--nodes", "Nodes, such as 5000, 1_000_000 or 1e6; rounded to what the family allows.");
-        Option<long?> links = Count("--links", $"Links; only for {string.Join(", ", FamilyPlan.WithLinks.Select(FamilyPlan.NameOf))}.");
+        string withLinks = string.Join(", ", FamilyPlan.WithLinks.Select(FamilyPlan.NameOf));
+        Option<long?> links = Count("--links", $"Links; only for {withLinks}.");
         Option<double> decades = new("--decades")
         {
             Description = "Spread of the conductances, log-uniform around 1; 0 makes all of them 1 and leaves the column out.",
             HelpName = "D",
         };
-        Option<ulong> seed = new("--seed") { Description = "The same seed gives the same file.", HelpName = "S", DefaultValueFactory = _ => 1 };
+        Option<ulong> seed = new("--seed")
+        {
+            Description = "The same seed gives the same links.",
+            HelpName = "S",
+            DefaultValueFactory = _ => 1,
+        };
         Option<string?> file = new("--out") { Description = $"The file to write: {LinkForm.Endings}.", HelpName = "FILE" };
-        RootCommand root = new("Writes a seeded network as a file of links.") { family, nodes, links, decades, seed, file, SampleCommand(output, error) };
+        RootCommand root = new("Writes a seeded network as a file of links.")
+        {
+            family, nodes, links, decades, seed, file, SampleCommand(output, error),
+        };
         root.SetAction((parse, cancel) =>
         {
+            Task<int> Refuse(string mistake) => Task.FromResult(Fail(error, ExitCodes.Usage, mistake));
             string? name = parse.GetValue(family);
             int index = Array.IndexOf(FamilyNames, name?.ToLowerInvariant());
             if (index < 0)
             {
                 string problem = name is null ? "no family is given" : $"there is no family '{name}'";
-                return Task.FromResult(Fail(error, ExitCodes.Usage, $"{problem}; choose one of {string.Join(", ", FamilyNames)}"));
+                return Refuse($"{problem}; choose one of {string.Join(", ", FamilyNames)}");
             }
             if (parse.GetValue(nodes) is not long count)
-                return Task.FromResult(Fail(error, ExitCodes.Usage, "--nodes is missing; say how many, as in --nodes 1e6"));
+                return Refuse("--nodes is missing; say how many, as in --nodes 1e6");
             if (parse.GetValue(file) is not string path)
-                return Task.FromResult(Fail(error, ExitCodes.Usage, "--out is missing; name a file, as in --out network.tsv"));
+                return Refuse("--out is missing; name a file, as in --out network.tsv");
             if (!LinkForm.TryOf(path, out LinkForm form))
-                return Task.FromResult(Fail(error, ExitCodes.Usage, $"'{path}' tells no form; let --out end in {LinkForm.Endings}"));
+                return Refuse($"'{path}' tells no form; let --out end in {LinkForm.Endings}");
             FamilyPlan plan = new((Family)index, count, parse.GetValue(links), parse.GetValue(seed), parse.GetValue(decades));
             if (!plan.TrySize(out _, out string? mistake))
-                return Task.FromResult(Fail(error, ExitCodes.Usage, mistake!));
+                return Refuse(mistake!);
             return Task.Run(() => Generate(plan, form, path, output, cancel), CancellationToken.None);
         });
         return root;
@@ -88,7 +98,10 @@ internal static class DataGenCommand
         sample.SetAction((parse, cancel) =>
         {
             if (parse.GetValue(folder) is not string path)
-                return Task.FromResult(Fail(error, ExitCodes.Usage, "--out is missing; name a folder, as in --out data-gen/samples"));
+            {
+                const string missing = "--out is missing; name a folder, as in --out data-gen/samples";
+                return Task.FromResult(Fail(error, ExitCodes.Usage, missing));
+            }
             return Task.Run(() => WriteSample(path, output, cancel), CancellationToken.None);
         });
         return sample;
@@ -98,10 +111,10 @@ internal static class DataGenCommand
     {
         Stopwatch watch = Stopwatch.StartNew();
         WrittenFile written = LinkFile.Write(plan, form, path, cancel);
-        string nodes = written.Nodes == written.IdRange ? $"{written.Nodes} nodes" : $"{written.Nodes} nodes with a link, ids below {written.IdRange}";
-        output.WriteLine(string.Create(
-            CultureInfo.InvariantCulture,
-            $"{FamilyPlan.NameOf(plan.Family)}: {nodes}; {written.Links} links; {watch.Elapsed.TotalSeconds:F1} s; {written.Bytes} bytes in {path}"));
+        string range = written.Nodes == written.IdRange ? "" : $" with a link, ids below {written.IdRange}";
+        string seconds = watch.Elapsed.TotalSeconds.ToString("F1", CultureInfo.InvariantCulture);
+        output.WriteLine($"{FamilyPlan.NameOf(plan.Family)}: {written.Nodes} nodes{range}; {written.Links} links; {seconds} s; "
+            + $"{written.Bytes} bytes in {path}");
         return ExitCodes.Done;
     }
 
@@ -127,7 +140,8 @@ internal static class DataGenCommand
         CustomParser = result =>
         {
             string text = result.Tokens[0].Value;
-            if (decimal.TryParse(text.Replace("_", ""), NumberStyles.AllowExponent | NumberStyles.AllowDecimalPoint, CultureInfo.InvariantCulture, out decimal value)
+            const NumberStyles style = NumberStyles.AllowExponent | NumberStyles.AllowDecimalPoint;
+            if (decimal.TryParse(text.Replace("_", ""), style, CultureInfo.InvariantCulture, out decimal value)
                 && value == decimal.Truncate(value) && value <= long.MaxValue)
                 return (long)value;
             result.AddError($"{name} '{text}' is not a whole number; write it like 5000, 1_000_000 or 1e6.");

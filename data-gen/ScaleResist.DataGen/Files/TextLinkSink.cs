@@ -7,8 +7,8 @@ using ScaleResist.DataGen.Networks;
 namespace ScaleResist.DataGen.Files;
 
 /// <summary>
-/// csv: a header, then <c>source,target[,conductance]</c>; tsv: the same without header; mtx: coordinate, symmetric (lower triangle,
-/// 1-based), <c>pattern</c> or <c>real</c>. Conductances are printed in full (shortest text that reads back the same).
+/// csv: a header, then <c>source,target[,conductance]</c>; tsv: the same without header; mtx: coordinate, symmetric (lower
+/// triangle, 1-based), <c>pattern</c> or <c>real</c>. Conductances are printed in full (shortest text that reads back the same).
 /// </summary>
 internal sealed class TextLinkSink(Stream stream, LinkLayout layout, bool weighted) : ILinkSink
 {

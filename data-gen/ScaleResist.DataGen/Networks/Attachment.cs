@@ -8,9 +8,9 @@ internal static class Attachment
     private const ulong TreeStream = 2;
 
     /// <summary>
-    /// Preferential attachment (Barabasi and Albert, Science 286:509, 1999): node v joins distinct earlier nodes in proportion to their
-    /// degree. By the time node v is in, floor(links (v + 1) / nodes) links are there, or as many as v + 1 nodes can hold: about the
-    /// first 2 links / nodes nodes are a complete graph, and the total is met exactly.
+    /// Preferential attachment (Barabasi and Albert, Science 286:509, 1999): node v joins distinct earlier nodes in proportion
+    /// to their degree. By the time node v is in, floor(links (v + 1) / nodes) links are there, or as many as v + 1 nodes can
+    /// hold: about the first 2 links / nodes nodes are a complete graph, and the total is met exactly.
     /// </summary>
     public static void Preferential(NetworkSize size, ulong seed, Emitter emitter)
     {
@@ -49,8 +49,8 @@ internal static class Attachment
     }
 
     /// <summary>
-    /// A preferential attachment core; every further node hangs on one earlier node: on its predecessor (one time in two, once there is
-    /// a pendant one, which makes chains) or on any earlier node alike (which branches and starts new trees).
+    /// A preferential attachment core; every further node hangs on one earlier node: on its predecessor (one time in two, once
+    /// there is a pendant one, which makes chains) or on any earlier node alike (which branches and starts new trees).
     /// </summary>
     public static void Fringe(NetworkSize core, long nodes, ulong seed, Emitter emitter)
     {

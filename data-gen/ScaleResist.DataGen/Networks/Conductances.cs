@@ -26,7 +26,7 @@ public static class Conductances
         return PowerOfTen(decades * (h - 0.5));
     }
 
-    /// <summary>10^x to six significant digits, for |x| at most 6.5; plain IEEE arithmetic, hence the same on every platform.</summary>
+    /// <summary>10^x to six significant digits, |x| at most 6.5; plain IEEE arithmetic, hence the same everywhere.</summary>
     public static double PowerOfTen(double x)
     {
         double whole = Math.Floor(x);

@@ -49,7 +49,9 @@ public enum Family
     Fringe,
 }
 
-/// <summary>Nodes and links of a network. For <see cref="Family.PowerLaw"/>, nodes is the range of ids, and parallel links count.</summary>
+/// <summary>
+/// Nodes and links of a network. For <see cref="Family.PowerLaw"/>, nodes is the range of ids, and parallel links count.
+/// </summary>
 public readonly record struct NetworkSize(long Nodes, long Links);
 
 /// <summary>What to generate.</summary>

@@ -14,9 +14,9 @@ internal static class RandomNetworks
     private const int Attempts = 64;
 
     /// <summary>
-    /// Watts and Strogatz, Nature 393:440, 1998: a ring in which each node is joined to <paramref name="reach"/> nodes on each side; each
-    /// link is rewired with probability 0.05 to a node beyond the ring neighbourhood to which it was not rewired before. Should 64
-    /// draws find none (only in tiny dense rings), the link stays. Memory: the rewired links.
+    /// Watts and Strogatz, Nature 393:440, 1998: a ring in which each node is joined to <paramref name="reach"/> nodes on each
+    /// side; each link is rewired with probability 0.05 to a node beyond the ring neighbourhood that no rewired link joins to it
+    /// yet. Should 64 draws find none (only in tiny dense rings), the link stays. Memory: the rewired links.
     /// </summary>
     public static void SmallWorld(long nodes, long reach, ulong seed, Emitter emitter)
     {
@@ -47,8 +47,9 @@ internal static class RandomNetworks
     }
 
     /// <summary>
-    /// Recursive matrix (Chakrabarti, Zhan and Faloutsos, SIAM Data Mining 2004): each bit of (source, target) falls into a quadrant with
-    /// probabilities 0.57, 0.19, 0.19, 0.05 (to 2^-16). A self-loop is drawn again. Low numbers are the hubs; many numbers stay without a link.
+    /// Recursive matrix (Chakrabarti, Zhan and Faloutsos, SIAM Data Mining 2004): each bit of (source, target) falls into a
+    /// quadrant with probabilities 0.57, 0.19, 0.19, 0.05 (to 2^-16). A self-loop is drawn again. Low numbers are the hubs; many
+    /// numbers stay without a link.
     /// </summary>
     public static void PowerLaw(NetworkSize size, ulong seed, Emitter emitter)
     {

@@ -21,8 +21,8 @@ internal static class RoadNetwork
     private const ulong TileStream = 8;
 
     /// <summary>
-    /// Four nodes in ten are crossings. Streets are as many as give a mean degree of 2.6; below about 160 nodes the rectangle has fewer,
-    /// and all of them are taken.
+    /// Four nodes in ten are crossings. Streets are as many as give a mean degree of 2.6; below about 160 nodes the rectangle has
+    /// fewer, and all of them are taken.
     /// </summary>
     public static RoadLayout Layout(long nodes)
     {
@@ -40,7 +40,8 @@ internal static class RoadNetwork
     public static void Draw(long nodes, ulong seed, Emitter emitter)
     {
         RoadLayout layout = Layout(nodes);
-        // Slot 2i is the street from crossing i to the next column, slot 2i + 1 to the next row: 0 where there is none, else 1 + chain nodes.
+        // Slot 2i is the street from crossing i to the next column, slot 2i + 1 to the next row: 0 where there is none,
+        // else 1 + chain nodes.
         ushort[] streets = new ushort[2 * layout.Crossings];
         ChooseStreets(layout, streets, seed, emitter);
         ChooseLengths(layout, streets, seed);
@@ -76,7 +77,7 @@ internal static class RoadNetwork
         return first + length;
     }
 
-    /// <summary>Kruskal over the streets in random order: the tree, and the first of the others up to the number wanted.</summary>
+    /// <summary>Kruskal over the streets in random order: the tree, then the first of the others up to the number.</summary>
     private static void ChooseStreets(RoadLayout layout, ushort[] streets, ulong seed, Emitter emitter)
     {
         int possible = (2 * layout.Crossings) - layout.Columns - layout.Rows;
@@ -116,7 +117,9 @@ internal static class RoadNetwork
         return node;
     }
 
-    /// <summary>Three streets in four are short and one is long: geometric with a quarter, or 3.25 times, of the mean; then evened out to the sum.</summary>
+    /// <summary>
+    /// Three streets in four are short and one is long: geometric with 0.25 or 3.25 times the mean; then evened out to the sum.
+    /// </summary>
     private static void ChooseLengths(RoadLayout layout, ushort[] streets, ulong seed)
     {
         SeededRandom random = new(seed, LengthStream);
@@ -146,7 +149,9 @@ internal static class RoadNetwork
         }
     }
 
-    /// <summary>Numbers run tile by tile, the tiles in random order: neighbours are mostly near, as in real exports, but not always.</summary>
+    /// <summary>
+    /// Numbers run tile by tile, the tiles in random order: neighbours are mostly near, as in real exports, but not always.
+    /// </summary>
     private static int[] TileOrder(RoadLayout layout, ulong seed)
     {
         int across = (layout.Columns + Tile - 1) / Tile;

@@ -4,8 +4,8 @@
 namespace ScaleResist.DataGen.Networks;
 
 /// <summary>
-/// SplitMix64 (Steele, Lea and Flood, OOPSLA 2014): draw i of a stream is <c>Mix(key + i * gamma)</c>, so that it serves in sequence
-/// as well as by counter. Good enough for making networks; no cryptographic claim.
+/// SplitMix64 (Steele, Lea and Flood, OOPSLA 2014): draw i of a stream is <c>Mix(key + i * gamma)</c>, so that it serves in
+/// sequence as well as by counter. Good enough for making networks; no cryptographic claim.
 /// </summary>
 public sealed class SeededRandom
 {
@@ -24,7 +24,7 @@ public sealed class SeededRandom
     /// <summary>A number in [0, 1), a multiple of 2^-53.</summary>
     public double Unit() => ToUnit(Next());
 
-    /// <summary>Geometric on 0, 1, 2, ... with this mean; by repeated trial, since a logarithm may differ between platforms.</summary>
+    /// <summary>Geometric on 0, 1, 2, ... with this mean; by trial, since a logarithm may differ between platforms.</summary>
     public int Geometric(double mean)
     {
         double again = mean / (1 + mean);

@@ -83,14 +83,16 @@ internal static class Archipelago
         string[,] nethercandle = net.Town("Nethercandle", 3, 2, "outpost");
         net.Coast(nethercandle[1, 2], 3, "Wick Rock");
 
-        // What the records of a real utility hold too: mains listed twice (once in the other direction) and one that ends where it starts.
+        // What the records of a real utility hold too: mains listed twice (one of them in the other direction) and one that
+        // ends where it starts.
         lum.Join(lumpenglow[0, 14], lumpenglow[0, 15], 12.5m);
         gri.Join(griWest, lumEast, 18m);
         ott.Join(ottlewhim[3, 3], ottlewhim[3, 3], 2.2m);
 
         scenario.Pairs.AddRange(
         [
-            (lumWorks, lumpenglow[25, 0]), (lumWorks, lumpenglow[25, 29]), (lumWorks, yawnhaven[10, 13]), (lumWorks, hiccup[3, 4]),
+            (lumWorks, lumpenglow[25, 0]), (lumWorks, lumpenglow[25, 29]), (lumWorks, yawnhaven[10, 13]),
+            (lumWorks, hiccup[3, 4]),
             (lumWorks, sockdrift[3, 3]), (lumWorks2, mumble[4, 5]), (lumWorks2, yawnhaven[10, 0]), (lumWorks, lumWorks2),
             (griWorks, gribblefen[20, 0]), (griWorks, gribblefen[20, 22]), (griWorks, wobble[4, 4]), (griWorks, buttonhush[3, 5]),
             (griWorks, creaksby[2, 3]), (griWorks, teacosy[8, 9]), (lumWorks, griWorks), (lumWorks2, griWorks),
@@ -99,7 +101,8 @@ internal static class Archipelago
             (ottWorks, drizzle[2, 2]), (ottWorks, flump[3, 4]), (lumWorks2, tattersnook[0, 0]), (lumWorks2, doze[4, 6]),
             (lumWorks2, murkle[3, 4]), (lumWorks2, nettle[2, 4]), (lumEast, griWest), (lumSouth, tatNorth),
             (griSouth, ottWest), (tatEast, pimNorth), (ottSouth, snoWest), (lumpenglow[0, 0], lumpenglow[0, 1]),
-            (gribblefen[10, 10], gribblefen[11, 10]), (hiccup[0, 0], drizzle[0, 0]), (lumWorks, farspoon[0, 0]), (farspoon[0, 0], nethercandle[0, 0]),
+            (gribblefen[10, 10], gribblefen[11, 10]), (hiccup[0, 0], drizzle[0, 0]), (lumWorks, farspoon[0, 0]),
+            (farspoon[0, 0], nethercandle[0, 0]),
         ]);
 
         scenario.Works.AddRange(

@@ -18,7 +18,8 @@ internal sealed class Island(Scenario scenario, SeededRandom random, string code
             for (int column = 0; column < columns; column++)
             {
                 town[row, column] = Site(kind == "town" ? Between(20, 180) : Between(5, 40), kind, place);
-                // Every column is whole and so is the first row, which keeps the town together; other cross mains are there seven times in ten.
+                // Every column is whole and so is the first row, which keeps the town together; other cross mains are there
+                // seven times in ten.
                 if (row > 0)
                     Join(town[row - 1, column], town[row, column], column == columns / 2 ? Trunk() : Street());
                 if (column > 0 && (row == 0 || random.Below(10) < 7))
@@ -58,7 +59,8 @@ internal sealed class Island(Scenario scenario, SeededRandom random, string code
         return site;
     }
 
-    public void Join(string source, string target, decimal conductance) => scenario.Links.Add(new Main(source, target, conductance));
+    public void Join(string source, string target, decimal conductance) =>
+        scenario.Links.Add(new Main(source, target, conductance));
 
     public decimal Trunk() => Between(800, 6000) / 100m;
 

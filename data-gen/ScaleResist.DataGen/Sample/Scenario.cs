@@ -28,8 +28,10 @@ internal sealed class Scenario
     /// <summary>Name and content of each file.</summary>
     public IEnumerable<(string Name, string Content)> Files()
     {
-        yield return ("links.csv", Table("source,target,conductance", Links, x => $"{x.Source},{x.Target},{Number(x.Conductance)}"));
-        yield return ("sites.csv", Table("site,people_served,kind,place", Sites, x => $"{x.Id},{x.PeopleServed},{x.Kind},{x.Place}"));
+        yield return ("links.csv", Table(
+            "source,target,conductance", Links, x => $"{x.Source},{x.Target},{Number(x.Conductance)}"));
+        yield return ("sites.csv", Table(
+            "site,people_served,kind,place", Sites, x => $"{x.Id},{x.PeopleServed},{x.Kind},{x.Place}"));
         yield return ("pairs.csv", Table("source,target", Pairs, x => $"{x.Source},{x.Target}"));
         yield return ("planned-works.csv", Table(
             "case,action,source,target,conductance",

@@ -59,7 +59,7 @@ internal sealed class CollectedNetwork : ILinkSink
     public long SelfLoops() => Links.Count(link => link.Source == link.Target);
 
     public long ParallelLinks() =>
-        Links.Count - Links.Select(link => (Math.Min(link.Source, link.Target), Math.Max(link.Source, link.Target))).ToHashSet().Count;
+        Links.Count - Links.Select(x => (Math.Min(x.Source, x.Target), Math.Max(x.Source, x.Target))).Distinct().Count();
 
     private static int Root(int[] parents, int node)
     {

@@ -1,5 +1,8 @@
 // The random numbers and conductances under the generators.
 
+using System.Globalization;
+using System.Security.Cryptography;
+using System.Text;
 using ScaleResist.DataGen.Networks;
 
 namespace ScaleResist.Tests.DataGen;
@@ -60,6 +63,25 @@ public class DrawTests
         Assert.Equal(0xE220A8397B1DCDAFUL, SeededRandom.Mix(0x9E3779B97F4A7C15));
         SeededRandom random = new(1, 1);
         Assert.Equal([PinnedFirst, PinnedSecond], [random.Next(), random.Next()]);
+    }
+
+    [Theory]
+    [InlineData(Family.Road, "7128b88e0a1121da")]
+    [InlineData(Family.Preferential, "fbd3e94e2e9c316a")]
+    [InlineData(Family.PowerLaw, "2f5b3f7e60139759")]
+    [InlineData(Family.SmallWorld, "00fc2e65f4a214c8")]
+    [InlineData(Family.Fringe, "a056841e00faf76b")]
+    public void Networks_are_pinned_so_that_a_seed_means_the_same_in_every_version(Family family, string digest)
+    {
+        // Digests recorded from this generator: a change here changes everybody's networks.
+        CollectedNetwork network = CollectedNetwork.Of(family, 2_000, seed: 11, decades: 4);
+        StringBuilder text = new();
+        for (int i = 0; i < network.Links.Count; i++)
+        {
+            (long source, long target) = network.Links[i];
+            text.Append(CultureInfo.InvariantCulture, $"{source} {target} {network.Conductances[i]:R}\n");
+        }
+        Assert.Equal(digest, Convert.ToHexStringLower(SHA256.HashData(Encoding.UTF8.GetBytes(text.ToString())))[..16]);
     }
 
     private const ulong PinnedFirst = 16321491304643971414;
