@@ -59,7 +59,7 @@ public sealed class PairAndNodeWeightTests : IDisposable
     [InlineData("10,1\n20,1\n30,1\n10,1\n", 4, "'10' has a weight already", "one row")]
     [InlineData("10,1\n20,1\n40,1\n", 3, "no node '40'", "nodes of the network")]
     [InlineData("10,1\n20,-1\n30,1\n", 2, "the weight -1", "not negative")]
-    [InlineData("10,1\n20,inf\n30,1\n", 2, "the weight Infinity", "finite")]
+    [InlineData("10,1\n20,Infinity\n30,1\n", 2, "the weight Infinity", "finite")]
     [InlineData("10,1\n20,nan\n30,1\n", 2, "the weight NaN", "finite")]
     [InlineData("10,1\n20,x\n30,1\n", 2, "'x' is not a number", "decimal point")]
     [InlineData("10,1\n20\n30,1\n", 2, "the row is short", "node and number")]

@@ -136,20 +136,20 @@ public sealed class TextRefusalTests : IDisposable
         Check(Refusal(folder.Write("many.csv", "1,2\n" + new string(',', 1_000_000) + "\n"), WeightMeaning.None), 2, "empty", "source");
     }
 
-    // Each cut, down to the last byte of the checksum, and with data of many lengths.
+    // Each cut, down to the last byte of the checksum, in the first member or the second.
     [Theory]
     [InlineData(".gz", "gzip")]
     [InlineData(".zst", "zstd")]
     public void An_archive_cut_anywhere_is_refused(string packing, string archive)
     {
         Random random = new(2);
-        string text = string.Concat(Enumerable.Range(0, 300).Select(i => $"{i}\t{random.Next(1000)}\n"));
+        string text = string.Concat(Enumerable.Range(0, 40).Select(i => $"{i}\t{random.Next(1000)}\n"));
         byte[] whole = ScratchFolder.Pack(packing, Encoding.ASCII.GetBytes(text));
         for (int length = 1; length < whole.Length; length++)
         {
             InputException e = Refusal(folder.WriteRaw("cut.tsv" + packing, whole[..length]));
             Check(e, e.Line, $"the {archive} archive is", "again");
-            Assert.InRange(e.Line!.Value, 1, 301);
+            Assert.InRange(e.Line!.Value, 1, 41);
             e = Refusal(folder.WriteRaw("cut.tsv" + packing, [.. whole, .. whole[..length]]));
             Check(e, e.Line, $"the {archive} archive is", "again");
         }
