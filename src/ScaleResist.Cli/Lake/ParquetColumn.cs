@@ -33,7 +33,7 @@ internal sealed class ParquetColumn
     public long[] Integers { get; private set; } = [];
 
     /// <summary>String labels of the row group.</summary>
-    public string[] Texts { get; private set; } = [];
+    public ReadOnlyMemory<char>[] Texts { get; private set; } = [];
 
     /// <summary>Numbers of the row group.</summary>
     public double[] Numbers { get; private set; } = [];
@@ -51,11 +51,11 @@ internal sealed class ParquetColumn
         {
             return type == typeof(float) || type == typeof(double) || type == typeof(decimal)
                 ? null
-                : ($"the column '{name}' of type {type.Name} cannot be read as a number", "cast it to DOUBLE");
+                : ($"the column '{name}' of type {NameOf(type)} cannot be read as a number", "cast it to DOUBLE");
         }
-        return type == typeof(string)
+        return type == typeof(ReadOnlyMemory<char>)
             ? null
-            : ($"the column '{name}' of type {type.Name} cannot be read as node ids", "cast it to BIGINT or VARCHAR");
+            : ($"the column '{name}' of type {NameOf(type)} cannot be read as node ids", "cast it to BIGINT or VARCHAR");
     }
 
     /// <summary>Loads the column of a row group.</summary>
@@ -88,8 +88,9 @@ internal sealed class ParquetColumn
     private async Task Load<T>(ParquetRowGroupReader group, int rows, CancellationToken ct)
         where T : struct, INumber<T>
     {
-        T[] values = isNumber && Numbers is T[] numbers ? Sized(numbers, rows)
-            : !isNumber && Integers is T[] integers ? Sized(integers, rows) : new T[rows];
+        // By type and not by pattern: at run time an array of ulong passes for one of long.
+        T[] values = isNumber && typeof(T) == typeof(double) ? Sized((T[])(Array)Numbers, rows)
+            : !isNumber && typeof(T) == typeof(long) ? Sized((T[])(Array)Integers, rows) : new T[rows];
         if (column.IsNullable)
         {
             T?[] nullable = new T?[rows];
@@ -102,25 +103,33 @@ internal sealed class ParquetColumn
             await group.ReadAsync<T>(column, values.AsMemory(0, rows), null, ct).ConfigureAwait(false);
         }
         if (isNumber)
-            Numbers = values as double[] ?? Array.ConvertAll(values, double.CreateSaturating);
+            Numbers = typeof(T) == typeof(double) ? (double[])(Array)values : Array.ConvertAll(values, double.CreateSaturating);
         else
-            Integers = values as long[] ?? Widen(values);
+            Integers = typeof(T) == typeof(long) ? (long[])(Array)values : Widen(values);
     }
 
     private async Task LoadTexts(ParquetRowGroupReader group, int rows, CancellationToken ct)
     {
-        string?[] texts = new string?[rows];
-        await group.ReadAsync(column, texts.AsMemory(), null, ct).ConfigureAwait(false);
+        Texts = Sized(Texts, rows);
+        if (column.IsNullable)
+        {
+            ReadOnlyMemory<char>?[] nullable = new ReadOnlyMemory<char>?[rows];
+            await group.ReadAsync<ReadOnlyMemory<char>>(column, nullable.AsMemory(), null, ct).ConfigureAwait(false);
+            for (int i = 0; i < rows; i++)
+                Texts[i] = nullable[i] ?? throw Null(i);
+        }
+        else
+        {
+            await group.ReadAsync<ReadOnlyMemory<char>>(column, Texts.AsMemory(0, rows), null, ct).ConfigureAwait(false);
+        }
         for (int i = 0; i < rows; i++)
         {
-            string text = texts[i] ?? throw Null(i);
-            if (text.Length is 0 or > RowRequest.LongestLabel)
+            if (Texts[i].Length is 0 or > RowRequest.LongestLabel)
             {
-                throw fault(i, $"the node id '{InputException.Show(text)}' has {text.Length} characters",
+                throw fault(i, $"the node id '{InputException.Show(Texts[i].Span)}' has {Texts[i].Length} characters",
                     $"give node ids of 1 to {RowRequest.LongestLabel} characters");
             }
         }
-        Texts = texts!;
     }
 
     private long[] Widen<T>(T[] values)
@@ -137,6 +146,8 @@ internal sealed class ParquetColumn
     }
 
     private InputException Null(int row) => fault(row, $"the column '{InputException.Show(column.Name)}' is null", "drop the row or fill it in");
+
+    private static string NameOf(Type type) => type == typeof(ReadOnlyMemory<char>) ? "String" : type == typeof(byte[]) ? "Binary" : type.Name;
 
     private static T[] Sized<T>(T[] buffer, int rows) => buffer.Length >= rows ? buffer : new T[rows];
 

@@ -111,8 +111,8 @@ internal sealed class ParquetRows : IRowSource
         hash.Dispose();
     }
 
-    private string Text(ParquetColumn column) =>
-        column.IsInteger ? column.Integers[row].ToString(CultureInfo.InvariantCulture) : column.Texts[row];
+    private ReadOnlySpan<char> Text(ParquetColumn column) =>
+        column.IsInteger ? column.Integers[row].ToString(CultureInfo.InvariantCulture) : column.Texts[row].Span;
 
     private static string[] Parts(string folder)
     {

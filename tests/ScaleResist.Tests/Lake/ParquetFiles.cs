@@ -37,31 +37,22 @@ internal static class ParquetFiles
 
     private static Task Write(ParquetRowGroupWriter group, DataField field, Array values, int start, int rows)
     {
-        return values switch
-        {
-            long[] a => One(a),
-            long?[] a => Nullable(a),
-            ulong[] a when a.GetType() == typeof(ulong[]) => One(a),
-            int[] a when a.GetType() == typeof(int[]) => One(a),
-            uint[] a => One(a),
-            short[] a when a.GetType() == typeof(short[]) => One(a),
-            ushort[] a => One(a),
-            sbyte[] a when a.GetType() == typeof(sbyte[]) => One(a),
-            byte[] a => One(a),
-            int?[] a => Nullable(a),
-            double[] a => One(a),
-            double?[] a => Nullable(a),
-            float[] a => One(a),
-            decimal[] a => One(a),
-            bool[] a => One(a),
-            string?[] a => group.WriteAsync(field, (IReadOnlyCollection<string>)a[start..(start + rows)]!, null),
-            _ => throw new NotSupportedException(values.GetType().Name),
-        };
+        // By exact type: to a pattern, an array of ulong is an array of long too.
+        Type type = values.GetType().GetElementType()!;
+        return type == typeof(string) ? group.WriteAsync(field, (IReadOnlyCollection<string>)((string[])values)[start..(start + rows)])
+            : type == typeof(long) ? One<long>() : type == typeof(ulong) ? One<ulong>()
+            : type == typeof(int) ? One<int>() : type == typeof(uint) ? One<uint>()
+            : type == typeof(short) ? One<short>() : type == typeof(ushort) ? One<ushort>()
+            : type == typeof(sbyte) ? One<sbyte>() : type == typeof(byte) ? One<byte>()
+            : type == typeof(double) ? One<double>() : type == typeof(float) ? One<float>()
+            : type == typeof(decimal) ? One<decimal>() : type == typeof(bool) ? One<bool>()
+            : type == typeof(long?) ? Nullable<long>() : type == typeof(int?) ? Nullable<int>()
+            : type == typeof(double?) ? Nullable<double>() : throw new NotSupportedException(type.Name);
 
-        Task One<T>(T[] a)
-            where T : struct => group.WriteAsync<T>(field, a.AsMemory(start, rows));
+        Task One<T>()
+            where T : struct => group.WriteAsync<T>(field, ((T[])values).AsMemory(start, rows));
 
-        Task Nullable<T>(T?[] a)
-            where T : struct => group.WriteAsync<T>(field, a.AsMemory(start, rows));
+        Task Nullable<T>()
+            where T : struct => group.WriteAsync<T>(field, ((T?[])values).AsMemory(start, rows));
     }
 }

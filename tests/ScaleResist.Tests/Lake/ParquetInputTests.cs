@@ -1,5 +1,6 @@
 using System.Security.Cryptography;
 using CsCheck;
+using DuckDB.NET.Data;
 using ScaleResist.Cli.Lake;
 using ScaleResist.Graphs;
 using ScaleResist.Tests.Graphs;
@@ -175,6 +176,34 @@ public sealed class ParquetInputTests : IDisposable
         Assert.Equal((1L, true), (e.Line, e.Problem.Contains("'20'", StringComparison.Ordinal)));
         e = Assert.Throws<InputException>(() => NetworkInput.ReadNodeWeights(weights, new NodeLabels([10L, 20L, 30L])));
         Assert.Contains("'30'", e.Problem, StringComparison.Ordinal);
+    }
+
+    // Written by another program: nullable columns, dictionaries, Snappy and zstd, several row groups.
+    [Theory]
+    [InlineData("snappy", "i", "j")]
+    [InlineData("zstd", "printf('site %d', i)", "printf('Ω%d', j)")]
+    [InlineData("zstd", "i::UTINYINT", "printf('Ω%d', j)")]
+    [InlineData("gzip", "i::SMALLINT", "j::UBIGINT")]
+    public void Files_of_DuckDB_read_row_by_row_as_DuckDB_reads_them(string codec, string source, string target)
+    {
+        string path = folder.Path("duck.parquet");
+        using DuckDBConnection connection = new("Data Source=:memory:");
+        connection.Open();
+        using DuckDBCommand command = connection.CreateCommand();
+        command.CommandText = "CREATE TABLE t AS SELECT " + source + " AS u, " + target + " AS v, (i + 1) / 8.0 AS w FROM "
+            + "(SELECT k * 7919 % 250 AS i, k * k % 9973 AS j FROM range(12000) r(k)); COPY t TO '" + path
+            + $"' (FORMAT parquet, CODEC '{codec}', ROW_GROUP_SIZE 2048)";
+        command.ExecuteNonQuery();
+        command.CommandText = $"SELECT u::VARCHAR || '-' || v::VARCHAR || ':' || w::VARCHAR FROM '{path}'";
+        List<string> expected = [];
+        using (DuckDBDataReader reader = command.ExecuteReader())
+        {
+            while (reader.Read())
+                expected.Add(reader.GetString(0));
+        }
+        string[] read = Links.Of(NetworkInput.Read(path, Conductance));
+        Assert.Equal(12000, expected.Count);
+        Assert.Equal(expected.Select(row => row.EndsWith(".0", StringComparison.Ordinal) ? row[..^2] : row), read);
     }
 
     [Fact]
