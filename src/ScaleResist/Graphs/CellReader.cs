@@ -8,9 +8,6 @@ namespace ScaleResist.Graphs;
 /// <summary>Reads data rows as cells.</summary>
 internal sealed class CellReader : IDisposable
 {
-    /// <summary>The longest label in characters.</summary>
-    public const int LongestLabel = 1000;
-
     private readonly InputFile file;
     private readonly LineFilter filter;
     private readonly SepReader reader;

@@ -11,9 +11,8 @@ public sealed class EdgeListBuilder
 {
     private readonly AppendBuffer<EndNodes> links = new();
     private readonly AppendBuffer<double>? conductances;
-    private Dictionary<long, int>? byInteger = [];
+    private IntegerIndex? byInteger = new();
     private Dictionary<string, int>.AlternateLookup<ReadOnlySpan<char>> byText;
-    private int nodes;
 
     /// <summary>Creates a builder.</summary>
     /// <param name="weighted">Whether rows carry a conductance.</param>
@@ -26,7 +25,7 @@ public sealed class EdgeListBuilder
     public void Add(long source, long target, double conductance = 1)
     {
         if (byInteger is not null)
-            Append(Index(source), Index(target), conductance);
+            Append(byInteger.GetOrAdd(source), byInteger.GetOrAdd(target), conductance);
         else
             Append(Index(source.ToString(CultureInfo.InvariantCulture)), Index(target.ToString(CultureInfo.InvariantCulture)), conductance);
     }
@@ -38,7 +37,7 @@ public sealed class EdgeListBuilder
         {
             if (NodeLabels.TryCanonicalInteger(source, out long u) && NodeLabels.TryCanonicalInteger(target, out long v))
             {
-                Append(Index(u), Index(v), conductance);
+                Append(byInteger.GetOrAdd(u), byInteger.GetOrAdd(v), conductance);
                 return;
             }
             TurnIntoTexts();
@@ -49,7 +48,7 @@ public sealed class EdgeListBuilder
     /// <summary>Whether a node has this label so far.</summary>
     public bool Contains(ReadOnlySpan<char> label) => byInteger is null
         ? byText.ContainsKey(label)
-        : NodeLabels.TryCanonicalInteger(label, out long value) && byInteger.ContainsKey(value);
+        : NodeLabels.TryCanonicalInteger(label, out long value) && byInteger.Contains(value);
 
     /// <summary>Ends the list. The builder is spent.</summary>
     public EdgeList Finish(InputFacts facts)
@@ -57,14 +56,11 @@ public sealed class EdgeListBuilder
         NodeLabels labels;
         if (byInteger is not null)
         {
-            long[] values = new long[nodes];
-            foreach ((long value, int node) in byInteger)
-                values[node] = value;
-            labels = new NodeLabels(values);
+            labels = new NodeLabels(byInteger.ToArray());
         }
         else
         {
-            string[] values = new string[nodes];
+            string[] values = new string[byText.Dictionary.Count];
             foreach ((string value, int node) in byText.Dictionary)
                 values[node] = value;
             labels = new NodeLabels(values);
@@ -78,31 +74,21 @@ public sealed class EdgeListBuilder
         conductances?.Add(conductance);
     }
 
-    private int Index(long label)
-    {
-        ref int slot = ref CollectionsMarshal.GetValueRefOrAddDefault(byInteger!, label, out bool known);
-        if (!known)
-            slot = NextNode();
-        return slot;
-    }
-
     private int Index(ReadOnlySpan<char> label)
     {
+        int next = byText.Dictionary.Count;
         ref int slot = ref CollectionsMarshal.GetValueRefOrAddDefault(byText, label, out bool known);
         if (!known)
-            slot = NextNode();
+            slot = next;
         return slot;
     }
-
-    private int NextNode() => nodes < int.MaxValue
-        ? nodes++
-        : throw new InvalidOperationException("More than 2^31 - 1 nodes.");
 
     private void TurnIntoTexts()
     {
-        Dictionary<string, int> texts = new(byInteger!.Count);
-        foreach ((long value, int node) in byInteger)
-            texts.Add(value.ToString(CultureInfo.InvariantCulture), node);
+        long[] labels = byInteger!.ToArray();
+        Dictionary<string, int> texts = new(labels.Length);
+        for (int node = 0; node < labels.Length; node++)
+            texts.Add(labels[node].ToString(CultureInfo.InvariantCulture), node);
         byText = texts.GetAlternateLookup<ReadOnlySpan<char>>();
         byInteger = null;
     }

@@ -19,6 +19,9 @@ public enum NumberColumn
 /// <summary>Which columns a reader wants.</summary>
 public sealed record RowRequest
 {
+    /// <summary>The longest label in characters.</summary>
+    public const int LongestLabel = 1000;
+
     /// <summary>The number of label columns, 1 or 2.</summary>
     public required int Labels { get; init; }
 

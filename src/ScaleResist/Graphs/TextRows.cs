@@ -71,6 +71,10 @@ public sealed class TextRows : IRowSource
         }
     }
 
+    /// <summary>Opens a file for reading at any place.</summary>
+    /// <exception cref="InputException">It is not there, or may not be read.</exception>
+    public static FileStream OpenFile(string path) => InputFile.OpenStream(path, 0);
+
     /// <inheritdoc/>
     public bool Read(out Row row)
     {
@@ -146,10 +150,10 @@ public sealed class TextRows : IRowSource
     {
         if (label.IsEmpty)
             throw Fault("a node id is empty", $"give every row {request.Wanted}, separated by {cells.Separator}");
-        if (label.Length > CellReader.LongestLabel)
+        if (label.Length > RowRequest.LongestLabel)
         {
             throw Fault($"the node id '{InputException.Show(label)}' has {label.Length} characters",
-                $"keep node ids within {CellReader.LongestLabel} characters");
+                $"keep node ids within {RowRequest.LongestLabel} characters");
         }
     }
 }

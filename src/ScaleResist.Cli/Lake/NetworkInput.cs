@@ -1,0 +1,42 @@
+// The one door for input of any form: a folder or a .parquet file goes to Parquet, everything else to text.
+// Invariant: the readers behind it are the same for both, so the rules on labels and numbers are too.
+
+using ScaleResist.Graphs;
+
+namespace ScaleResist.Cli.Lake;
+
+/// <summary>Reads links, pairs and node weights of any form.</summary>
+internal static class NetworkInput
+{
+    /// <summary>Reads a network's links.</summary>
+    /// <exception cref="InputException">The input cannot be used.</exception>
+    public static EdgeList Read(string path, ReadOptions options, Action<long>? bytesRead = null, CancellationToken ct = default)
+    {
+        using IRowSource rows = Open(path, EdgeListReader.Request(path, options), bytesRead, ct);
+        return EdgeListReader.Read(rows, options.Weights);
+    }
+
+    /// <summary>Reads pairs of nodes as dense indices, in file order.</summary>
+    /// <exception cref="InputException">The input cannot be used.</exception>
+    public static List<(int Source, int Target)> ReadPairs(
+        string path, NodeLabels labels, IReadOnlyList<string>? columns = null, CancellationToken ct = default)
+    {
+        using IRowSource rows = Open(path, PairReader.Request(columns), null, ct);
+        return PairReader.Read(rows, labels);
+    }
+
+    /// <summary>Reads a weight for every node, by dense index.</summary>
+    /// <exception cref="InputException">The input cannot be used.</exception>
+    public static double[] ReadNodeWeights(
+        string path, NodeLabels labels, IReadOnlyList<string>? columns = null, CancellationToken ct = default)
+    {
+        using IRowSource rows = Open(path, NodeWeightReader.Request(columns), null, ct);
+        return NodeWeightReader.Read(rows, labels);
+    }
+
+    /// <summary>Opens input of any form as rows.</summary>
+    public static IRowSource Open(string path, RowRequest request, Action<long>? bytesRead = null, CancellationToken ct = default) =>
+        Directory.Exists(path) || path.EndsWith(".parquet", StringComparison.OrdinalIgnoreCase)
+            ? ParquetRows.Open(path, request, bytesRead, ct)
+            : TextRows.Open(path, request, bytesRead, ct);
+}
