@@ -3,7 +3,7 @@
 using ScaleResist.Graphs;
 using ScaleResist.Runs;
 
-namespace ScaleResist.Cli.Estimate;
+namespace ScaleResist.Cli.Commands;
 
 /// <summary>Rows that cleaning changed.</summary>
 /// <param name="SelfLoops">Links from a node to itself that dropped out.</param>
