@@ -95,8 +95,8 @@ internal static class CommandLine
             return null;
         }
         // System.CommandLine takes `--probes --seed` as the value "--seed".
-        if (named.Values.FirstOrDefault(o => parsed.GetValue(o) is string v && named.ContainsKey(v.TrimStart('-'))
-            && v.StartsWith("--", StringComparison.Ordinal)) is Option<string?> empty)
+        if (named.Values.FirstOrDefault(o => parsed.GetResult(o)?.Tokens is [{ Value: string v }, ..]
+            && verb.Options.Any(other => other.Name == v)) is Option<string?> empty)
         {
             problem = NeedsValue(empty);
             return null;
