@@ -1,6 +1,6 @@
 // Turns rows into one Parquet part: one row group, zstd, flushed to disk before it counts as written.
 // Integers are delta-packed (which keeps min/max for filters), doubles byte-split (smaller and faster, without min/max),
-// texts go to a dictionary where they repeat.
+// and the few values of `method` go to a dictionary.
 
 using System.IO.Compression;
 using System.Numerics;
@@ -111,7 +111,8 @@ internal sealed class PartEncoder
             {
                 ColumnKind.Int64 => EncodingHint.DeltaBinaryPacked,
                 ColumnKind.Double or ColumnKind.FloatList => EncodingHint.ByteSplitStream,
-                ColumnKind.Text => EncodingHint.Dictionary,
+                // Labels are mostly distinct: a dictionary of them took three times as long and was larger.
+                ColumnKind.Text when table.Columns[i].Name == "method" => EncodingHint.Dictionary,
                 _ => null,
             };
             if (hint is EncodingHint known)

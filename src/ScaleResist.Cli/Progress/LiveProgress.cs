@@ -28,7 +28,7 @@ internal sealed class LiveProgress : IRunObserver
         });
         console.Progress()
             .Columns(new TaskDescriptionColumn { Alignment = Justify.Left }, new ProgressBarColumn(), new PercentageColumn(),
-                new ElapsedTimeColumn(), new RemainingTimeColumn())
+                new RemainingTimeColumn())
             .Start(context => work(new LiveProgress(context)));
     }
 

@@ -53,7 +53,7 @@ internal static class Numbers
     };
 
     /// <summary>An amount of work in the observer's unit.</summary>
-    public static string Amount(double amount, string unit) => unit == "bytes" ? Bytes(amount) : $"{Count((long)amount)} {unit}";
+    public static string Amount(double amount, string unit) => unit == "bytes" ? Bytes(amount) : $"{Count((long)amount)} {unit}".TrimEnd();
 
     /// <summary>"1 node", "2 nodes".</summary>
     public static string Many(long count, string one) => $"{Count(count)} {one}{(count == 1 ? "" : "s")}";

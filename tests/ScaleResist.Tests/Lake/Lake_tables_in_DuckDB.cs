@@ -127,11 +127,12 @@ public sealed class Lake_tables_in_DuckDB
         }
     }
 
-    [Fact]
-    public void Columns_that_people_filter_on_keep_their_minimum_and_maximum()
+    [Theory]
+    [MemberData(nameof(Labels))]
+    public void Columns_that_people_filter_on_keep_their_minimum_and_maximum(bool texts)
     {
         using Place place = new();
-        Assert.Equal(0, CliRun.InProcess(new FakeEngine(), place.Estimate()).Exit);
+        Assert.Equal(0, CliRun.InProcess(new FakeEngine { TextLabels = texts }, place.Estimate()).Exit);
         List<object?[]> statistics = DuckLake.Query(
             $"SELECT path_in_schema, stats_min_value, stats_max_value FROM parquet_metadata('{place.Run("a")}/links/*.parquet')");
         foreach (string column in (string[])["source", "target", "component_id", "nodes_cut_off"])
