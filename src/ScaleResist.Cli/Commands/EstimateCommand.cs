@@ -48,9 +48,9 @@ internal sealed class EstimateCommand(CliHost host)
         interrupted.ThrowIfCancellationRequested();
         RunRecord record = RunRecord.Of(request, plan, outcome!, sink?.CompleteRows() ?? new Dictionary<string, long>(), clock!.Phases,
             started, host.Time.GetUtcNow());
+        string summary = string.Join(Environment.NewLine, SummaryText.Of(record, folder.Published));
         staged.Publish(record.ToJson());
-        foreach (string line in SummaryText.Of(record, folder.Published))
-            host.Out.WriteLine(line);
+        host.Out.WriteLine(summary);
         return ExitCode.Done;
     }
 

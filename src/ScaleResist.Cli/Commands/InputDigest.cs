@@ -39,7 +39,10 @@ internal static class InputDigest
         }
     }
 
+    // The same parts, in the same order, as the Parquet reader takes.
     private static IEnumerable<string> Parts(string path) => Directory.Exists(path)
-        ? Directory.EnumerateFiles(path, "*.parquet").Order(StringComparer.Ordinal)
+        ? Directory.EnumerateFiles(path)
+            .Where(file => file.EndsWith(".parquet", StringComparison.OrdinalIgnoreCase) && Path.GetFileName(file)[0] is not ('_' or '.'))
+            .Order(StringComparer.Ordinal)
         : [path];
 }

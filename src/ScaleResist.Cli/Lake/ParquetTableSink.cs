@@ -132,15 +132,16 @@ internal sealed class ParquetTableSink : ITableSink
             pendingRows = 0;
             slots.Wait();
             string file = Path.Combine(path, $"part-{parts.Count:00000}.parquet");
-            parts.Add(Task.Run(() => Encode(file, segments)));
+            parts.Add(Task.Factory.StartNew(() => Encode(file, segments), CancellationToken.None,
+                TaskCreationOptions.LongRunning, TaskScheduler.Default));
         }
 
-        private async Task Encode(string file, RowSegment[] segments)
+        private void Encode(string file, RowSegment[] segments)
         {
             try
             {
                 if (Volatile.Read(ref failure) is null)
-                    await encoder.WriteAsync(file, segments);
+                    encoder.Write(file, segments);
             }
             catch (Exception error)
             {

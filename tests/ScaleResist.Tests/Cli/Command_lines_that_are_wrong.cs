@@ -1,5 +1,6 @@
 // Every wrong command line gives exit 2 and one line that says how to mend it, and touches nothing.
 
+using CsCheck;
 using ScaleResist.Cli.Commands;
 
 namespace ScaleResist.Tests.Cli;
@@ -73,6 +74,26 @@ public sealed class Command_lines_that_are_wrong
         Assert.Empty(result.Out);
         Assert.Equal(0, engine.Runs);
         Assert.False(Directory.Exists("l"));
+    }
+
+    [Fact]
+    public void No_command_line_is_a_fault()
+    {
+        using Place place = new();
+        string lake = "--lake=" + place.Lake; // In one word, so that no other word becomes a folder's name.
+        string[] words = ["estimate", "estimate", "estimate", place.Network, place.Network, lake, lake, lake, "--run-id", "r", "--want", "index,pairs",
+            "--probes", "--threads=2", "--seed", "7", "-1", "--weights", "none", "--columns", "a,b", "--pairs", "--restart", "--verbose",
+            "--confidence", "0.5", "--route", "exact", "--help", "--version", "--", "-", "", "@x", "=", "--=", "--lake=", "\"", "'", "é\n",
+            "[diagram]", "--shard", "1/2"];
+        Gen.Int[0, words.Length - 1].Select(i => words[i]).Array[0, 9].Sample(args =>
+        {
+            CliResult result = CliRun.InProcess(new FakeEngine { Links = 3, Nodes = 3 }, args);
+            Assert.True(result.Exit is 0 or 2 or 3, $"{string.Join(' ', args)}: exit {result.Exit}, {result.Error}");
+            if (result.Exit != 0)
+                Assert.StartsWith("scaleresist: ", result.Messages[0]);
+            if (Directory.Exists(place.Lake))
+                Directory.Delete(place.Lake, recursive: true);
+        }, iter: 2000, seed: "0000000000000", threads: 1);
     }
 
     [Theory]

@@ -83,13 +83,12 @@ public sealed class Run_folders
     {
         using Place place = new();
         RunFolder folder = new(place.Lake, "a");
+        StagedRun staged = folder.Begin();
         Directory.CreateDirectory(folder.Published);
         File.WriteAllText(Path.Combine(folder.Published, "mine"), "1");
-        using (StagedRun staged = folder.Begin())
-        {
-            LakeException error = Assert.Throws<LakeException>(() => staged.Publish("{}"u8));
-            Assert.Contains("already there", error.Message);
-        }
+        Assert.Contains("no finished run", Assert.Throws<LakeException>(() => staged.Publish("{}"u8)).Message);
+        staged.Dispose();
+        Assert.Contains("no finished run", Assert.Throws<LakeException>(folder.Begin).Message);
         Assert.Equal(["run=a", "run=a/mine"], place.LakeContent());
     }
 
