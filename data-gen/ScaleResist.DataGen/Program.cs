@@ -1,2 +1,5 @@
-// Placeholder entry point, replaced as the room is built.
-Console.WriteLine();
+// The command `data-gen`: seeded networks of any size, and the sample scenario.
+
+using ScaleResist.DataGen;
+
+return await DataGenCommand.RunAsync(args, Console.Out, Console.Error, CancellationToken.None);

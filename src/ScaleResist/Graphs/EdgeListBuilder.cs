@@ -46,6 +46,11 @@ public sealed class EdgeListBuilder
         Append(Index(source), Index(target), conductance);
     }
 
+    /// <summary>Whether a node has this label so far.</summary>
+    public bool Contains(ReadOnlySpan<char> label) => byInteger is null
+        ? byText.ContainsKey(label)
+        : NodeLabels.TryCanonicalInteger(label, out long value) && byInteger.ContainsKey(value);
+
     /// <summary>Ends the list. The builder is spent.</summary>
     public EdgeList Finish(InputFacts facts)
     {

@@ -1,13 +1,8 @@
 // What a finished estimate says to a person and to run.json. The tables themselves went to the sink.
 
-namespace ScaleResist.Runs;
+using ScaleResist.Estimating;
 
-/// <summary>A value with one standard error and an interval of the confidence asked for.</summary>
-/// <param name="Value">The estimate.</param>
-/// <param name="StandardError">One standard error; 0 where exact.</param>
-/// <param name="Lower">Lower end of the interval.</param>
-/// <param name="Upper">Upper end of the interval.</param>
-public readonly record struct Estimate(double Value, double StandardError, double Lower, double Upper);
+namespace ScaleResist.Runs;
 
 /// <summary>One row of the index table: the global measures of a component.</summary>
 public sealed record IndexEntry
@@ -27,13 +22,13 @@ public sealed record IndexEntry
     /// <summary>Kf, the sum of R over unordered pairs.</summary>
     public required Estimate KirchhoffIndex { get; init; }
 
-    /// <summary>Kf / (n (n-1) / 2); NaN for a single node.</summary>
+    /// <summary>Kf / (n (n-1) / 2); 0 for a single node.</summary>
     public required double MeanResistance { get; init; }
 
     /// <summary>The sum over unordered pairs of d_u d_v R (strengths d).</summary>
     public required double DegreeKirchhoffIndex { get; init; }
 
-    /// <summary>Kemeny's constant: degree-Kirchhoff index / (2 x total conductance); NaN without links.</summary>
+    /// <summary>Kemeny's constant: degree-Kirchhoff index / (2 x total conductance); 0 for a single node.</summary>
     public required double KemenyConstant { get; init; }
 
     /// <summary>The sum over unordered pairs of w_u w_v R, or null without node weights.</summary>

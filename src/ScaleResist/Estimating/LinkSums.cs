@@ -1,0 +1,77 @@
+// The two sums a link that all probes leave behind; resistances follow from them when the last panel is in.
+// Memory: 8 bytes a link. A pass over a panel reads z and b at both ends of each link and the adjacency.
+
+using ScaleResist.Graphs;
+using ScaleResist.Kernels;
+
+namespace ScaleResist.Estimating;
+
+/// <summary>Sums of squared residuals for every link, panel by panel.</summary>
+public sealed class LinkSums
+{
+    private readonly Network network;
+    private readonly Bridges bridges;
+    private readonly float[] shorted;
+    private readonly float[] single;
+    private readonly List<(int Start, int End)> chunks;
+
+    /// <summary>Empty sums for the network's links.</summary>
+    public LinkSums(Network network, Bridges bridges)
+    {
+        this.network = network;
+        this.bridges = bridges;
+        shorted = new float[network.LinkCount];
+        single = new float[network.LinkCount];
+        chunks = RowChunks.Of(network);
+    }
+
+    /// <summary>Probes added so far.</summary>
+    public int Probes { get; private set; }
+
+    /// <summary>Adds a solved panel. Panels are added in order of their numbers, so that results do not depend on who solved first.</summary>
+    public void Add(ProbePanel panel, int threads)
+    {
+        Parallel.For(0, chunks.Count, new ParallelOptions { MaxDegreeOfParallelism = threads }, i => AddRows(panel, chunks[i].Start, chunks[i].End));
+        Probes += panel.Probes;
+    }
+
+    private unsafe void AddRows(ProbePanel panel, int start, int end)
+    {
+        float* z = panel.Z.Pointer;
+        float* b = panel.B.Pointer;
+        uint lanes = panel.Lanes;
+        int nextBridge = bridges.FirstFrom(network.LinkStart[start]);
+        for (int u = start; u < end; u++)
+        {
+            long link = network.LinkStart[u];
+            double du = network.Strengths[u];
+            for (long k = network.FirstLaterArc(u); k < network.RowStart[u + 1]; k++, link++)
+            {
+                if (nextBridge < bridges.Count && bridges.Links[nextBridge] == link)
+                {
+                    nextBridge++; // exact: 1/c
+                    continue;
+                }
+                int v = network.Neighbours[k];
+                double c = network.Conductance(k);
+                LinkBounds bounds = LinkBounds.Of(c, du, network.Strengths[v]);
+                (float one, float other) = ProbeKernels.LinkSquares(
+                    z + (u * 16L), z + (v * 16L), b + (u * 16L), b + (v * 16L),
+                    (float)bounds.FactorU, (float)bounds.FactorV, panel.Signs(u, v), (float)Math.Sqrt(bounds.Upper), lanes);
+                shorted[link] += one;
+                single[link] += other;
+            }
+        }
+    }
+
+    /// <summary>The estimate of a link that is no bridge.</summary>
+    /// <param name="link">Its number.</param>
+    /// <param name="arc">Its arc from u.</param>
+    /// <param name="u">Its smaller node.</param>
+    /// <param name="quantile">Of the standard normal.</param>
+    internal Estimate Estimate(long link, long arc, int u, double quantile)
+    {
+        LinkBounds bounds = LinkBounds.Of(network.Conductance(arc), network.Strengths[u], network.Strengths[network.Neighbours[arc]]);
+        return LinkLikelihood.Estimate(bounds, shorted[link], single[link], Probes, quantile);
+    }
+}

@@ -1,0 +1,94 @@
+// Rows to an edge list: what the number in the third column means, and that it is finite and positive.
+// Invariant: no conductance reaches an EdgeList that is not a finite positive number.
+
+using System.Globalization;
+
+namespace ScaleResist.Graphs;
+
+/// <summary>Reads a network's links.</summary>
+public static class EdgeListReader
+{
+    /// <summary>Reads a text file of links in one pass: <c>.csv .tsv .txt .edges .mtx</c>, each also <c>.gz</c> and <c>.zst</c>.</summary>
+    /// <param name="path">The file; its ending names the form.</param>
+    /// <param name="options">What the columns mean.</param>
+    /// <param name="bytesRead">Told the bytes read from disk so far.</param>
+    /// <param name="ct">Stops reading.</param>
+    /// <exception cref="InputException">The file cannot be used; the message says where and how to mend it.</exception>
+    public static EdgeList Read(
+        string path, ReadOptions options, Action<long>? bytesRead = null, CancellationToken ct = default)
+    {
+        using IRowSource rows = TextRows.Open(path, Request(path, options), bytesRead, ct);
+        return Read(rows, options.Weights);
+    }
+
+    /// <summary>What to ask a row source for.</summary>
+    /// <exception cref="InputException">The columns named do not go with the meaning of the weights.</exception>
+    public static RowRequest Request(string path, ReadOptions options)
+    {
+        int? named = options.Columns?.Count;
+        if (named is not null and not 2 and not 3)
+        {
+            throw new InputException(path, null, $"{named} columns are named",
+                "name two or three: source, target and, where weights are used, the weight");
+        }
+        bool weighted = options.Weights is WeightMeaning.Conductance or WeightMeaning.Resistance;
+        if (weighted && named == 2)
+            throw new InputException(path, null, "weights are asked for, and no weight column is named", "name it third in --columns");
+        if (options.Weights == WeightMeaning.Unsaid && named == 3)
+            throw RowRequest.WeightUnsaid(path, null);
+        return new RowRequest
+        {
+            Labels = 2,
+            Number = weighted ? NumberColumn.Required
+                : options.Weights == WeightMeaning.Unsaid && named is null ? NumberColumn.Refused : NumberColumn.Ignored,
+            Columns = weighted ? options.Columns : options.Columns?.Take(2).ToArray(),
+        };
+    }
+
+    /// <summary>Reads all rows of a source that was opened with <see cref="Request"/>.</summary>
+    public static EdgeList Read(IRowSource rows, WeightMeaning weights)
+    {
+        bool weighted = weights is WeightMeaning.Conductance or WeightMeaning.Resistance;
+        EdgeListBuilder builder = new(weighted);
+        while (rows.Read(out Row row))
+        {
+            double conductance = 1;
+            if (weighted)
+                conductance = Conductance(row.Number, weights, rows);
+            if (row.AreIntegers)
+                builder.Add(row.FirstInteger, row.SecondInteger, conductance);
+            else
+                builder.Add(row.First, row.Second, conductance);
+        }
+        InputFacts facts = rows.Facts;
+        CheckHeader(builder, rows, facts);
+        return builder.Finish(facts);
+    }
+
+    private static double Conductance(double number, WeightMeaning weights, IRowSource rows)
+    {
+        double conductance = weights == WeightMeaning.Resistance ? 1 / number : number;
+        if (double.IsFinite(number) && number > 0 && double.IsFinite(conductance) && conductance > 0)
+            return conductance;
+        string shown = number.ToString(CultureInfo.InvariantCulture);
+        throw weights == WeightMeaning.Resistance
+            ? rows.Fault($"the resistance {shown} has no finite positive conductance", "give a finite resistance above zero")
+            : rows.Fault($"the conductance {shown} is not a finite positive number",
+                "give a finite conductance above zero, or drop the link");
+    }
+
+    // A first row of names such as a,b may just as well be a link. If such a name turns up as a node below, nobody can tell.
+    private static void CheckHeader(EdgeListBuilder builder, IRowSource rows, InputFacts facts)
+    {
+        if (rows.GuessedHeaderLine is not { } line)
+            return;
+        foreach (string name in facts.Columns.Take(2))
+        {
+            if (builder.Contains(name))
+            {
+                throw new InputException(facts.Path, line, $"'{InputException.Show(name)}' may be a column name or a node: it is a node further down",
+                    "put a header such as source,target (and weight) above the first link, or rename the columns");
+            }
+        }
+    }
+}

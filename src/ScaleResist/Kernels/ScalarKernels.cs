@@ -1,0 +1,145 @@
+// The plain twins of VectorKernels: what each kernel means, lane by lane, in the same order of operations.
+// Tests hold the vector kernels against these for every length; SCALERESIST_KERNELS=scalar runs them instead.
+
+using System.Numerics;
+using ScaleResist.Graphs;
+
+namespace ScaleResist.Kernels;
+
+/// <summary>Reference kernels; see <see cref="VectorKernels"/> for each one's meaning.</summary>
+internal static unsafe class ScalarKernels
+{
+    public static void Multiply<T>(Network network, T* x, T* y, int start, int end, ref LaneSums sums)
+        where T : unmanaged, INumber<T>
+    {
+        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
+        {
+            int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                T products = T.Zero;
+                for (int u = chunk; u < chunkEnd; u++)
+                {
+                    ref T own = ref At(x, u, lane);
+                    T result = (T.CreateTruncating(network.Strengths[u]) * own) - Around(network, x, u, lane);
+                    At(y, u, lane) = result;
+                    products += own * result;
+                }
+                sums[lane] += double.CreateTruncating(products);
+            }
+        }
+    }
+
+    public static void Residual<T>(Network network, T* b, T* x, int start, int end, ref LaneSums sums)
+        where T : unmanaged, INumber<T>
+    {
+        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
+        {
+            int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                T squares = T.Zero;
+                for (int u = chunk; u < chunkEnd; u++)
+                {
+                    T residual = At(b, u, lane)
+                        - ((T.CreateTruncating(network.Strengths[u]) * At(x, u, lane)) - Around(network, x, u, lane));
+                    squares += residual * residual;
+                }
+                sums[lane] += double.CreateTruncating(squares);
+            }
+        }
+    }
+
+    public static void Step<T>(T* x, T* r, T* p, T* q, T* factors, int start, int end, ref LaneSums sums)
+        where T : unmanaged, INumber<T>
+    {
+        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
+        {
+            int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                T squares = T.Zero;
+                for (int u = chunk; u < chunkEnd; u++)
+                {
+                    At(x, u, lane) += factors[lane] * At(p, u, lane);
+                    T residual = At(r, u, lane) - (factors[lane] * At(q, u, lane));
+                    At(r, u, lane) = residual;
+                    squares += residual * residual;
+                }
+                sums[lane] += double.CreateTruncating(squares);
+            }
+        }
+    }
+
+    public static void Scale<T>(double[] strengths, T* r, T* s, int start, int end, ref LaneSums sums)
+        where T : unmanaged, INumber<T>
+    {
+        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
+        {
+            int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                T products = T.Zero;
+                for (int u = chunk; u < chunkEnd; u++)
+                {
+                    T residual = At(r, u, lane);
+                    T scaled = T.CreateTruncating(strengths[u] > 0 ? 1 / strengths[u] : 0) * residual;
+                    At(s, u, lane) = scaled;
+                    products += residual * scaled;
+                }
+                sums[lane] += double.CreateTruncating(products);
+            }
+        }
+    }
+
+    public static void Direction<T>(T* p, T* s, T* factors, int start, int end)
+        where T : unmanaged, INumber<T>
+    {
+        for (int u = start; u < end; u++)
+        {
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+                At(p, u, lane) = At(s, u, lane) + (factors[lane] * At(p, u, lane));
+        }
+    }
+
+    public static void Sum<T>(T* x, int start, int end, ref LaneSums sums)
+        where T : unmanaged, INumber<T>
+    {
+        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
+        {
+            int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                T total = T.Zero;
+                for (int u = chunk; u < chunkEnd; u++)
+                    total += At(x, u, lane);
+                sums[lane] += double.CreateTruncating(total);
+            }
+        }
+    }
+
+    public static void Shift<T>(T* x, T* shifts, int start, int end)
+        where T : unmanaged, INumber<T>
+    {
+        for (int u = start; u < end; u++)
+        {
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+                At(x, u, lane) -= shifts[lane];
+        }
+    }
+
+    private static T Around<T>(Network network, T* x, int node, int lane)
+        where T : unmanaged, INumber<T>
+    {
+        T around = T.Zero;
+        for (long k = network.RowStart[node]; k < network.RowStart[node + 1]; k++)
+        {
+            T neighbour = At(x, network.Neighbours[k], lane);
+            around += network.Conductances is null ? neighbour : T.CreateTruncating(network.Conductances[k]) * neighbour;
+        }
+        return around;
+    }
+
+    private static ref T At<T>(T* panel, int node, int lane)
+        where T : unmanaged => ref panel[((long)node * Panel<T>.Width) + lane];
+}

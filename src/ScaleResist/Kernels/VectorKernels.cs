@@ -1,0 +1,170 @@
+// The kernels of an iteration on panels, one 64-byte row a node and step. ScalarKernels holds the same arithmetic lane by lane.
+// Invariant: within a column, operations follow the scalar twin's order exactly (no fused multiply-add), so both give the same bits.
+//
+// Data movement, in panels of n rows (64 n bytes each), beside the adjacency (8 bytes a node, 4 an arc, 8 more with weights):
+//   Multiply   reads 1 (rows again for each neighbour: from cache where the node order is good), writes 1
+//   Step       reads 4, writes 2        Scale  reads 1, writes 1        Direction  reads 2, writes 1
+
+using System.Runtime.CompilerServices;
+using System.Runtime.Intrinsics;
+using System.Runtime.Intrinsics.X86;
+using ScaleResist.Graphs;
+
+namespace ScaleResist.Kernels;
+
+/// <summary>Panel kernels over the nodes <c>start .. end-1</c>; W = 16 floats or 8 doubles.</summary>
+internal static unsafe class VectorKernels
+{
+    private const int PrefetchArcs = 12;
+
+    /// <summary>y = L x, and sums = x'y by column.</summary>
+    public static void Multiply<T>(Network network, T* x, T* y, int start, int end, ref LaneSums sums)
+        where T : unmanaged
+    {
+        fixed (long* rowStart = network.RowStart)
+        fixed (int* neighbours = network.Neighbours)
+        fixed (double* conductances = network.Conductances)
+        fixed (double* strengths = network.Strengths)
+        {
+            long lastArc = rowStart[end] - 1;
+            for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
+            {
+                int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
+                Vector512<T> products = Vector512<T>.Zero;
+                for (int u = chunk; u < chunkEnd; u++)
+                {
+                    Vector512<T> around = Vector512<T>.Zero;
+                    long rowEnd = rowStart[u + 1];
+                    for (long k = rowStart[u]; k < rowEnd; k++)
+                    {
+                        if (Sse.IsSupported)
+                            Sse.Prefetch0(Row(x, neighbours[Math.Min(k + PrefetchArcs, lastArc)]));
+                        Vector512<T> neighbour = Vector512.Load(Row(x, neighbours[k]));
+                        around += conductances == null ? neighbour : Broadcast<T>(conductances[k]) * neighbour;
+                    }
+                    Vector512<T> own = Vector512.Load(Row(x, u));
+                    Vector512<T> result = (Broadcast<T>(strengths[u]) * own) - around;
+                    result.Store(Row(y, u));
+                    products += own * result;
+                }
+                Add(ref sums, products);
+            }
+        }
+    }
+
+    /// <summary>sums = |b - L x|^2 by column, nothing stored.</summary>
+    public static void Residual<T>(Network network, T* b, T* x, int start, int end, ref LaneSums sums)
+        where T : unmanaged
+    {
+        fixed (long* rowStart = network.RowStart)
+        fixed (int* neighbours = network.Neighbours)
+        fixed (double* conductances = network.Conductances)
+        fixed (double* strengths = network.Strengths)
+        {
+            for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
+            {
+                int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
+                Vector512<T> squares = Vector512<T>.Zero;
+                for (int u = chunk; u < chunkEnd; u++)
+                {
+                    Vector512<T> around = Vector512<T>.Zero;
+                    for (long k = rowStart[u]; k < rowStart[u + 1]; k++)
+                    {
+                        Vector512<T> neighbour = Vector512.Load(Row(x, neighbours[k]));
+                        around += conductances == null ? neighbour : Broadcast<T>(conductances[k]) * neighbour;
+                    }
+                    Vector512<T> residual = Vector512.Load(Row(b, u)) - ((Broadcast<T>(strengths[u]) * Vector512.Load(Row(x, u))) - around);
+                    squares += residual * residual;
+                }
+                Add(ref sums, squares);
+            }
+        }
+    }
+
+    /// <summary>x += a p, r -= a q with one factor a column, and sums = |r|^2 by column.</summary>
+    public static void Step<T>(T* x, T* r, T* p, T* q, T* factors, int start, int end, ref LaneSums sums)
+        where T : unmanaged
+    {
+        Vector512<T> a = Vector512.Load(factors);
+        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
+        {
+            int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
+            Vector512<T> squares = Vector512<T>.Zero;
+            for (int u = chunk; u < chunkEnd; u++)
+            {
+                (Vector512.Load(Row(x, u)) + (a * Vector512.Load(Row(p, u)))).Store(Row(x, u));
+                Vector512<T> residual = Vector512.Load(Row(r, u)) - (a * Vector512.Load(Row(q, u)));
+                residual.Store(Row(r, u));
+                squares += residual * residual;
+            }
+            Add(ref sums, squares);
+        }
+    }
+
+    /// <summary>s = r / d row by row (0 where d is 0), and sums = r's by column.</summary>
+    public static void Scale<T>(double[] strengths, T* r, T* s, int start, int end, ref LaneSums sums)
+        where T : unmanaged
+    {
+        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
+        {
+            int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
+            Vector512<T> products = Vector512<T>.Zero;
+            for (int u = chunk; u < chunkEnd; u++)
+            {
+                Vector512<T> residual = Vector512.Load(Row(r, u));
+                Vector512<T> scaled = Broadcast<T>(strengths[u] > 0 ? 1 / strengths[u] : 0) * residual;
+                scaled.Store(Row(s, u));
+                products += residual * scaled;
+            }
+            Add(ref sums, products);
+        }
+    }
+
+    /// <summary>p = s + b p with one factor a column.</summary>
+    public static void Direction<T>(T* p, T* s, T* factors, int start, int end)
+        where T : unmanaged
+    {
+        Vector512<T> b = Vector512.Load(factors);
+        for (int u = start; u < end; u++)
+            (Vector512.Load(Row(s, u)) + (b * Vector512.Load(Row(p, u)))).Store(Row(p, u));
+    }
+
+    /// <summary>sums = the sum of each column.</summary>
+    public static void Sum<T>(T* x, int start, int end, ref LaneSums sums)
+        where T : unmanaged
+    {
+        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
+        {
+            int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
+            Vector512<T> total = Vector512<T>.Zero;
+            for (int u = chunk; u < chunkEnd; u++)
+                total += Vector512.Load(Row(x, u));
+            Add(ref sums, total);
+        }
+    }
+
+    /// <summary>x -= one shift a column.</summary>
+    public static void Shift<T>(T* x, T* shifts, int start, int end)
+        where T : unmanaged
+    {
+        Vector512<T> shift = Vector512.Load(shifts);
+        for (int u = start; u < end; u++)
+            (Vector512.Load(Row(x, u)) - shift).Store(Row(x, u));
+    }
+
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static T* Row<T>(T* panel, int node)
+        where T : unmanaged => (T*)((byte*)panel + ((long)node * 64));
+
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static Vector512<T> Broadcast<T>(double value)
+        where T : unmanaged =>
+        typeof(T) == typeof(float) ? Vector512.Create((float)value).As<float, T>() : Vector512.Create(value).As<double, T>();
+
+    private static void Add<T>(ref LaneSums sums, Vector512<T> values)
+        where T : unmanaged
+    {
+        for (int lane = 0; lane < Panel<T>.Width; lane++)
+            sums[lane] += typeof(T) == typeof(float) ? values.AsSingle()[lane] : values.AsDouble()[lane];
+    }
+}

@@ -1,0 +1,132 @@
+// The main job on a network in memory: bridges, probes, estimates, rows. Everything it finds goes to the sink.
+// Invariant: what is not wanted is neither computed nor written, except Foster's sum, the check that every probed run carries.
+
+using System.Diagnostics;
+using ScaleResist.Estimating;
+using ScaleResist.Graphs;
+using ScaleResist.Solving;
+
+namespace ScaleResist.Runs;
+
+/// <summary>What a run takes beside the network.</summary>
+public sealed record EstimateInputs
+{
+    /// <summary>Requested pairs as internal nodes of the network, in the order of the request.</summary>
+    public IReadOnlyList<(int U, int V)>? Pairs { get; init; }
+
+    /// <summary>Node weights by internal node, finite and not negative.</summary>
+    public double[]? NodeWeights { get; init; }
+}
+
+/// <summary>The estimate run.</summary>
+public static class EstimateRun
+{
+    /// <summary>Runs a plan.</summary>
+    /// <param name="network">The network.</param>
+    /// <param name="plan">What is wanted.</param>
+    /// <param name="inputs">Pairs and node weights.</param>
+    /// <param name="sink">Takes the tables.</param>
+    /// <param name="observer">Follows the phases.</param>
+    /// <param name="cancel">Ends the run early with <see cref="OperationCanceledException"/>.</param>
+    /// <returns>What to tell of the run.</returns>
+    /// <exception cref="SolveException">A solve did not reach its tolerance.</exception>
+    public static EstimateSummary Execute(
+        Network network, EstimatePlan plan, EstimateInputs inputs, ITableSink sink, IRunObserver observer, CancellationToken cancel)
+    {
+        Phases phases = new(observer);
+        Dictionary<string, long> rows = [];
+        ColumnKind label = LabelColumns.KindOf(network.Labels);
+        Bridges bridges = phases.Do("finding bridges", network.LinkCount, "links", () => Bridges.Find(network));
+        if (plan.Want.HasFlag(Want.Components))
+            Write("components", Tables.Components(label), network.NodeCount, w => NodeRows.WriteComponents(network, w, cancel));
+
+        LaplacianSolver solver = new(network);
+        ProbedEstimates? probed = null;
+        LinkRows? links = null;
+        List<IndexEntry> index = [];
+        if ((plan.Want & ~Want.Components) != 0)
+        {
+            probed = phases.Do(
+                "solving", plan.Probes, "probes", () => ProbedEstimates.Run(network, bridges, plan, inputs, solver, observer, cancel));
+            links = WalkLinks(probed);
+        }
+        if (plan.Want.HasFlag(Want.Index))
+        {
+            index = IndexRows.Of(network, probed!.Nodes!, probed.Forms!, inputs.NodeWeights, links!.FosterSums, plan.Confidence);
+            Write("index", Tables.Index, index.Count, w => IndexRows.Write(index, w));
+        }
+        if (plan.Want.HasFlag(Want.Nodes))
+        {
+            Write("nodes", Tables.Nodes(label), network.NodeCount,
+                w => NodeRows.WriteNodes(network, probed!.Nodes!, plan.Confidence, w, cancel));
+        }
+        if (plan.Want.HasFlag(Want.Pairs))
+        {
+            IReadOnlyList<(int U, int V)> pairs = inputs.Pairs ?? [];
+            Write("pairs", Tables.Pairs(label), pairs.Count,
+                w => PairRows.Write(network, pairs, probed!.Pairs!, plan.Confidence, w));
+        }
+        if (plan.Want.HasFlag(Want.Coordinates))
+        {
+            Write("coordinates", Tables.Coordinates(label), network.NodeCount,
+                w => NodeRows.WriteCoordinates(network, probed!.Coordinates!, plan.Probes, w, cancel));
+        }
+        return new EstimateSummary
+        {
+            Nodes = network.NodeCount,
+            Links = network.LinkCount,
+            Components = network.Components.Count,
+            Bridges = bridges.Count,
+            Index = index,
+            CriticalLinks = plan.Want.HasFlag(Want.Links) ? links!.Critical : [],
+            FosterSum = links?.FosterSums.Sum(),
+            Solver = probed is null ? null : new SolverFacts
+            {
+                Preconditioner = solver.Preconditioner,
+                Columns = solver.Statistics.Columns,
+                MostIterations = solver.Statistics.MostIterations,
+                LargestResidual = solver.Statistics.LargestResidual,
+                Retried = solver.Statistics.Retried,
+            },
+            Phases = phases.Times,
+            Rows = rows,
+        };
+
+        LinkRows WalkLinks(ProbedEstimates sums)
+        {
+            LinkResistances resistances = new(network, bridges, sums.Links, plan.Confidence);
+            if (!plan.Want.HasFlag(Want.Links))
+            {
+                return phases.Do("checking", network.LinkCount, "links",
+                    () => LinkRows.Walk(network, resistances, null, plan.Threads, observer, cancel));
+            }
+            LinkRows? walked = null;
+            Write("links", Tables.Links(label), network.LinkCount,
+                w => walked = LinkRows.Walk(network, resistances, w, plan.Threads, observer, cancel));
+            return walked!;
+        }
+
+        void Write(string name, TableDefinition table, long count, Action<ITableWriter> write) =>
+            rows[name] = phases.Do($"writing {name}", count, "rows", () =>
+            {
+                ITableWriter writer = sink.Open(table);
+                write(writer);
+                return writer.Complete();
+            });
+    }
+
+    private sealed class Phases(IRunObserver observer)
+    {
+        public List<PhaseTime> Times { get; } = [];
+
+        public T Do<T>(string name, double total, string unit, Func<T> work)
+        {
+            observer.Begin(name, total, unit);
+            long start = Stopwatch.GetTimestamp();
+            T result = work();
+            Times.Add(new PhaseTime(name, Stopwatch.GetElapsedTime(start).TotalSeconds));
+            observer.End();
+            return result;
+        }
+    }
+}

@@ -1,0 +1,156 @@
+// The nodes, components and coordinates tables.
+// Invariant: closeness ranks count within a component, 1 the closest; rank_lower..rank_upper holds every rank the intervals allow.
+
+using ScaleResist.Estimating;
+using ScaleResist.Graphs;
+
+namespace ScaleResist.Runs;
+
+/// <summary>Writes one row a node.</summary>
+internal static class NodeRows
+{
+    private const int BatchRows = 1 << 20;
+
+    /// <summary>The components table.</summary>
+    public static void WriteComponents(Network network, ITableWriter writer, CancellationToken cancel)
+    {
+        int[] componentOf = network.ComponentOfNodes();
+        InBatches(network.NodeCount, BatchRows, cancel, (start, count) =>
+        {
+            Array node = LabelColumns.New(network.Labels, count);
+            long[] component = new long[count];
+            for (int i = 0; i < count; i++)
+            {
+                LabelColumns.Put(network.Labels, node, i, start + i);
+                component[i] = componentOf[start + i];
+            }
+            writer.Write(new RowBatch(count, [node, component]));
+        });
+    }
+
+    /// <summary>The nodes table.</summary>
+    public static void WriteNodes(Network network, NodeSums sums, double confidence, ITableWriter writer, CancellationToken cancel)
+    {
+        int[] componentOf = network.ComponentOfNodes();
+        double[] trace = new double[network.Components.Count];
+        for (int c = 0; c < trace.Length; c++)
+            trace[c] = sums.Trace(c, confidence).Value;
+        Estimate[] diagonal = Diagonals(network, sums, confidence);
+        Ranks ranks = Ranks.Of(network, diagonal);
+        InBatches(network.NodeCount, BatchRows, cancel, (start, count) =>
+        {
+            Array node = LabelColumns.New(network.Labels, count);
+            long[] component = new long[count], degree = new long[count];
+            long[] rank = new long[count], rankLower = new long[count], rankUpper = new long[count];
+            double[] strength = new double[count], value = new double[count], error = new double[count];
+            double[] total = new double[count], closeness = new double[count];
+            string[] method = new string[count];
+            for (int i = 0; i < count; i++)
+            {
+                int u = start + i;
+                int c = componentOf[u];
+                int n = network.Components[c].Nodes;
+                LabelColumns.Put(network.Labels, node, i, u);
+                component[i] = c;
+                degree[i] = network.Degree(u);
+                strength[i] = network.Strengths[u];
+                value[i] = diagonal[u].Value;
+                error[i] = diagonal[u].StandardError;
+                total[i] = (n * diagonal[u].Value) + trace[c];
+                closeness[i] = n == 1 ? 0 : (n - 1) / total[i]; // by convention 0 for a single node
+                rank[i] = ranks.Rank[u];
+                rankLower[i] = ranks.Lower[u];
+                rankUpper[i] = ranks.Upper[u];
+                method[i] = n == 1 ? "exact" : "probe";
+            }
+            writer.Write(new RowBatch(
+                count, [node, component, degree, strength, value, error, total, closeness, rank, rankLower, rankUpper, method]));
+        });
+    }
+
+    /// <summary>The coordinates table.</summary>
+    public static void WriteCoordinates(Network network, Coordinates coordinates, int probes, ITableWriter writer, CancellationToken cancel)
+    {
+        int batch = Math.Max(1, BatchRows * 16 / probes); // about 64 MB of coordinates at a time
+        InBatches(network.NodeCount, Math.Min(batch, BatchRows), cancel, (start, count) =>
+        {
+            Array node = LabelColumns.New(network.Labels, count);
+            float[] r = new float[(long)count * probes];
+            for (int i = 0; i < count; i++)
+            {
+                LabelColumns.Put(network.Labels, node, i, start + i);
+                coordinates.CopyTo(start + i, r.AsSpan(i * probes, probes));
+            }
+            writer.Write(new RowBatch(count, [node, network.Strengths.AsSpan(start, count).ToArray(), r]));
+        });
+    }
+
+    private static Estimate[] Diagonals(Network network, NodeSums sums, double confidence)
+    {
+        double quantile = Quantiles.Normal(confidence);
+        Estimate[] diagonal = new Estimate[network.NodeCount];
+        foreach (Component component in network.Components)
+        {
+            for (int u = component.Start; u < component.End; u++)
+                diagonal[u] = sums.Diagonal(u, component.Nodes, quantile);
+        }
+        return diagonal;
+    }
+
+    private static void InBatches(int rows, int batch, CancellationToken cancel, Action<int, int> write)
+    {
+        for (int start = 0; start < rows; start += batch)
+        {
+            cancel.ThrowIfCancellationRequested();
+            write(start, Math.Min(batch, rows - start));
+        }
+    }
+
+    private sealed record Ranks(int[] Rank, int[] Lower, int[] Upper)
+    {
+        // A node of lower l_u is closer to all others: total resistance is n l_u + tr L+. Those surely closer are the ones
+        // whose interval ends below this one's; those perhaps closer begin below its end.
+        public static Ranks Of(Network network, Estimate[] diagonal)
+        {
+            int n = network.NodeCount;
+            Ranks ranks = new(new int[n], new int[n], new int[n]);
+            foreach (Component component in network.Components)
+            {
+                int size = component.Nodes;
+                int[] nodes = new int[size];
+                double[] values = new double[size], lower = new double[size], upper = new double[size];
+                for (int i = 0; i < size; i++)
+                {
+                    nodes[i] = component.Start + i;
+                    Estimate l = diagonal[component.Start + i];
+                    (values[i], lower[i], upper[i]) = (l.Value, l.Lower, l.Upper);
+                }
+                Array.Sort(values, nodes);
+                Array.Sort(lower);
+                Array.Sort(upper);
+                for (int i = 0; i < size; i++)
+                {
+                    Estimate l = diagonal[nodes[i]];
+                    ranks.Rank[nodes[i]] = i + 1;
+                    ranks.Lower[nodes[i]] = 1 + CountBelow(upper, l.Lower, orEqual: false);
+                    ranks.Upper[nodes[i]] = CountBelow(lower, l.Upper, orEqual: true);
+                }
+            }
+            return ranks;
+        }
+
+        private static int CountBelow(double[] sorted, double value, bool orEqual)
+        {
+            int low = 0, high = sorted.Length;
+            while (low < high)
+            {
+                int middle = (low + high) / 2;
+                if (sorted[middle] < value || (orEqual && sorted[middle] == value))
+                    low = middle + 1;
+                else
+                    high = middle;
+            }
+            return low;
+        }
+    }
+}

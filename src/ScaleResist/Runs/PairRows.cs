@@ -1,0 +1,33 @@
+// The pairs table, in the order of the request.
+
+using ScaleResist.Estimating;
+using ScaleResist.Graphs;
+
+namespace ScaleResist.Runs;
+
+/// <summary>Writes one row a requested pair.</summary>
+internal static class PairRows
+{
+    /// <summary>Writes all pairs, ends as the user gave them.</summary>
+    public static void Write(
+        Network network, IReadOnlyList<(int U, int V)> pairs, PairSums sums, double confidence, ITableWriter writer)
+    {
+        const int BatchRows = 1 << 20;
+        double quantile = Quantiles.Normal(confidence);
+        for (int first = 0; first < pairs.Count; first += BatchRows)
+        {
+            int count = Math.Min(BatchRows, pairs.Count - first);
+            Array source = LabelColumns.New(network.Labels, count), target = LabelColumns.New(network.Labels, count);
+            double[] value = new double[count], error = new double[count], lower = new double[count], upper = new double[count];
+            string[] method = new string[count];
+            for (int i = 0; i < count; i++)
+            {
+                LabelColumns.Put(network.Labels, source, i, pairs[first + i].U);
+                LabelColumns.Put(network.Labels, target, i, pairs[first + i].V);
+                (Estimate resistance, method[i]) = sums.Estimate(first + i, quantile);
+                (value[i], error[i], lower[i], upper[i]) = resistance;
+            }
+            writer.Write(new RowBatch(count, [source, target, value, error, lower, upper, method]));
+        }
+    }
+}

@@ -1,0 +1,125 @@
+// Preconditioned conjugate gradient on a whole panel at once: every column has its own scalars, all columns share each pass.
+// Invariant: a column that has stopped gets step 0 and direction factor 0, so its x does not change while others go on.
+//
+//   q = L p          a = r's / p'q      (Multiply: reads p and the adjacency, writes q)
+//   x += a p         r -= a q           (Step: reads x, r, p, q, writes x, r; gives |r|^2)
+//   s = M r          b = new r's / old  (Apply: reads r, writes s; Jacobi: 2 panels)
+//   p = s + b p                         (Direction: reads s, p, writes p)
+//
+// 11 panel passes an iteration beside the gathers of L p. s lives in q's memory, which is free by then.
+
+using System.Numerics;
+using ScaleResist.Graphs;
+using ScaleResist.Kernels;
+
+namespace ScaleResist.Solving;
+
+/// <summary>Lockstep conjugate gradient for L x = b on one component, W columns at a time.</summary>
+public static class ConjugateGradient
+{
+    /// <summary>
+    /// Solves to |b - Lx| &lt;= tolerance |b| column by column. Each column of b must sum to zero over the component; x is centred.
+    /// The recurrence aims a fifth below the tolerance, so that the true residual, recomputed at the end, can meet it.
+    /// </summary>
+    /// <param name="network">The network.</param>
+    /// <param name="preconditioner">M.</param>
+    /// <param name="b">Right-hand sides, n x W.</param>
+    /// <param name="x">Solutions, n x W; what it held is overwritten.</param>
+    /// <param name="workspace">Three panels of n rows.</param>
+    /// <param name="component">The rows to work on.</param>
+    /// <param name="limits">When to stop.</param>
+    /// <param name="report">Receives iterations, reasons and true residuals.</param>
+    /// <param name="cancel">Checked once an iteration.</param>
+    public static void Solve<T>(
+        Network network,
+        IPreconditioner<T> preconditioner,
+        Panel<T> b,
+        Panel<T> x,
+        GradientWorkspace<T> workspace,
+        Component component,
+        SolveLimits limits,
+        SolveReport report,
+        CancellationToken cancel)
+        where T : unmanaged, INumber<T>
+    {
+        (int start, int end) = (component.Start, component.End);
+        Panel<T> r = workspace.R, p = workspace.P, q = workspace.Q;
+        Clear(x, start, end);
+        LaneSums bb = PanelKernels.Residual(network, b, x, start, end); // x = 0, so this is |b|^2
+        Copy(b, r, start, end);
+        LaneSums rs = preconditioner.Apply(r, q, start, end);
+        Copy(q, p, start, end);
+
+        LaneSums target = default;
+        int running = 0;
+        uint active = 0;
+        for (int lane = 0; lane < Panel<T>.Width; lane++)
+        {
+            target[lane] = limits.Tolerance * limits.Tolerance * 0.64 * bb[lane];
+            report.Reasons[lane] = bb[lane] > 0 ? StopReason.IterationLimit : StopReason.ZeroRightHandSide;
+            if (bb[lane] > 0)
+            {
+                active |= 1u << lane;
+                running++;
+            }
+        }
+
+        int iteration = 0;
+        while (running > 0 && iteration < limits.MostIterations)
+        {
+            cancel.ThrowIfCancellationRequested();
+            iteration++;
+            LaneSums pq = PanelKernels.Multiply(network, p, q, start, end);
+            LaneSums a = default;
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                if ((active & (1u << lane)) == 0)
+                    continue;
+                a[lane] = rs[lane] / pq[lane];
+                if (!(pq[lane] > 0 && double.IsFinite(a[lane])))
+                    Stop(lane, StopReason.Breakdown, ref a);
+            }
+            LaneSums rr = PanelKernels.Step(x, r, p, q, a, start, end);
+            LaneSums newRs = preconditioner.Apply(r, q, start, end);
+            LaneSums beta = default;
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                if ((active & (1u << lane)) == 0)
+                    continue;
+                beta[lane] = newRs[lane] / rs[lane];
+                rs[lane] = newRs[lane];
+                if (rr[lane] <= target[lane])
+                    Stop(lane, StopReason.Converged, ref beta);
+                else if (!(beta[lane] > 0 && double.IsFinite(beta[lane])))
+                    Stop(lane, StopReason.Breakdown, ref beta);
+            }
+            if (running > 0)
+                PanelKernels.Direction(p, q, beta, start, end);
+        }
+
+        report.Iterations = iteration;
+        LaneSums residual = PanelKernels.Residual(network, b, x, start, end);
+        for (int lane = 0; lane < Panel<T>.Width; lane++)
+            report.Residuals[lane] = bb[lane] > 0 ? Math.Sqrt(residual[lane] / bb[lane]) : 0;
+        PanelKernels.Centre(x, start, end);
+
+        void Stop(int lane, StopReason reason, ref LaneSums factors)
+        {
+            report.Reasons[lane] = reason;
+            factors[lane] = 0;
+            active &= ~(1u << lane);
+            running--;
+        }
+    }
+
+    private static unsafe void Clear<T>(Panel<T> panel, int start, int end)
+        where T : unmanaged =>
+        System.Runtime.InteropServices.NativeMemory.Clear(panel.Pointer + ((long)start * Panel<T>.Width), (nuint)(end - start) * 64);
+
+    private static unsafe void Copy<T>(Panel<T> from, Panel<T> to, int start, int end)
+        where T : unmanaged
+    {
+        long offset = (long)start * Panel<T>.Width;
+        Buffer.MemoryCopy(from.Pointer + offset, to.Pointer + offset, (end - start) * 64L, (end - start) * 64L);
+    }
+}

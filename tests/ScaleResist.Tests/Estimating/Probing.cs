@@ -1,0 +1,65 @@
+// Probed estimates of a whole network for tests, with plain projection on the same probes as the yardstick.
+
+using ScaleResist.Estimating;
+using ScaleResist.Graphs;
+using ScaleResist.Solving;
+
+namespace ScaleResist.Tests.Estimating;
+
+internal sealed class Probing
+{
+    private readonly LinkSums sums;
+    private readonly double[] plain;
+
+    public Probing(Network network, int probes, ulong seed, double tolerance = 1e-5, double[]? weights = null)
+    {
+        Network = network;
+        Bridges = Bridges.Find(network);
+        sums = new LinkSums(network, Bridges);
+        Nodes = new NodeSums(network, weights);
+        plain = new double[network.LinkCount];
+        LaplacianSolver solver = new(network);
+        using ProbePanel panel = new(network, seed);
+        using GradientWorkspace<float> workspace = new(network.NodeCount);
+        for (int i = 0; i < ProbePanel.CountFor(probes); i++)
+        {
+            panel.Draw(i, probes, 1);
+            solver.Solve(panel.B, panel.Z, panel.Probes, tolerance, workspace, default);
+            sums.Add(panel, 1);
+            Nodes.Add(panel, 1);
+            AddPlain(panel, probes);
+        }
+    }
+
+    public Network Network { get; }
+
+    public Bridges Bridges { get; }
+
+    public NodeSums Nodes { get; }
+
+    /// <summary>mean (z_u - z_v)^2 by link: plain projection.</summary>
+    public IReadOnlyList<double> Plain => plain;
+
+    public LinkResult[] Links(double confidence = 0.95)
+    {
+        LinkResult[] links = new LinkResult[Network.LinkCount];
+        new LinkResistances(Network, Bridges, sums, confidence).Fill(0, links);
+        return links;
+    }
+
+    private void AddPlain(ProbePanel panel, int probes)
+    {
+        long link = 0;
+        for (int u = 0; u < Network.NodeCount; u++)
+        {
+            for (long k = Network.FirstLaterArc(u); k < Network.RowStart[u + 1]; k++, link++)
+            {
+                for (int j = 0; j < panel.Probes; j++)
+                {
+                    double difference = panel.Z.Row(u)[j] - panel.Z.Row(Network.Neighbours[k])[j];
+                    plain[link] += difference * difference / probes;
+                }
+            }
+        }
+    }
+}

@@ -1,0 +1,6 @@
+namespace ScaleResist.Tests;
+
+internal static class TestData
+{
+    public static string Path(string file) => System.IO.Path.Combine(AppContext.BaseDirectory, "data", file);
+}
