@@ -5,11 +5,6 @@ using ScaleResist.Runs;
 
 namespace ScaleResist.Cli.Commands;
 
-/// <summary>Rows that cleaning changed.</summary>
-/// <param name="SelfLoops">Links from a node to itself that dropped out.</param>
-/// <param name="ParallelLinks">Rows that were merged into another link.</param>
-internal sealed record CleaningFacts(long SelfLoops, long ParallelLinks);
-
 /// <summary>What a finished estimate leaves beside its tables.</summary>
 internal sealed record EstimateOutcome(InputFacts Input, CleaningFacts Cleaning, EstimateSummary Summary);
 

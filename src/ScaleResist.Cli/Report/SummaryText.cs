@@ -1,5 +1,6 @@
 // What a person reads after a run, in at most 25 lines: what was read, what came out and how far to trust it, where it is.
 
+using ScaleResist.Estimating;
 using ScaleResist.Graphs;
 using ScaleResist.Runs;
 
@@ -55,7 +56,7 @@ internal static class SummaryText
                 + (solver.Retried > 0 ? $", {Numbers.Count(solver.Retried)} again in doubles" : ""));
         }
         yield return Entry("time", $"{Numbers.Duration((record.Finished - record.Started).TotalSeconds)}: "
-            + string.Join(", ", record.Phases.Select(p => $"{p.Name} {Numbers.Duration(p.Seconds)}")));
+            + string.Join(", ", ShortPhases(record.Phases).Select(p => $"{p.Name} {Numbers.Duration(p.Seconds)}")));
         yield return Entry("memory", $"{Numbers.Bytes(record.PeakResidentBytes)} at the peak, {Numbers.Many(record.Threads, "thread")}");
         yield return Entry("tables", published + ": " + string.Join(", ", record.Rows.Select(t => $"{t.Key} {Numbers.Count(t.Value)}")));
         yield return Entry("query", Query(published, record.Rows.Keys));
@@ -71,6 +72,11 @@ internal static class SummaryText
             ? $"FROM '{files}' ORDER BY spanning_probability DESC LIMIT 20;"
             : $"FROM '{files}' LIMIT 20;";
     }
+
+    // The tables' writing in one sum; run.json has them one by one.
+    private static IEnumerable<PhaseTime> ShortPhases(IEnumerable<PhaseTime> phases) => phases
+        .GroupBy(p => p.Name.StartsWith("writing ", StringComparison.Ordinal) ? "writing" : p.Name)
+        .Select(g => new PhaseTime(g.Key, g.Sum(p => p.Seconds)));
 
     private static string Entry(string name, string text) => $"{name,-11}{text}";
 

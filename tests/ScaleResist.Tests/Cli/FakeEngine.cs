@@ -1,6 +1,7 @@
 // An engine that estimates nothing: it pushes rows that a test can compute, in every kind of column, at the pace asked for.
 
 using ScaleResist.Cli.Commands;
+using ScaleResist.Estimating;
 using ScaleResist.Graphs;
 using ScaleResist.Runs;
 
