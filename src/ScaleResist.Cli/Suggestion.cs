@@ -5,9 +5,11 @@ namespace ScaleResist.Cli;
 /// <summary>Suggests a known name for an unknown one.</summary>
 internal static class Suggestion
 {
-    /// <summary>The nearest known name by edit distance (Levenshtein), or null where none is near.</summary>
-    public static string? For(string name, IEnumerable<string> known)
+    /// <summary>The name that was cut short, or the nearest by edit distance (Levenshtein), or null where none is near.</summary>
+    public static string? For(string name, IReadOnlyCollection<string> known)
     {
+        if (name.Length >= 3 && known.FirstOrDefault(k => k.StartsWith(name, StringComparison.Ordinal)) is string whole)
+            return whole;
         (string Name, int Distance) best = known.Select(k => (k, Distance(name, k))).MinBy(k => k.Item2);
         return best.Distance <= Math.Max(1, name.Trim('-').Length / 3) ? best.Name : null;
     }

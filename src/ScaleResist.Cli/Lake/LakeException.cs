@@ -9,7 +9,6 @@ internal sealed class LakeException : Exception
     private const int NoSpaceLeft = 28;
     private const int ReadOnlyFileSystem = 30;
     private const int QuotaExceeded = 122;
-    private const int FileTooLarge = 27;
     private const int WindowsDiskFull = unchecked((int)0x80070070);
 
     public LakeException(string path, string problem, string mend, Exception? inner = null)
@@ -18,7 +17,7 @@ internal sealed class LakeException : Exception
     }
 
     /// <summary>Whether an error comes from the file system, so that <see cref="From"/> can name its mend.</summary>
-    public static bool IsFileSystemError(Exception error) => error is IOException or UnauthorizedAccessException;
+    public static bool IsFileSystemError(Exception error) => error is IOException or UnauthorizedAccessException || IsFileTooLarge(error);
 
     /// <summary>Says what a file system error means for the lake.</summary>
     public static LakeException From(string path, Exception error) => error switch
@@ -29,7 +28,7 @@ internal sealed class LakeException : Exception
             "free some space or choose another --lake, then start the same command again", error),
         IOException { HResult: QuotaExceeded } => new(path, "the disk quota is used up",
             "free some space or choose another --lake, then start the same command again", error),
-        IOException { HResult: FileTooLarge } => new(path, "the file would be larger than the limit set for this process",
+        _ when IsFileTooLarge(error) => new(path, "the file would be larger than the limit set for this process",
             "raise the limit (ulimit -f), then start the same command again", error),
         IOException { HResult: ReadOnlyFileSystem } => new(path, "the file system is read-only",
             "choose another --lake", error),
@@ -37,4 +36,8 @@ internal sealed class LakeException : Exception
             "check --lake, then start the same command again", error),
         _ => new(path, $"writing failed ({error.Message.TrimEnd('.')})", "check the disk and --lake, then start the same command again", error),
     };
+
+    // .NET turns EFBIG into this odd exception.
+    private static bool IsFileTooLarge(Exception error) =>
+        error is ArgumentOutOfRangeException { ParamName: "value", Source: "System.Private.CoreLib" };
 }

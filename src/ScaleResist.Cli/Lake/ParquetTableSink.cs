@@ -14,7 +14,7 @@ internal sealed class ParquetTableSink : ITableSink
     private readonly IReadOnlyDictionary<string, string> metadata;
     private readonly int rowsPerPart;
     private readonly SemaphoreSlim slots;
-    private readonly Dictionary<string, TableWriter> writers = [];
+    private readonly List<(string Name, TableWriter Writer)> writers = [];
 
     /// <param name="folder">The staging folder.</param>
     /// <param name="metadata">Key-value pairs for every part: where the rows come from.</param>
@@ -29,13 +29,14 @@ internal sealed class ParquetTableSink : ITableSink
         slots = new SemaphoreSlim(Math.Clamp(encoders, 1, MostEncoders));
     }
 
-    /// <summary>Rows by table, of the tables completed so far.</summary>
-    public IReadOnlyDictionary<string, long> Rows
+    /// <summary>Rows by table, in the order of opening. Every table must be complete.</summary>
+    public IReadOnlyDictionary<string, long> CompleteRows()
     {
-        get
+        lock (writers)
         {
-            lock (writers)
-                return writers.Where(w => w.Value.IsComplete).ToDictionary(w => w.Key, w => w.Value.RowCount);
+            if (writers.Find(w => !w.Writer.IsComplete).Name is string open)
+                throw new InvalidOperationException($"Table '{open}' was not completed.");
+            return new OrderedDictionary<string, long>(writers.Select(w => KeyValuePair.Create(w.Name, w.Writer.RowCount)));
         }
     }
 
@@ -53,7 +54,7 @@ internal sealed class ParquetTableSink : ITableSink
         Dictionary<string, string> named = new(metadata) { ["scaleresist.table"] = table.Name };
         TableWriter writer = new(new PartEncoder(table, named), path, slots, rowsPerPart);
         lock (writers)
-            writers.Add(table.Name, writer);
+            writers.Add((table.Name, writer));
         return writer;
     }
 
@@ -62,7 +63,7 @@ internal sealed class ParquetTableSink : ITableSink
     {
         lock (writers)
         {
-            foreach (TableWriter writer in writers.Values)
+            foreach ((_, TableWriter writer) in writers)
                 writer.WaitForIdle();
         }
     }
@@ -131,15 +132,16 @@ internal sealed class ParquetTableSink : ITableSink
             pendingRows = 0;
             slots.Wait();
             string file = Path.Combine(path, $"part-{parts.Count:00000}.parquet");
-            parts.Add(Task.Run(() => Encode(file, segments)));
+            parts.Add(Task.Factory.StartNew(() => Encode(file, segments), CancellationToken.None,
+                TaskCreationOptions.LongRunning, TaskScheduler.Default));
         }
 
-        private async Task Encode(string file, RowSegment[] segments)
+        private void Encode(string file, RowSegment[] segments)
         {
             try
             {
                 if (Volatile.Read(ref failure) is null)
-                    await encoder.WriteAsync(file, segments);
+                    encoder.Write(file, segments);
             }
             catch (Exception error)
             {

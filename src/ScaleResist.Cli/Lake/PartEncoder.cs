@@ -1,6 +1,6 @@
 // Turns rows into one Parquet part: one row group, zstd, flushed to disk before it counts as written.
 // Integers are delta-packed (which keeps min/max for filters), doubles byte-split (smaller and faster, without min/max),
-// texts go to a dictionary where they repeat.
+// and the few values of `method` go to a dictionary.
 
 using System.IO.Compression;
 using System.Numerics;
@@ -60,22 +60,24 @@ internal sealed class PartEncoder
         return width;
     }
 
-    /// <summary>Writes a part.</summary>
-    public async Task WriteAsync(string path, IReadOnlyList<RowSegment> segments)
+    /// <summary>Writes a part on the calling thread.</summary>
+    public void Write(string path, IReadOnlyList<RowSegment> segments)
     {
-        await using FileStream file = new(path, FileMode.CreateNew, FileAccess.Write, FileShare.Read, bufferSize: 1 << 16);
-        await using (ParquetWriter writer = await ParquetWriter.CreateAsync(schema, file, Options()))
-        {
-            writer.CustomMetadata = metadata;
-            if (segments.Count > 0)
-            {
-                using ParquetRowGroupWriter group = writer.CreateRowGroup();
-                for (int i = 0; i < table.Columns.Count; i++)
-                    await WriteColumn(group, i, segments);
-                group.CompleteValidate();
-            }
-        }
+        using InlineFile file = new(path);
+        WriteAsync(file, segments).GetAwaiter().GetResult();
         file.Flush(flushToDisk: true);
+    }
+
+    private async Task WriteAsync(FileStream file, IReadOnlyList<RowSegment> segments)
+    {
+        await using ParquetWriter writer = await ParquetWriter.CreateAsync(schema, file, Options());
+        writer.CustomMetadata = metadata;
+        if (segments.Count == 0)
+            return;
+        using ParquetRowGroupWriter group = writer.CreateRowGroup();
+        for (int i = 0; i < table.Columns.Count; i++)
+            await WriteColumn(group, i, segments);
+        group.CompleteValidate();
     }
 
     private static Type ArrayType(ColumnDefinition column) => column.Kind switch
@@ -111,7 +113,8 @@ internal sealed class PartEncoder
             {
                 ColumnKind.Int64 => EncodingHint.DeltaBinaryPacked,
                 ColumnKind.Double or ColumnKind.FloatList => EncodingHint.ByteSplitStream,
-                ColumnKind.Text => EncodingHint.Dictionary,
+                // Labels are mostly distinct: a dictionary of them took three times as long and was larger.
+                ColumnKind.Text when table.Columns[i].Name == "method" => EncodingHint.Dictionary,
                 _ => null,
             };
             if (hint is EncodingHint known)
@@ -181,5 +184,28 @@ internal sealed class PartEncoder
         for (int i = 0; i < repetition.Length; i += width)
             repetition[i] = 0;
         return group.WriteAllPartsAsync(field, values, definition.AsMemory(), repetition.AsMemory(), CancellationToken.None);
+    }
+
+    // Asynchronous calls are done at once: an encoder must not wait for a pool thread while the pool's threads wait for it.
+    private sealed class InlineFile(string path)
+        : FileStream(path, FileMode.CreateNew, FileAccess.Write, FileShare.Read, bufferSize: 1 << 16)
+    {
+        public override ValueTask WriteAsync(ReadOnlyMemory<byte> buffer, CancellationToken cancellationToken = default)
+        {
+            Write(buffer.Span);
+            return ValueTask.CompletedTask;
+        }
+
+        public override Task WriteAsync(byte[] buffer, int offset, int count, CancellationToken cancellationToken)
+        {
+            Write(buffer, offset, count);
+            return Task.CompletedTask;
+        }
+
+        public override Task FlushAsync(CancellationToken cancellationToken)
+        {
+            Flush();
+            return Task.CompletedTask;
+        }
     }
 }

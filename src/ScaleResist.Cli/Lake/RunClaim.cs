@@ -9,6 +9,8 @@ namespace ScaleResist.Cli.Lake;
 /// <summary>The exclusive right to write a run; given back by <see cref="Dispose"/>, left behind by a crash.</summary>
 internal sealed class RunClaim : IDisposable
 {
+    private const int MostAttempts = 400;
+    private const int PauseMilliseconds = 5;
     private readonly string file;
     private readonly Holder holder;
 
@@ -23,7 +25,7 @@ internal sealed class RunClaim : IDisposable
     {
         Holder me = Holder.Me();
         string folder = Path.GetDirectoryName(file)!;
-        for (int attempt = 0; attempt < 200; attempt++)
+        for (int attempt = 0; attempt < MostAttempts; attempt++)
         {
             try
             {
@@ -39,9 +41,8 @@ internal sealed class RunClaim : IDisposable
             }
             catch (IOException) when (File.Exists(file))
             {
-                if (TryTakeOver(file, runId, me))
+                if (Judge(file, runId, me))
                     return new RunClaim(file, me);
-                Thread.Sleep(5);
             }
         }
         throw new LakeException(file, $"run '{runId}' is being claimed by another process", "wait, or choose another --run-id");
@@ -50,19 +51,43 @@ internal sealed class RunClaim : IDisposable
     /// <summary>Gives the claim back.</summary>
     public void Dispose()
     {
-        if (Holder.Read(file)?.Token == holder.Token)
-            File.Delete(file);
+        for (int attempt = 0; attempt < MostAttempts; attempt++)
+        {
+            try
+            {
+                Holder? current;
+                using (FileStream stream = new(file, FileMode.Open, FileAccess.Read, FileShare.ReadWrite | FileShare.Delete))
+                    current = Holder.Read(stream);
+                if (current?.Token == holder.Token)
+                    File.Delete(file);
+                return;
+            }
+            catch (Exception error) when (error is FileNotFoundException or DirectoryNotFoundException)
+            {
+                return; // A person removed it.
+            }
+            catch (IOException)
+            {
+                Thread.Sleep(PauseMilliseconds); // Another process is judging it.
+            }
+        }
     }
 
-    private static bool TryTakeOver(string file, string runId, Holder me)
+    // Looks at an existing claim under its lock. True: it is ours. False: look again, it is gone, being judged, or was dead
+    // and now names us. The look after that matters: the holder may have removed the file between our open and our lock, and
+    // then we wrote to a file without a name.
+    private static bool Judge(string file, string runId, Holder me)
     {
         try
         {
             using FileStream stream = new(file, FileMode.Open, FileAccess.ReadWrite, FileShare.None);
             Holder? other = Holder.Read(stream);
+            if (other?.Token == me.Token)
+                return true;
             if (other is not null && !other.IsDead())
             {
-                throw new LakeException(file, $"run '{runId}' is being written by process {other.Process} on {other.Host} since {other.Since:u}",
+                throw new LakeException(file,
+                    $"run '{runId}' is being written by process {other.Process} on {other.Host} since {other.Since:u}",
                     "wait for it, choose another --run-id, or remove this file if that process is gone");
             }
             stream.SetLength(0);
@@ -70,29 +95,15 @@ internal sealed class RunClaim : IDisposable
         }
         catch (IOException)
         {
-            return false; // Gone, or another process is judging it: look again.
+            Thread.Sleep(PauseMilliseconds);
         }
-        // The holder may have removed the file between our open and our lock: then we wrote to a file without a name.
-        return Holder.Read(file)?.Token == me.Token;
+        return false;
     }
 
     private sealed record Holder(int Process, string Host, string ProcessStart, DateTime Since, string Token)
     {
         public static Holder Me() => new(Environment.ProcessId, Environment.MachineName, StartOf(Environment.ProcessId),
             DateTime.UtcNow, Guid.NewGuid().ToString("N"));
-
-        public static Holder? Read(string file)
-        {
-            try
-            {
-                using FileStream stream = new(file, FileMode.Open, FileAccess.Read, FileShare.ReadWrite | FileShare.Delete);
-                return Read(stream);
-            }
-            catch (IOException)
-            {
-                return null;
-            }
-        }
 
         public static Holder? Read(FileStream stream)
         {

@@ -68,6 +68,7 @@ internal sealed partial class RunFolder
     {
         if (File.Exists(Lake))
             throw new LakeException(Lake, "the lake is a file", "name a folder with --lake");
+        RefuseForeignFolder();
         bool createdLake = !Directory.Exists(Lake);
         RunClaim? claim = null;
         try
@@ -84,6 +85,16 @@ internal sealed partial class RunFolder
             if (LakeException.IsFileSystemError(error))
                 throw LakeException.From(Lake, error);
             throw;
+        }
+    }
+
+    // A folder without _SUCCESS was not published by this program, and a rename onto it would fail in the end.
+    internal void RefuseForeignFolder()
+    {
+        if (Directory.Exists(Published) && !IsPublished)
+        {
+            throw new LakeException(Published, "a folder of this name is there, but no finished run",
+                "move it away or choose another --run-id");
         }
     }
 
@@ -123,11 +134,7 @@ internal sealed class StagedRun : IDisposable
             foreach (string table in Directory.EnumerateDirectories(Path))
                 Durable.FlushFolder(table);
             Durable.FlushFolder(Path);
-            if (Directory.Exists(folder.Published))
-            {
-                throw new LakeException(folder.Published, "a folder of this name is already there",
-                    "move it away or choose another --run-id");
-            }
+            folder.RefuseForeignFolder();
             Directory.Move(Path, folder.Published);
             published = true;
             Durable.FlushFolder(folder.StagingRoot);

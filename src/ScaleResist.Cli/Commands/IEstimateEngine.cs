@@ -3,12 +3,7 @@
 using ScaleResist.Graphs;
 using ScaleResist.Runs;
 
-namespace ScaleResist.Cli.Estimate;
-
-/// <summary>Rows that cleaning changed.</summary>
-/// <param name="SelfLoops">Links from a node to itself that dropped out.</param>
-/// <param name="ParallelLinks">Rows that were merged into another link.</param>
-internal sealed record CleaningFacts(long SelfLoops, long ParallelLinks);
+namespace ScaleResist.Cli.Commands;
 
 /// <summary>What a finished estimate leaves beside its tables.</summary>
 internal sealed record EstimateOutcome(InputFacts Input, CleaningFacts Cleaning, EstimateSummary Summary);

@@ -1,6 +1,6 @@
 // The options of `estimate` as typed: text, nothing checked. What they mean is EstimateRequest's affair.
 
-namespace ScaleResist.Cli.Estimate;
+namespace ScaleResist.Cli.Commands;
 
 /// <summary>Raw options of <c>estimate</c>; null where not given.</summary>
 internal sealed record EstimateOptions

@@ -3,7 +3,7 @@
 using ScaleResist.Graphs;
 using ScaleResist.Runs;
 
-namespace ScaleResist.Cli.Estimate;
+namespace ScaleResist.Cli.Commands;
 
 /// <summary>What an <c>estimate</c> command asks for.</summary>
 internal sealed record EstimateRequest

@@ -2,7 +2,7 @@
 
 using System.Globalization;
 
-namespace ScaleResist.Cli.Estimate;
+namespace ScaleResist.Cli.Commands;
 
 /// <summary>Reads numbers with units.</summary>
 internal static class Units

@@ -6,7 +6,7 @@ using ScaleResist.Cli.Lake;
 using ScaleResist.Graphs;
 using ScaleResist.Runs;
 
-namespace ScaleResist.Cli.Estimate;
+namespace ScaleResist.Cli.Commands;
 
 /// <summary>Validates the options of <c>estimate</c>.</summary>
 internal static class EstimateValidation
@@ -135,6 +135,8 @@ internal static class EstimateValidation
             return "--want pairs needs the pairs; name their file with --pairs FILE";
         if (options.Pairs is not null)
             want |= Want.Pairs;
+        if (options.NodeWeights is not null && !want.HasFlag(Want.Index))
+            return "--node-weights serves the index table, which --want leaves out; add index to --want";
         return null;
     }
 

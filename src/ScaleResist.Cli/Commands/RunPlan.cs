@@ -1,0 +1,53 @@
+// A request as run.json keeps it, and what makes two requests the same run. Invariant: everything that can change a number in
+// the tables is in it; threads, the lake and the names of files (their digests are) are not.
+
+using System.Text.Json.Nodes;
+using ScaleResist.Graphs;
+
+namespace ScaleResist.Cli.Commands;
+
+/// <summary>Plans as JSON.</summary>
+internal static class RunPlan
+{
+    // Names of files: for people, not for comparison.
+    private static readonly string[] NotCompared = ["pairs", "node_weights"];
+
+    /// <summary>The plan of a request; reads the pairs and node weights for their digests.</summary>
+    /// <exception cref="InputException">One of these files cannot be read.</exception>
+    public static JsonObject Of(EstimateRequest request, CancellationToken interrupted) => new()
+    {
+        ["verb"] = "estimate",
+        ["want"] = string.Join(',', EstimateValidation.NamesOf(request.Plan.Want)),
+        ["route"] = "probe",
+        ["probes"] = request.Plan.Probes,
+        ["confidence"] = request.Plan.Confidence,
+        ["seed"] = request.Plan.Seed,
+        ["tolerance"] = request.Plan.Tolerance,
+        // Without --weights a third column is refused, so a run that finished had none.
+        ["weights"] = request.Reading.Weights is WeightMeaning.Unsaid ? "none" : request.Reading.Weights.ToString().ToLowerInvariant(),
+        ["columns"] = request.Reading.Columns is { } columns ? string.Join(',', columns) : null,
+        ["pairs"] = request.Pairs,
+        ["pairs_sha256"] = request.Pairs is string pairs ? InputDigest.Sha256(pairs, interrupted) : null,
+        ["node_weights"] = request.NodeWeights,
+        ["node_weights_sha256"] = request.NodeWeights is string weights ? InputDigest.Sha256(weights, interrupted) : null,
+    };
+
+    /// <summary>The first difference between a finished run's plan and a new one, or null: <c>--probes 64, not 16</c>.</summary>
+    public static string? Difference(JsonObject finished, JsonObject asked)
+    {
+        foreach ((string key, JsonNode? value) in asked)
+        {
+            string before = Text(finished[key]);
+            string now = Text(value);
+            if (NotCompared.Contains(key) || before == now)
+                continue;
+            string option = "--" + key.Replace("_sha256", "").Replace('_', '-');
+            return key.EndsWith("_sha256", StringComparison.Ordinal)
+                ? $"other content in {option}"
+                : $"{option} {before}, not {now}";
+        }
+        return null;
+    }
+
+    private static string Text(JsonNode? node) => node is null ? "(none)" : node.ToJsonString().Trim('"');
+}

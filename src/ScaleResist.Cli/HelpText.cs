@@ -1,0 +1,52 @@
+// Help that fits a screen of 80 by 40, each with one example that works as it stands.
+
+namespace ScaleResist.Cli;
+
+/// <summary>The texts of <c>--help</c>.</summary>
+internal static class HelpText
+{
+    public const string Program = """
+        scaleresist: resistance distances, spanning probabilities and the Kirchhoff
+        index of large networks, with error bars, as Parquet tables in a data lake.
+
+        Usage: scaleresist estimate NETWORK --lake DIR [options]
+               scaleresist estimate --help
+               scaleresist --version
+
+        Example: scaleresist estimate power.tsv --lake lake --probes 64
+
+        Exit codes: 0 done, 1 a fault of ours, 2 wrong command line, 3 bad input,
+        4 more memory or time than there is, 5 interrupted, 6 writing failed.
+
+        """;
+
+    public const string Estimate = """
+        scaleresist estimate NETWORK --lake DIR [options]
+
+        NETWORK is .csv .tsv .txt .edges (also .gz .zst), .mtx, or .parquet (file or
+        folder). Tables appear as DIR/run=ID/<table>/part-*.parquet in one step.
+
+          --lake DIR            folder of the lake; made where it is not there
+          --run-id ID           name of the run; else from the file's name and the time
+          --want LIST           index,components,nodes,links (all four unless said),
+                                pairs,coordinates; less is faster
+          --weights MEANING     none, conductance or resistance: what column 3 means
+          --columns SRC,DST[,W] columns by name or number
+          --pairs FILE          pairs of nodes whose resistance is wanted
+          --node-weights FILE   weights for the node-weighted Kirchhoff index
+          --route ROUTE         auto or probe
+          --probes K            4 to 4096 random probes (64 unless said); four times
+                                the probes halve the error and take four times as long
+          --confidence P        of the intervals (0.95 unless said)
+          --seed S              of the random signs (1 unless said)
+          --threads T           1 to 256 (all cores unless said); results are the same
+          --restart             discard what an unfinished run of this id left
+          --verbose             show the stack of a fault
+        Not in this version: --route exact, --target-error, --time-budget,
+        --memory-budget, --shard, --terminals.
+
+        Example: scaleresist estimate roads.csv --lake lake --columns from,to,km
+                 --weights resistance --want index,links --probes 64
+
+        """;
+}

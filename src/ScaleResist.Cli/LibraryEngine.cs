@@ -1,0 +1,37 @@
+// Joins the command to the library: read, build, estimate. The rows as read are given up before the estimate begins.
+
+using ScaleResist.Cli.Commands;
+using ScaleResist.Graphs;
+using ScaleResist.Runs;
+
+namespace ScaleResist.Cli;
+
+/// <summary>Estimates with the library.</summary>
+internal sealed class LibraryEngine : IEstimateEngine
+{
+    public EstimateOutcome Run(EstimateRequest request, Func<InputFacts, ITableSink> openSink, IRunObserver observer,
+        CancellationToken interrupted)
+    {
+        Network network = Load(request, observer, interrupted);
+        EstimateInputs inputs = new()
+        {
+            Pairs = request.Pairs is string pairs ? PairReader.Read(pairs, network.Labels, null, interrupted) : null,
+            NodeWeights = request.NodeWeights is string weights ? NodeWeightReader.Read(weights, network.Labels, null, interrupted) : null,
+        };
+        EstimateSummary summary = EstimateRun.Execute(network, request.Plan, inputs, openSink(network.Input), observer, interrupted);
+        return new EstimateOutcome(network.Input, network.Cleaning, summary);
+    }
+
+    private static Network Load(EstimateRequest request, IRunObserver observer, CancellationToken interrupted)
+    {
+        FileInfo file = new(request.Network);
+        observer.Begin("reading", file.Exists ? file.Length : null, "bytes");
+        EdgeList rows = EdgeListReader.Read(request.Network, request.Reading, bytes => observer.Report(bytes), interrupted);
+        observer.End();
+        interrupted.ThrowIfCancellationRequested();
+        observer.Begin("building", rows.Links.Count, "rows");
+        Network network = NetworkBuilder.Build(rows);
+        observer.End();
+        return network;
+    }
+}

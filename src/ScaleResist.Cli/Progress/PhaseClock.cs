@@ -1,0 +1,59 @@
+// Measures the phases of a run on their way to whatever shows them.
+
+using ScaleResist.Runs;
+
+namespace ScaleResist.Cli.Progress;
+
+/// <summary>Records the wall time of each phase; a phase that comes back adds up.</summary>
+internal sealed class PhaseClock(IRunObserver view, TimeProvider time) : IRunObserver
+{
+    private readonly List<PhaseTime> phases = [];
+    private readonly Lock gate = new();
+    private string? current;
+    private long since;
+
+    /// <summary>The phases so far, in order of first appearance.</summary>
+    public IReadOnlyList<PhaseTime> Phases
+    {
+        get
+        {
+            lock (gate)
+                return [.. phases];
+        }
+    }
+
+    public void Begin(string phase, double? total, string unit)
+    {
+        Stop();
+        lock (gate)
+        {
+            current = phase;
+            since = time.GetTimestamp();
+        }
+        view.Begin(phase, total, unit);
+    }
+
+    public void Report(double done) => view.Report(done);
+
+    public void End()
+    {
+        Stop();
+        view.End();
+    }
+
+    private void Stop()
+    {
+        lock (gate)
+        {
+            if (current is null)
+                return;
+            double seconds = time.GetElapsedTime(since).TotalSeconds;
+            int known = phases.FindIndex(p => p.Name == current);
+            if (known < 0)
+                phases.Add(new PhaseTime(current, seconds));
+            else
+                phases[known] = phases[known] with { Seconds = phases[known].Seconds + seconds };
+            current = null;
+        }
+    }
+}

@@ -1,0 +1,84 @@
+// What a person reads after a run, in at most 25 lines: what was read, what came out and how far to trust it, where it is.
+
+using ScaleResist.Estimating;
+using ScaleResist.Graphs;
+using ScaleResist.Runs;
+
+namespace ScaleResist.Cli.Report;
+
+/// <summary>The summary on standard output.</summary>
+internal static class SummaryText
+{
+    /// <summary>The lines of the summary.</summary>
+    /// <param name="record">The run's record.</param>
+    /// <param name="published">The folder of the run as the user would name it.</param>
+    public static IEnumerable<string> Of(RunRecord record, string published)
+    {
+        InputFacts input = record.Input;
+        yield return Entry("network", $"{input.Path} ({input.Form}, {Numbers.Bytes(input.Bytes)}): "
+            + $"{Numbers.Many(record.Network.Nodes, "node")}, {Numbers.Many(record.Network.Links, "link")}");
+        yield return Entry("cleaning", $"{Numbers.Many(record.Cleaning.SelfLoops, "self-loop")} dropped, "
+            + $"{Numbers.Many(record.Cleaning.ParallelLinks, "parallel link")} merged; {Numbers.Many(input.Rows, "row")}, "
+            + $"{Numbers.Many(input.CommentLines, "comment line")}, {(input.Header is null ? "no header" : "a header")}, "
+            + $"columns {string.Join(',', input.Columns)}");
+        IndexEntry? largest = record.Index.Count > 0 ? record.Index[0] : null;
+        yield return Entry("components", Numbers.Count(record.Network.Components)
+            + (largest is null ? "" : $", the largest with {Numbers.Many(largest.Nodes, "node")} and {Numbers.Many(largest.Links, "link")}")
+            + $"; {Numbers.Many(record.Network.Bridges, "bridge")}");
+        if (largest is not null)
+        {
+            Estimate index = largest.KirchhoffIndex;
+            double confidence = record.Plan["confidence"]?.GetValue<double>() ?? double.NaN;
+            yield return Entry("Kirchhoff", $"index {Numbers.Value(index.Value)}, {Numbers.Value(100 * confidence, 4)} % interval "
+                + $"{Numbers.Value(index.Lower)} to {Numbers.Value(index.Upper)}"
+                + (record.Network.Components > 1 ? " (largest component)" : "") + $"; mean resistance {Numbers.Value(largest.MeanResistance, 5)}");
+        }
+        if (record.Foster is FosterCheck foster)
+        {
+            yield return Entry("Foster", $"spanning probabilities sum to {Numbers.Value(foster.Sum, 7)}; nodes minus components "
+                + $"{Numbers.Count(foster.Expected)} ({Signed(100 * foster.RelativeDifference)} %)");
+        }
+        string heading = "critical";
+        foreach (CriticalLink link in record.CriticalLinks.Take(5))
+        {
+            string role = link.NodesCutOff is long cut
+                ? $"bridge, cuts off {Numbers.Many(cut, "node")}"
+                : $"spanning probability {Numbers.Value(link.SpanningProbability, 4)}";
+            yield return Entry(heading, $"{InputException.Show(link.Source)} - {InputException.Show(link.Target)}: {role}, resistance "
+                + $"{Numbers.Value(link.Resistance.Value, 5)}"
+                + (link.Resistance.StandardError > 0 ? $" +- {Numbers.Value(link.Resistance.StandardError, 2)}" : ""));
+            heading = "";
+        }
+        if (record.Solver is SolverFacts solver)
+        {
+            yield return Entry("solver", $"{solver.Preconditioner}, {Numbers.Many(solver.Columns, "right-hand side")}, at most "
+                + $"{Numbers.Many(solver.MostIterations, "iteration")}, residual {Numbers.Value(solver.LargestResidual, 2)}"
+                + (solver.Retried > 0 ? $", {Numbers.Count(solver.Retried)} again in doubles" : ""));
+        }
+        yield return Entry("time", $"{Numbers.Duration((record.Finished - record.Started).TotalSeconds)}: "
+            + string.Join(", ", ShortPhases(record.Phases).Select(p => $"{p.Name} {Numbers.Duration(p.Seconds)}")));
+        yield return Entry("memory", $"{Numbers.Bytes(record.PeakResidentBytes)} at the peak, {Numbers.Many(record.Threads, "thread")}");
+        yield return Entry("tables", published + ": " + string.Join(", ", record.Rows.Select(t => $"{t.Key} {Numbers.Count(t.Value)}")));
+        yield return Entry("query", Query(published, record.Rows.Keys));
+    }
+
+    /// <summary>A query to paste into DuckDB.</summary>
+    public static string Query(string published, IEnumerable<string> tables)
+    {
+        string[] names = [.. tables];
+        string? table = names.Contains("links") ? "links" : names.FirstOrDefault();
+        string files = Path.Combine(published, table ?? "*", "*.parquet").Replace("'", "''");
+        return table == "links"
+            ? $"FROM '{files}' ORDER BY spanning_probability DESC LIMIT 20;"
+            : $"FROM '{files}' LIMIT 20;";
+    }
+
+    // The tables' writing in one sum; run.json has them one by one.
+    private static IEnumerable<PhaseTime> ShortPhases(IEnumerable<PhaseTime> phases) => phases
+        .GroupBy(p => p.Name.StartsWith("writing ", StringComparison.Ordinal) ? "writing" : p.Name)
+        .Select(g => new PhaseTime(g.Key, g.Sum(p => p.Seconds)));
+
+    private static string Entry(string name, string text) => $"{name,-11}{text}";
+
+    private static string Signed(double percent) => percent.ToString("+0.000;-0.000;0", System.Globalization.CultureInfo.InvariantCulture);
+}
