@@ -145,9 +145,11 @@ internal sealed class ParquetColumn
         return wide;
     }
 
-    private InputException Null(int row) => fault(row, $"the column '{InputException.Show(column.Name)}' is null", "drop the row or fill it in");
+    private InputException Null(int row) =>
+        fault(row, $"the column '{InputException.Show(column.Name)}' is null", "drop the row or fill it in");
 
-    private static string NameOf(Type type) => type == typeof(ReadOnlyMemory<char>) ? "String" : type == typeof(byte[]) ? "Binary" : type.Name;
+    private static string NameOf(Type type) => type == typeof(ReadOnlyMemory<char>) ? "String"
+        : type == typeof(byte[]) || type == typeof(ReadOnlyMemory<byte>) ? "Binary" : type.Name;
 
     private static T[] Sized<T>(T[] buffer, int rows) => buffer.Length >= rows ? buffer : new T[rows];
 
