@@ -21,7 +21,8 @@ internal sealed class LibraryEngine : IEstimateEngine
                 ? NetworkInput.ReadNodeWeights(weights, network.Labels, ct: interrupted)
                 : null,
         };
-        EstimateSummary summary = EstimateRun.Execute(network, request.Plan, inputs, openSink(network.Input), observer, interrupted);
+        EstimateSummary summary =
+            EstimateRun.Execute(network, request.Plan, inputs, openSink(network.Input), observer, interrupted);
         return new EstimateOutcome(network.Input, network.Cleaning, summary);
     }
 
