@@ -11,6 +11,8 @@ namespace ScaleResist.Cli;
 /// <summary>Parses a command line and runs what it asks for.</summary>
 internal static class CommandLine
 {
+    private const string Start = "write scaleresist estimate NETWORK --lake DIR, or see scaleresist --help";
+
     // Verbs of the contract that later versions bring.
     private static readonly string[] LaterVerbs = ["survey", "tune", "impact", "distances", "lookup", "drift", "merge"];
 
@@ -19,10 +21,11 @@ internal static class CommandLine
     public static int Run(string[] args, CliHost host, CancellationToken interrupted)
     {
         if (args.Length == 0)
-            return Refuse(host, "no verb is given; start with: scaleresist estimate NETWORK --lake DIR, or see scaleresist --help");
+            return Refuse(host, "no verb is given; " + Start);
         if (args[0] is "--version")
         {
-            host.Out.WriteLine($"scaleresist {ProgramVersion.Number}{(ProgramVersion.Commit is string commit ? $" ({commit})" : "")}");
+            string commit = ProgramVersion.Commit is string known ? $" ({known})" : "";
+            host.Out.WriteLine($"scaleresist {ProgramVersion.Number}{commit}");
             return ExitCode.Done;
         }
         if (args[0] is "--help" or "-h" or "-?" or "help")
@@ -38,7 +41,8 @@ internal static class CommandLine
             return ExitCode.Done;
         }
         EstimateOptions? options = ParseEstimate(args, out string problem);
-        EstimateRequest? request = options is null ? null : EstimateValidation.Validate(options, host.Time.GetUtcNow(), out problem);
+        EstimateRequest? request = options is null ? null
+            : EstimateValidation.Validate(options, host.Time.GetUtcNow(), out problem);
         return request is null ? Refuse(host, problem) : new EstimateCommand(host).Run(request, interrupted);
     }
 
@@ -55,10 +59,10 @@ internal static class CommandLine
         if (LaterVerbs.Contains(verb))
             return $"'{shown}' is not in this version; it has: estimate";
         if (verb.StartsWith('-'))
-            return $"unknown option '{shown}' before the verb; write scaleresist estimate NETWORK --lake DIR, or see scaleresist --help";
+            return $"unknown option '{shown}' before the verb; {Start}";
         return Suggestion.For(verb, [.. LaterVerbs, "estimate"]) is string near
             ? $"unknown verb '{shown}'; did you mean {near}?"
-            : $"unknown verb '{shown}'; write scaleresist estimate NETWORK --lake DIR, or see scaleresist --help";
+            : $"unknown verb '{shown}'; {Start}";
     }
 
     private static EstimateOptions? ParseEstimate(string[] args, out string problem)
@@ -66,8 +70,8 @@ internal static class CommandLine
         Argument<string?> network = new("NETWORK") { Arity = ArgumentArity.ZeroOrOne };
         Dictionary<string, Option<string?>> named = [];
         Command verb = new("estimate") { network };
-        foreach (string name in (string[])["lake", "run-id", "want", "weights", "columns", "pairs", "node-weights", "terminals", "route",
-            "probes", "target-error", "confidence", "time-budget", "memory-budget", "seed", "threads", "shard"])
+        foreach (string name in (string[])["lake", "run-id", "want", "weights", "columns", "pairs", "node-weights", "terminals",
+            "route", "probes", "target-error", "confidence", "time-budget", "memory-budget", "seed", "threads", "shard"])
         {
             named[name] = new Option<string?>("--" + name);
             verb.Add(named[name]);
@@ -103,7 +107,8 @@ internal static class CommandLine
         }
         if (words.Count > 1)
         {
-            problem = $"'{InputException.Show(words[1])}' is one word too many; an estimate takes one network (quote names with spaces)";
+            problem = $"'{InputException.Show(words[1])}' is one word too many; "
+                + "an estimate takes one network (quote names with spaces)";
             return null;
         }
         if (parsed.Errors.Count > 0)

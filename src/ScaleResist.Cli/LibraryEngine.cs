@@ -1,6 +1,7 @@
 // Joins the command to the library: read, build, estimate. The rows as read are given up before the estimate begins.
 
 using ScaleResist.Cli.Commands;
+using ScaleResist.Cli.Lake;
 using ScaleResist.Graphs;
 using ScaleResist.Runs;
 
@@ -15,10 +16,13 @@ internal sealed class LibraryEngine : IEstimateEngine
         Network network = Load(request, observer, interrupted);
         EstimateInputs inputs = new()
         {
-            Pairs = request.Pairs is string pairs ? PairReader.Read(pairs, network.Labels, null, interrupted) : null,
-            NodeWeights = request.NodeWeights is string weights ? NodeWeightReader.Read(weights, network.Labels, null, interrupted) : null,
+            Pairs = request.Pairs is string pairs ? NetworkInput.ReadPairs(pairs, network.Labels, ct: interrupted) : null,
+            NodeWeights = request.NodeWeights is string weights
+                ? NetworkInput.ReadNodeWeights(weights, network.Labels, ct: interrupted)
+                : null,
         };
-        EstimateSummary summary = EstimateRun.Execute(network, request.Plan, inputs, openSink(network.Input), observer, interrupted);
+        EstimateSummary summary =
+            EstimateRun.Execute(network, request.Plan, inputs, openSink(network.Input), observer, interrupted);
         return new EstimateOutcome(network.Input, network.Cleaning, summary);
     }
 
@@ -26,7 +30,7 @@ internal sealed class LibraryEngine : IEstimateEngine
     {
         FileInfo file = new(request.Network);
         observer.Begin("reading", file.Exists ? file.Length : null, "bytes");
-        EdgeList rows = EdgeListReader.Read(request.Network, request.Reading, bytes => observer.Report(bytes), interrupted);
+        EdgeList rows = NetworkInput.Read(request.Network, request.Reading, bytes => observer.Report(bytes), interrupted);
         observer.End();
         interrupted.ThrowIfCancellationRequested();
         observer.Begin("building", rows.Links.Count, "rows");

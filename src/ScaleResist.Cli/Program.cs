@@ -36,7 +36,12 @@ internal static class Program
 
     // Parallel work wraps errors; the one that a user can mend is the one to show.
     private static Exception Cause(Exception error) => error is AggregateException many
-        ? many.Flatten().InnerExceptions.OrderBy(e => e is InputException or LakeException ? 0 : e is OperationCanceledException ? 2 : 1).First()
+        ? many.Flatten().InnerExceptions.MinBy(e => e switch
+        {
+            InputException or LakeException => 0,
+            OperationCanceledException => 2,
+            _ => 1,
+        }) ?? error
         : error;
 
     private static int Explain(Exception cause, Exception error, CliHost host, bool trace, CancellationToken interrupted)
@@ -48,7 +53,7 @@ internal static class Program
             OperationCanceledException when interrupted.IsCancellationRequested =>
                 (ExitCode.Interrupted, "interrupted: nothing was published; the same command starts the run again"),
             OutOfMemoryException => (ExitCode.Budget,
-                "not enough memory for this plan; ask for fewer --probes, --threads or tables in --want, or use a larger machine"),
+                "not enough memory for this plan; ask for fewer --probes, --threads or tables, or use a larger machine"),
             _ => (ExitCode.Fault, $"a fault of ours ({cause.GetType().Name}): {cause.Message.ReplaceLineEndings(" ")}; "
                 + "nothing was published. Please report it with the output of the same command with --verbose"),
         };

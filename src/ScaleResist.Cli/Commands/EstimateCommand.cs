@@ -46,8 +46,8 @@ internal sealed class EstimateCommand(CliHost host)
             sink?.WaitForIdle();
         }
         interrupted.ThrowIfCancellationRequested();
-        RunRecord record = RunRecord.Of(request, plan, outcome!, sink?.CompleteRows() ?? new Dictionary<string, long>(), clock!.Phases,
-            started, host.Time.GetUtcNow());
+        RunRecord record = RunRecord.Of(request, plan, outcome!, sink?.CompleteRows() ?? new Dictionary<string, long>(),
+            clock!.Phases, started, host.Time.GetUtcNow());
         string summary = string.Join(Environment.NewLine, SummaryText.Of(record, folder.Published));
         staged.Publish(record.ToJson());
         host.Out.WriteLine(summary);
@@ -80,7 +80,8 @@ internal sealed class EstimateCommand(CliHost host)
             return CommandLine.Refuse(host, $"--restart discards an unfinished run, and '{request.RunId}' is finished; {mend}");
         JsonObject? record = ReadRecord(folder.PublishedRecord);
         if (record?["plan"] is not JsonObject finished || record["input"]?["sha256"]?.ToString() is not string digest)
-            return CommandLine.Refuse(host, $"{folder.Published}: a run is there, but its {RunFolder.RecordName} cannot be read; {mend}");
+            return CommandLine.Refuse(host,
+                $"{folder.Published}: a run is there, but its {RunFolder.RecordName} cannot be read; {mend}");
         string? difference = RunPlan.Difference(finished, plan);
         if (difference is null && InputDigest.Sha256(request.Network, interrupted) != digest)
             difference = "a network of other content";

@@ -183,7 +183,8 @@ internal static class EstimateValidation
     {
         value = otherwise;
         return text is null
-            || (int.TryParse(text, NumberStyles.None, CultureInfo.InvariantCulture, out value) && value >= least && value <= most);
+            || (int.TryParse(text, NumberStyles.None, CultureInfo.InvariantCulture, out value)
+                && value >= least && value <= most);
     }
 
     private static bool TryFraction(string text, out double value) =>

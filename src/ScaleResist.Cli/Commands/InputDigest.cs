@@ -35,14 +35,16 @@ internal static class InputDigest
         }
         catch (Exception error) when (error is IOException or UnauthorizedAccessException)
         {
-            throw new InputException(path, null, $"cannot be read ({error.Message.TrimEnd('.')})", "check its permissions", error);
+            throw new InputException(
+                path, null, $"cannot be read ({error.Message.TrimEnd('.')})", "check its permissions", error);
         }
     }
 
     // The same parts, in the same order, as the Parquet reader takes.
     private static IEnumerable<string> Parts(string path) => Directory.Exists(path)
         ? Directory.EnumerateFiles(path)
-            .Where(file => file.EndsWith(".parquet", StringComparison.OrdinalIgnoreCase) && Path.GetFileName(file)[0] is not ('_' or '.'))
+            .Where(file => file.EndsWith(".parquet", StringComparison.OrdinalIgnoreCase)
+                && Path.GetFileName(file)[0] is not ('_' or '.'))
             .Order(StringComparer.Ordinal)
         : [path];
 }

@@ -24,7 +24,9 @@ internal static class RunPlan
         ["seed"] = request.Plan.Seed,
         ["tolerance"] = request.Plan.Tolerance,
         // Without --weights a third column is refused, so a run that finished had none.
-        ["weights"] = request.Reading.Weights is WeightMeaning.Unsaid ? "none" : request.Reading.Weights.ToString().ToLowerInvariant(),
+        ["weights"] = request.Reading.Weights is WeightMeaning.Unsaid
+            ? "none"
+            : request.Reading.Weights.ToString().ToLowerInvariant(),
         ["columns"] = request.Reading.Columns is { } columns ? string.Join(',', columns) : null,
         ["pairs"] = request.Pairs,
         ["pairs_sha256"] = request.Pairs is string pairs ? InputDigest.Sha256(pairs, interrupted) : null,

@@ -17,7 +17,8 @@ internal sealed class LakeException : Exception
     }
 
     /// <summary>Whether an error comes from the file system, so that <see cref="From"/> can name its mend.</summary>
-    public static bool IsFileSystemError(Exception error) => error is IOException or UnauthorizedAccessException || IsFileTooLarge(error);
+    public static bool IsFileSystemError(Exception error) => error is IOException or UnauthorizedAccessException
+        || IsFileTooLarge(error);
 
     /// <summary>Says what a file system error means for the lake.</summary>
     public static LakeException From(string path, Exception error) => error switch
@@ -32,9 +33,11 @@ internal sealed class LakeException : Exception
             "raise the limit (ulimit -f), then start the same command again", error),
         IOException { HResult: ReadOnlyFileSystem } => new(path, "the file system is read-only",
             "choose another --lake", error),
-        DirectoryNotFoundException or FileNotFoundException => new(path, "the folder is not there or was removed while it was written",
+        DirectoryNotFoundException or FileNotFoundException => new(path,
+            "the folder is not there or was removed while it was written",
             "check --lake, then start the same command again", error),
-        _ => new(path, $"writing failed ({error.Message.TrimEnd('.')})", "check the disk and --lake, then start the same command again", error),
+        _ => new(path, $"writing failed ({error.Message.TrimEnd('.')})",
+            "check the disk and --lake, then start the same command again", error),
     };
 
     // .NET turns EFBIG into this odd exception.

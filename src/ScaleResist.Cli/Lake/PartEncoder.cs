@@ -28,16 +28,18 @@ internal sealed class PartEncoder
         schema = new ParquetSchema(table.Columns.Select(Field));
     }
 
-    /// <summary>Rows of a part whose rows carry a list of some width (0: none): a power of two, at most 2^23 list values.</summary>
+    /// <summary>Rows of a part whose rows carry lists of a width (0: none): a power of two, at most 2^23 list values.</summary>
     public static int RowsPerPart(int listWidth) =>
-        listWidth == 0 ? MostRows : Math.Min(MostRows, (int)BitOperations.RoundUpToPowerOf2((uint)Math.Max(1, MostListValues / listWidth) + 1) / 2);
+        listWidth == 0
+            ? MostRows
+            : Math.Min(MostRows, (int)BitOperations.RoundUpToPowerOf2((uint)Math.Max(1, MostListValues / listWidth) + 1) / 2);
 
     /// <summary>Holds a batch against the definition; a mismatch is our own fault.</summary>
     /// <returns>The width of its lists, 0 where it has none.</returns>
     public int Check(RowBatch batch)
     {
         if (batch.Columns.Count != table.Columns.Count)
-            throw new ArgumentException($"Table '{table.Name}' has {table.Columns.Count} columns, the batch {batch.Columns.Count}.");
+            throw Misfit("*", $"{table.Columns.Count} columns are wanted, the batch has {batch.Columns.Count}");
         int width = 0;
         for (int i = 0; i < batch.Columns.Count; i++)
         {
@@ -45,16 +47,16 @@ internal sealed class PartEncoder
             Array values = batch.Columns[i];
             Type wanted = ArrayType(column);
             if (values.GetType() != wanted)
-                throw new ArgumentException($"Column '{table.Name}.{column.Name}' takes {wanted.Name}, the batch has {values.GetType().Name}.");
+                throw Misfit(column.Name, $"{wanted.Name} is wanted, the batch has {values.GetType().Name}");
             if (column.Kind == ColumnKind.FloatList && batch.Count > 0)
             {
                 if (values.Length == 0 || values.Length % batch.Count != 0)
-                    throw new ArgumentException($"Column '{table.Name}.{column.Name}': {values.Length} values in {batch.Count} rows.");
+                    throw Misfit(column.Name, $"{values.Length} values in {batch.Count} rows");
                 width = values.Length / batch.Count;
             }
             else if (values.Length < batch.Count)
             {
-                throw new ArgumentException($"Column '{table.Name}.{column.Name}': {values.Length} values in {batch.Count} rows.");
+                throw Misfit(column.Name, $"{values.Length} values in {batch.Count} rows");
             }
         }
         return width;
@@ -79,6 +81,8 @@ internal sealed class PartEncoder
             await WriteColumn(group, i, segments);
         group.CompleteValidate();
     }
+
+    private ArgumentException Misfit(string column, string problem) => new($"Column '{table.Name}.{column}': {problem}.");
 
     private static Type ArrayType(ColumnDefinition column) => column.Kind switch
     {

@@ -47,7 +47,7 @@ internal sealed partial class RunFolder
 
     internal string ClaimFile => Staging + ".claim";
 
-    /// <summary>A run id is a plain name: letters, digits, dot, dash and underscore, at most 100, the first a letter or digit.</summary>
+    /// <summary>A run id is a plain name: up to 100 letters, digits, '.', '-' and '_', the first a letter or digit.</summary>
     public static bool IsRunId(string text) => RunIdPattern().IsMatch(text);
 
     /// <summary>The run id where none is given: the network's file stem and the UTC time.</summary>

@@ -24,7 +24,9 @@ internal sealed class LiveProgress : IRunObserver
             Out = new AnsiConsoleOutput(terminal),
             Ansi = AnsiSupport.Yes,
             Interactive = InteractionSupport.Yes,
-            ColorSystem = string.IsNullOrEmpty(Environment.GetEnvironmentVariable("NO_COLOR")) ? ColorSystemSupport.Detect : ColorSystemSupport.NoColors,
+            ColorSystem = string.IsNullOrEmpty(Environment.GetEnvironmentVariable("NO_COLOR"))
+                ? ColorSystemSupport.Detect
+                : ColorSystemSupport.NoColors,
         });
         console.Progress()
             .Columns(new TaskDescriptionColumn { Alignment = Justify.Left }, new ProgressBarColumn(), new PercentageColumn(),

@@ -33,8 +33,9 @@ internal sealed class PlainProgress(TextWriter to, TimeProvider time) : IRunObse
         {
             if (time.GetElapsedTime(lastLine) < Pause)
                 return;
+            string amount = Numbers.Amount(done, unit == "bytes" ? unit : "");
             Line(total is double all and > 0
-                ? $"{phase}: {Numbers.Amount(done, unit == "bytes" ? unit : "")} of {Numbers.Amount(all, unit)} ({100 * done / all:0} %)"
+                ? $"{phase}: {amount} of {Numbers.Amount(all, unit)} ({100 * done / all:0} %)"
                 : $"{phase}: {Numbers.Amount(done, unit)}");
         }
     }

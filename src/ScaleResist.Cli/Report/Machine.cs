@@ -42,7 +42,8 @@ internal sealed record Machine
     public static long PeakResidentBytes()
     {
         string? line = Lines("/proc/self/status").FirstOrDefault(l => l.StartsWith("VmHWM:", StringComparison.Ordinal));
-        if (line is not null && long.TryParse(line["VmHWM:".Length..].Replace("kB", "").Trim(), CultureInfo.InvariantCulture, out long kilobytes))
+        if (line is not null
+            && long.TryParse(line["VmHWM:".Length..].Replace("kB", "").Trim(), CultureInfo.InvariantCulture, out long kilobytes))
             return kilobytes * 1024;
         using Process process = Process.GetCurrentProcess();
         return process.PeakWorkingSet64;

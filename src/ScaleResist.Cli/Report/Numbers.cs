@@ -40,7 +40,7 @@ internal static class Numbers
         int unit = 0;
         for (; bytes >= 1024 && unit < units.Length - 1; unit++)
             bytes /= 1024;
-        return string.Create(CultureInfo.InvariantCulture, $"{(unit == 0 ? bytes.ToString("0", CultureInfo.InvariantCulture) : Value(bytes, 3))} {units[unit]}");
+        return $"{(unit == 0 ? bytes.ToString("0", CultureInfo.InvariantCulture) : Value(bytes, 3))} {units[unit]}";
     }
 
     /// <summary>Seconds, or minutes and hours where there are many.</summary>
@@ -53,7 +53,8 @@ internal static class Numbers
     };
 
     /// <summary>An amount of work in the observer's unit.</summary>
-    public static string Amount(double amount, string unit) => unit == "bytes" ? Bytes(amount) : $"{Count((long)amount)} {unit}".TrimEnd();
+    public static string Amount(double amount, string unit) =>
+        unit == "bytes" ? Bytes(amount) : $"{Count((long)amount)} {unit}".TrimEnd();
 
     /// <summary>"1 node", "2 nodes".</summary>
     public static string Many(long count, string one) => $"{Count(count)} {one}{(count == 1 ? "" : "s")}";

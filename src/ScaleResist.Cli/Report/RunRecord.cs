@@ -69,8 +69,9 @@ internal sealed record RunRecord
     public required long PeakResidentBytes { get; init; }
 
     /// <summary>Collects the record of a run that has just written its last row.</summary>
-    public static RunRecord Of(EstimateRequest request, JsonObject plan, EstimateOutcome outcome, IReadOnlyDictionary<string, long> rows,
-        IReadOnlyList<PhaseTime> phases, DateTimeOffset started, DateTimeOffset finished) => new()
+    public static RunRecord Of(EstimateRequest request, JsonObject plan, EstimateOutcome outcome,
+        IReadOnlyDictionary<string, long> rows, IReadOnlyList<PhaseTime> phases, DateTimeOffset started,
+        DateTimeOffset finished) => new()
         {
             RunId = request.RunId,
             ExitStatus = ExitCode.Done,
@@ -80,7 +81,8 @@ internal sealed record RunRecord
             Threads = request.Plan.Threads,
             Input = outcome.Input,
             Cleaning = outcome.Cleaning,
-            Network = new NetworkCounts(outcome.Summary.Nodes, outcome.Summary.Links, outcome.Summary.Components, outcome.Summary.Bridges),
+            Network = new NetworkCounts(outcome.Summary.Nodes, outcome.Summary.Links, outcome.Summary.Components,
+                outcome.Summary.Bridges),
             Machine = Machine.Here(),
             Phases = phases,
             Solver = outcome.Summary.Solver,

@@ -23,15 +23,19 @@ internal static class SummaryText
             + $"columns {string.Join(',', input.Columns)}");
         IndexEntry? largest = record.Index.Count > 0 ? record.Index[0] : null;
         yield return Entry("components", Numbers.Count(record.Network.Components)
-            + (largest is null ? "" : $", the largest with {Numbers.Many(largest.Nodes, "node")} and {Numbers.Many(largest.Links, "link")}")
+            + (largest is null
+                ? ""
+                : $", the largest with {Numbers.Many(largest.Nodes, "node")} and {Numbers.Many(largest.Links, "link")}")
             + $"; {Numbers.Many(record.Network.Bridges, "bridge")}");
         if (largest is not null)
         {
             Estimate index = largest.KirchhoffIndex;
             double confidence = record.Plan["confidence"]?.GetValue<double>() ?? double.NaN;
-            yield return Entry("Kirchhoff", $"index {Numbers.Value(index.Value)}, {Numbers.Value(100 * confidence, 4)} % interval "
+            yield return Entry("Kirchhoff",
+                $"index {Numbers.Value(index.Value)}, {Numbers.Value(100 * confidence, 4)} % interval "
                 + $"{Numbers.Value(index.Lower)} to {Numbers.Value(index.Upper)}"
-                + (record.Network.Components > 1 ? " (largest component)" : "") + $"; mean resistance {Numbers.Value(largest.MeanResistance, 5)}");
+                + (record.Network.Components > 1 ? " (largest component)" : "")
+                + $"; mean resistance {Numbers.Value(largest.MeanResistance, 5)}");
         }
         if (record.Foster is FosterCheck foster)
         {
@@ -44,7 +48,8 @@ internal static class SummaryText
             string role = link.NodesCutOff is long cut
                 ? $"bridge, cuts off {Numbers.Many(cut, "node")}"
                 : $"spanning probability {Numbers.Value(link.SpanningProbability, 4)}";
-            yield return Entry(heading, $"{InputException.Show(link.Source)} - {InputException.Show(link.Target)}: {role}, resistance "
+            yield return Entry(heading,
+                $"{InputException.Show(link.Source)} - {InputException.Show(link.Target)}: {role}, resistance "
                 + $"{Numbers.Value(link.Resistance.Value, 5)}"
                 + (link.Resistance.StandardError > 0 ? $" +- {Numbers.Value(link.Resistance.StandardError, 2)}" : ""));
             heading = "";
@@ -57,8 +62,10 @@ internal static class SummaryText
         }
         yield return Entry("time", $"{Numbers.Duration((record.Finished - record.Started).TotalSeconds)}: "
             + string.Join(", ", ShortPhases(record.Phases).Select(p => $"{p.Name} {Numbers.Duration(p.Seconds)}")));
-        yield return Entry("memory", $"{Numbers.Bytes(record.PeakResidentBytes)} at the peak, {Numbers.Many(record.Threads, "thread")}");
-        yield return Entry("tables", published + ": " + string.Join(", ", record.Rows.Select(t => $"{t.Key} {Numbers.Count(t.Value)}")));
+        yield return Entry("memory",
+            $"{Numbers.Bytes(record.PeakResidentBytes)} at the peak, {Numbers.Many(record.Threads, "thread")}");
+        yield return Entry("tables", published + ": "
+            + string.Join(", ", record.Rows.Select(t => $"{t.Key} {Numbers.Count(t.Value)}")));
         yield return Entry("query", Query(published, record.Rows.Keys));
     }
 
@@ -80,5 +87,6 @@ internal static class SummaryText
 
     private static string Entry(string name, string text) => $"{name,-11}{text}";
 
-    private static string Signed(double percent) => percent.ToString("+0.000;-0.000;0", System.Globalization.CultureInfo.InvariantCulture);
+    private static string Signed(double percent) =>
+        percent.ToString("+0.000;-0.000;0", System.Globalization.CultureInfo.InvariantCulture);
 }

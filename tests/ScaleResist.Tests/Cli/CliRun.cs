@@ -18,11 +18,13 @@ internal sealed record CliResult(int Exit, string Out, string Error)
 
 internal static class CliRun
 {
-    public static CliResult InProcess(IEstimateEngine engine, string[] args, CancellationToken interrupted = default, bool trace = false)
+    public static CliResult InProcess(IEstimateEngine engine, string[] args, CancellationToken interrupted = default,
+        bool trace = false)
     {
         StringWriter output = new() { NewLine = "\n" };
         StringWriter error = new() { NewLine = "\n" };
-        int exit = ScaleResist.Cli.Program.Run(args, new CliHost { Out = output, Error = error, Engine = engine, Trace = trace }, interrupted);
+        int exit = ScaleResist.Cli.Program.Run(args,
+            new CliHost { Out = output, Error = error, Engine = engine, Trace = trace }, interrupted);
         return new CliResult(exit, output.ToString(), error.ToString());
     }
 
@@ -30,7 +32,8 @@ internal static class CliRun
     public static Process Start(bool fake, string[] args, int links = 1, int pause = 0, string? shell = null)
     {
         string program = (fake ? typeof(FakeEngineProgram) : typeof(ScaleResist.Cli.Program)).Assembly.Location;
-        ProcessStartInfo info = new(shell is null ? "dotnet" : "/bin/sh") { RedirectStandardOutput = true, RedirectStandardError = true };
+        ProcessStartInfo info =
+            new(shell is null ? "dotnet" : "/bin/sh") { RedirectStandardOutput = true, RedirectStandardError = true };
         if (shell is not null)
         {
             info.ArgumentList.Add("-c");
@@ -77,7 +80,8 @@ internal sealed class Place : IDisposable
 
     /// <summary>Every file and folder under the lake, relative; empty where there is no lake.</summary>
     public string[] LakeContent() => Directory.Exists(Lake)
-        ? [.. Directory.EnumerateFileSystemEntries(Lake, "*", SearchOption.AllDirectories).Select(p => Path.GetRelativePath(Lake, p)).Order()]
+        ? [.. Directory.EnumerateFileSystemEntries(Lake, "*", SearchOption.AllDirectories)
+            .Select(p => Path.GetRelativePath(Lake, p)).Order()]
         : [];
 
     public string[] Estimate(string? id = "a", params string[] more) =>

@@ -81,10 +81,10 @@ public sealed class Command_lines_that_are_wrong
     {
         using Place place = new();
         string lake = "--lake=" + place.Lake; // In one word, so that no other word becomes a folder's name.
-        string[] words = ["estimate", "estimate", "estimate", place.Network, place.Network, lake, lake, lake, "--run-id", "r", "--want", "index,pairs",
-            "--probes", "--threads=2", "--seed", "7", "-1", "--weights", "none", "--columns", "a,b", "--pairs", "--restart", "--verbose",
-            "--confidence", "0.5", "--route", "exact", "--help", "--version", "--", "-", "", "@x", "=", "--=", "--lake=", "\"", "'", "é\n",
-            "[diagram]", "--shard", "1/2"];
+        string[] words = ["estimate", "estimate", "estimate", place.Network, place.Network, lake, lake, lake, "--run-id", "r",
+            "--want", "index,pairs", "--probes", "--threads=2", "--seed", "7", "-1", "--weights", "none", "--columns", "a,b",
+            "--pairs", "--restart", "--verbose", "--confidence", "0.5", "--route", "exact", "--help", "--version", "--", "-", "",
+            "@x", "=", "--=", "--lake=", "\"", "'", "é\n", "[diagram]", "--shard", "1/2"];
         Gen.Int[0, words.Length - 1].Select(i => words[i]).Array[0, 9].Sample(args =>
         {
             CliResult result = CliRun.InProcess(new FakeEngine { Links = 3, Nodes = 3 }, args);

@@ -11,7 +11,8 @@ public sealed class Estimate_requests
     private static readonly EstimateOptions Least = new() { Network = "n.csv", Lake = "l" };
 
     private static EstimateRequest Valid(EstimateOptions options) =>
-        EstimateValidation.Validate(options, DateTimeOffset.UnixEpoch, out string problem) ?? throw new InvalidOperationException(problem);
+        EstimateValidation.Validate(options, DateTimeOffset.UnixEpoch, out string problem)
+            ?? throw new InvalidOperationException(problem);
 
     [Fact]
     public void Defaults_are_the_contracts()
@@ -52,7 +53,8 @@ public sealed class Estimate_requests
         Assert.Equal(Want.Coordinates | Want.Index, request.Plan.Want);
         Assert.Equal(WeightMeaning.Resistance, request.Reading.Weights);
         Assert.Equal(["from", "to", "km"], request.Reading.Columns!);
-        Assert.Equal((4096, 0.9, ulong.MaxValue, 256), (request.Plan.Probes, request.Plan.Confidence, request.Plan.Seed, request.Plan.Threads));
+        Assert.Equal((4096, 0.9, ulong.MaxValue, 256),
+            (request.Plan.Probes, request.Plan.Confidence, request.Plan.Seed, request.Plan.Threads));
         Assert.Equal("x", request.RunId);
         Assert.Equal("w.csv", request.NodeWeights);
     }

@@ -34,7 +34,8 @@ public sealed class Estimate_runs
     public void The_record_is_valid_json_also_where_numbers_are_not_finite()
     {
         using Place place = new();
-        Assert.Equal(0, CliRun.InProcess(new FakeEngine(), place.Estimate("a", "--seed", "18446744073709551615", "--probes", "9")).Exit);
+        Assert.Equal(0, CliRun.InProcess(new FakeEngine(),
+            place.Estimate("a", "--seed", "18446744073709551615", "--probes", "9")).Exit);
         using JsonDocument json = JsonDocument.Parse(File.ReadAllBytes(Path.Combine(place.Run("a"), "run.json")));
         JsonElement record = json.RootElement;
         Assert.Equal(1, record.GetProperty("schema_version").GetInt32());
@@ -46,7 +47,8 @@ public sealed class Estimate_runs
         Assert.Equal(64, record.GetProperty("input").GetProperty("sha256").GetString()!.Length);
         Assert.Equal(2, record.GetProperty("cleaning").GetProperty("parallel_links").GetInt64());
         Assert.Equal(100, record.GetProperty("network").GetProperty("links").GetInt64());
-        Assert.Equal(["reading", "solving"], record.GetProperty("phases").EnumerateArray().Select(p => p.GetProperty("name").GetString()));
+        Assert.Equal(["reading", "solving"],
+            record.GetProperty("phases").EnumerateArray().Select(p => p.GetProperty("name").GetString()));
         Assert.Equal("jacobi", record.GetProperty("solver").GetProperty("preconditioner").GetString());
         Assert.Equal(38, record.GetProperty("foster").GetProperty("expected").GetInt64());
         Assert.Equal("NaN", record.GetProperty("index")[1].GetProperty("mean_resistance").GetString());
@@ -144,7 +146,8 @@ public sealed class Estimate_runs
     public void Missing_pairs_are_exit_3_before_anything_is_written()
     {
         using Place place = new();
-        CliResult result = CliRun.InProcess(new FakeEngine(), place.Estimate("a", "--pairs", Path.Combine(place.Folder, "none.csv")));
+        CliResult result = CliRun.InProcess(new FakeEngine(),
+            place.Estimate("a", "--pairs", Path.Combine(place.Folder, "none.csv")));
         Assert.Equal(3, result.Exit);
         Assert.Contains("none.csv: no such file; check the path", Assert.Single(result.ErrorLines));
         Assert.False(Directory.Exists(place.Lake));
@@ -152,11 +155,13 @@ public sealed class Estimate_runs
 
     public static TheoryData<Exception, int, string> Failures => new()
     {
-        { new InputException("n.csv", 7, "weight 'x' is not a number", "mend the weight"), 3, "n.csv:7: weight 'x' is not a number; mend the weight" },
+        { new InputException("n.csv", 7, "weight 'x' is not a number", "mend the weight"), 3,
+            "n.csv:7: weight 'x' is not a number; mend the weight" },
         { new InvalidOperationException("two\nlines"), 1, "a fault of ours (InvalidOperationException): two lines" },
         { new OutOfMemoryException(), 4, "not enough memory" },
         { new LakeException("p", "q", "r"), 6, "p: q; r" },
-        { new AggregateException(new OperationCanceledException(), new InputException("n.csv", null, "bad", "mend")), 3, "n.csv: bad; mend" },
+        { new AggregateException(new OperationCanceledException(), new InputException("n.csv", null, "bad", "mend")), 3,
+            "n.csv: bad; mend" },
         { new OperationCanceledException("not by the user"), 1, "a fault of ours (OperationCanceledException)" },
     };
 
@@ -207,7 +212,8 @@ public sealed class Estimate_runs
             AfterBatch = _ =>
             {
                 Assert.Empty(Directory.GetDirectories(place.Lake, "run=*"));
-                Assert.Throws<DuckDB.NET.Data.DuckDBException>(() => DuckLake.Query($"FROM {DuckLake.Table(place.Lake, "links")}"));
+                Assert.Throws<DuckDB.NET.Data.DuckDBException>(() =>
+                    DuckLake.Query($"FROM {DuckLake.Table(place.Lake, "links")}"));
                 polls++;
             },
         };
@@ -276,7 +282,11 @@ public sealed class Estimate_runs
     public void A_staging_folder_that_vanishes_is_exit_6()
     {
         using Place place = new();
-        FakeEngine engine = new() { AfterBatch = _ => Directory.Delete(Path.Combine(place.Lake, "_staging", "run=a"), recursive: true), BatchRows = 1000 };
+        FakeEngine engine = new()
+        {
+            AfterBatch = _ => Directory.Delete(Path.Combine(place.Lake, "_staging", "run=a"), recursive: true),
+            BatchRows = 1000,
+        };
         CliResult result = CliRun.InProcess(engine, place.Estimate());
         Assert.Equal(6, result.Exit);
         Assert.Contains("_staging", Assert.Single(result.Messages));

@@ -139,11 +139,31 @@ internal sealed class FakeEngine : IEstimateEngine
         ],
         CriticalLinks =
         [
-            new CriticalLink { Source = "7", Target = "8", Resistance = new Estimate(1, 0, 1, 1), SpanningProbability = 1, NodesCutOff = 12 },
-            new CriticalLink { Source = "1", Target = "2", Resistance = new Estimate(0.9, 0.01, 0.88, 0.92), SpanningProbability = 0.9 },
+            new CriticalLink
+            {
+                Source = "7",
+                Target = "8",
+                Resistance = new Estimate(1, 0, 1, 1),
+                SpanningProbability = 1,
+                NodesCutOff = 12,
+            },
+            new CriticalLink
+            {
+                Source = "1",
+                Target = "2",
+                Resistance = new Estimate(0.9, 0.01, 0.88, 0.92),
+                SpanningProbability = 0.9,
+            },
         ],
         FosterSum = Nodes - 2.5,
-        Solver = new SolverFacts { Preconditioner = "jacobi", Columns = 64, MostIterations = 123, LargestResidual = 9.9e-5, Retried = 0 },
+        Solver = new SolverFacts
+        {
+            Preconditioner = "jacobi",
+            Columns = 64,
+            MostIterations = 123,
+            LargestResidual = 9.9e-5,
+            Retried = 0,
+        },
         Phases = [],
         Rows = rows,
     };

@@ -22,5 +22,6 @@ internal static class FakeEngineProgram
         return ScaleResist.Cli.Program.RunProcess(args, engine);
     }
 
-    private static int Number(string variable) => int.TryParse(Environment.GetEnvironmentVariable(variable), out int value) ? value : 0;
+    private static int Number(string variable) =>
+        int.TryParse(Environment.GetEnvironmentVariable(variable), out int value) ? value : 0;
 }

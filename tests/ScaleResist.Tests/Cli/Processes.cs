@@ -41,7 +41,8 @@ public sealed class Processes
     public void Of_two_processes_with_one_run_id_exactly_one_works()
     {
         using Place place = new();
-        Process[] both = [.. Enumerable.Range(0, 2).Select(_ => CliRun.Start(fake: true, place.Estimate(), links: 40_000, pause: 50))];
+        Process[] both =
+            [.. Enumerable.Range(0, 2).Select(_ => CliRun.Start(fake: true, place.Estimate(), links: 40_000, pause: 50))];
         CliResult[] results = [.. both.Select(CliRun.Finish)];
         Assert.Equal([0, 6], results.Select(r => r.Exit).Order());
         CliResult refused = results.Single(r => r.Exit == 6);

@@ -21,7 +21,8 @@ public sealed class Lake_tables_in_DuckDB
     public static TheoryData<bool> Labels => [false, true];
 
     private static TableDefinition[] All(ColumnKind label) =>
-        [Tables.Index, Tables.Components(label), Tables.Nodes(label), Tables.Links(label), Tables.Pairs(label), Tables.Coordinates(label)];
+        [Tables.Index, Tables.Components(label), Tables.Nodes(label), Tables.Links(label), Tables.Pairs(label),
+            Tables.Coordinates(label)];
 
     [Theory]
     [MemberData(nameof(Labels))]
@@ -33,7 +34,8 @@ public sealed class Lake_tables_in_DuckDB
         FakeEngine engine = new() { TextLabels = texts };
         foreach (string run in (string[])["a", "b-2"])
         {
-            CliResult result = CliRun.InProcess(engine, place.Estimate(run, "--want", "index,components,nodes,links,coordinates", "--pairs", pairs));
+            CliResult result = CliRun.InProcess(engine,
+                place.Estimate(run, "--want", "index,components,nodes,links,coordinates", "--pairs", pairs));
             Assert.True(result.Exit == 0, result.Error);
         }
         foreach (TableDefinition table in All(texts ? ColumnKind.Text : ColumnKind.Int64))
@@ -88,15 +90,18 @@ public sealed class Lake_tables_in_DuckDB
     {
         using Place place = new();
         Random random = new(5);
-        long[] whole = [long.MinValue, long.MaxValue, 0, -1, 1, .. Enumerable.Range(0, 2000).Select(_ => random.NextInt64(long.MinValue, long.MaxValue))];
+        long[] whole = [long.MinValue, long.MaxValue, 0, -1, 1,
+            .. Enumerable.Range(0, 2000).Select(_ => random.NextInt64(long.MinValue, long.MaxValue))];
         int n = whole.Length;
         double[] real = new double[n];
         for (int i = 0; i < n; i++)
             real[i] = BitConverter.Int64BitsToDouble(whole[n - 1 - i]);
-        (real[0], real[1], real[2], real[3], real[4]) = (double.PositiveInfinity, double.NegativeInfinity, -0.0, double.Epsilon, double.MaxValue);
+        (real[0], real[1], real[2], real[3], real[4]) =
+            (double.PositiveInfinity, double.NegativeInfinity, -0.0, double.Epsilon, double.MaxValue);
         real = [.. real.Select(r => double.IsNaN(r) ? 1 : r)];
         real[5] = double.NaN;
-        string[] text = [.. whole.Select((w, i) => i switch { 0 => "", 1 => "a\nb", 2 => "\u0000", 3 => "😀,\"'", _ => w.ToString() })];
+        string[] text = [.. whole.Select(
+            (w, i) => i switch { 0 => "", 1 => "a\nb", 2 => "\u0000", 3 => "😀,\"'", _ => w.ToString() })];
         TableDefinition table = new("t", [new("id", ColumnKind.Int64), new("x", ColumnKind.Double), new("s", ColumnKind.Text),
             new("nid", ColumnKind.Int64, Nullable: true), new("nx", ColumnKind.Double, Nullable: true)]);
         ParquetTableSink sink = new(place.Lake, new Dictionary<string, string>(), 1);
@@ -107,7 +112,8 @@ public sealed class Lake_tables_in_DuckDB
         writer.Complete();
         List<object?[]> rows = DuckLake.Query($"SELECT * FROM '{place.Lake}/t/*.parquet'");
         Assert.Equal(whole, rows.Select(r => (long)r[0]!));
-        Assert.Equal(real.Select(BitConverter.DoubleToInt64Bits), rows.Select(r => BitConverter.DoubleToInt64Bits((double)r[1]!)));
+        Assert.Equal(real.Select(BitConverter.DoubleToInt64Bits),
+            rows.Select(r => BitConverter.DoubleToInt64Bits((double)r[1]!)));
         Assert.Equal(text, rows.Select(r => (string)r[2]!));
         Assert.Equal(someWhole, rows.Select(r => (long?)r[3]));
         Assert.All(rows, r => Assert.Null(r[4]));
@@ -174,7 +180,8 @@ public sealed class Lake_tables_in_DuckDB
             }
             return folder;
         })];
-        string[] files = [.. Directory.GetFiles(folders[0], "*", SearchOption.AllDirectories).Select(f => Path.GetRelativePath(folders[0], f))];
+        string[] files = [.. Directory.GetFiles(folders[0], "*", SearchOption.AllDirectories)
+            .Select(f => Path.GetRelativePath(folders[0], f))];
         Assert.Equal(60, files.Length);
         foreach (string file in files)
         {

@@ -179,7 +179,8 @@ public sealed class Run_folders
     private static void WriteClaim(RunFolder folder, int process, string host, string start)
     {
         Directory.CreateDirectory(Path.GetDirectoryName(folder.ClaimFile)!);
-        File.WriteAllText(folder.ClaimFile,
-            $$"""{"Process":{{process}},"Host":"{{host}}","ProcessStart":"{{start}}","Since":"2026-01-01T00:00:00Z","Token":"t"}""");
+        File.WriteAllText(folder.ClaimFile, $$"""
+            {"Process":{{process}},"Host":"{{host}}","ProcessStart":"{{start}}","Since":"2026-01-01T00:00:00Z","Token":"t"}
+            """);
     }
 }
