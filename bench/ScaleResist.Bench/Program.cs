@@ -1,39 +1,20 @@
-// Whole-job timing by phase.
+// What is measured: whole jobs by phase, and the kernels of an iteration.
 
-using System.Diagnostics;
-using ScaleResist.Graphs;
-using ScaleResist.Runs;
+using BenchmarkDotNet.Running;
+using ScaleResist.Bench;
 
-long start = Stopwatch.GetTimestamp();
-EdgeList list = EdgeListReader.Read(args[0], new ReadOptions { Weights = WeightMeaning.None });
-Say("read");
-Network network = NetworkBuilder.Build(list);
-list = null!;
-Say("build");
-EstimateSummary summary = EstimateRun.Execute(
-    network, new EstimatePlan { Probes = 16, Want = Want.Index | Want.Nodes | Want.Links }, new EstimateInputs(), new NullSink(), new Quiet(), default);
-Say("run");
-foreach (PhaseTime phase in summary.Phases)
-    Console.WriteLine($"  {phase.Name} {phase.Seconds:0.00}");
-Console.WriteLine(summary.Solver);
-Console.WriteLine($"{summary.Index[0].KirchhoffIndex} foster {summary.FosterSum} of {summary.Nodes - summary.Components}");
-
-void Say(string what)
+switch (args)
 {
-    Console.WriteLine($"{what} {Stopwatch.GetElapsedTime(start).TotalSeconds:0.00} s, {Process.GetCurrentProcess().PeakWorkingSet64 / 1e9:0.00} GB peak");
-    start = Stopwatch.GetTimestamp();
-}
-
-internal sealed class NullSink : ITableSink, ITableWriter
-{
-    public ITableWriter Open(TableDefinition table) => this;
-    public void Write(RowBatch batch) { }
-    public long Complete() => 0;
-}
-
-internal sealed class Quiet : IRunObserver
-{
-    public void Begin(string phase, double? total, string unit) { }
-    public void Report(double done) { }
-    public void End() { }
+    case ["kernels", .. string[] rest]:
+        BenchmarkSwitcher.FromTypes([typeof(KernelBenchmarks)]).Run(rest.Length > 0 ? rest : ["--filter", "*"]);
+        return 0;
+    case ["job", string file]:
+        WholeJob.Run(file, 16);
+        return 0;
+    case ["job", string file, string probes] when int.TryParse(probes, out int count):
+        WholeJob.Run(file, count);
+        return 0;
+    default:
+        Console.Error.WriteLine("say: kernels [BenchmarkDotNet options] | job FILE [PROBES]");
+        return 2;
 }
