@@ -42,7 +42,7 @@ public unsafe class KernelBenchmarks
 
     /// <summary>q = L p.</summary>
     [Benchmark]
-    public double Multiply() => PanelKernels.Multiply(network, p, q, 0, n)[0];
+    public double Multiply() => PanelKernels.Multiply(network.Laplacian, p, q, 0, n)[0];
 
     /// <summary>x += a p, r -= a q.</summary>
     [Benchmark]

@@ -24,19 +24,17 @@ public readonly record struct Component(int Start, int End)
 public sealed class Network
 {
     private readonly long[] linkStart;
+    private readonly Laplacian laplacian;
 
     internal Network(
         NodeLabels labels, long[] rowStart, int[] neighbours, double[]? conductances, Component[] components, CleaningFacts cleaning, InputFacts input)
     {
         Labels = labels;
-        RowStart = rowStart;
-        Neighbours = neighbours;
-        Conductances = conductances;
         Components = components;
         Cleaning = cleaning;
         Input = input;
         NodeKeys = NodeKey.OfAll(labels);
-        Strengths = new double[labels.Count];
+        double[] strengths = new double[labels.Count];
         linkStart = new long[labels.Count + 1];
         for (int u = 0; u < labels.Count; u++)
         {
@@ -48,25 +46,29 @@ public sealed class Network
                 if (neighbours[k] > u)
                     later++;
             }
-            Strengths[u] = strength;
+            strengths[u] = strength;
             linkStart[u + 1] = linkStart[u] + later;
         }
+        laplacian = new Laplacian(rowStart, neighbours, conductances, strengths);
     }
 
     /// <summary>Labels by internal node number.</summary>
     public NodeLabels Labels { get; }
 
     /// <summary>n + 1 offsets into <see cref="Neighbours"/>.</summary>
-    public long[] RowStart { get; }
+    public long[] RowStart => laplacian.RowStart;
 
     /// <summary>2m neighbours, ascending within each row.</summary>
-    public int[] Neighbours { get; }
+    public int[] Neighbours => laplacian.Neighbours;
 
     /// <summary>2m conductances beside <see cref="Neighbours"/>, or null where every link has conductance 1.</summary>
-    public double[]? Conductances { get; }
+    public double[]? Conductances => laplacian.Conductances;
 
     /// <summary>Strength d_u = L_uu: the sum of the conductances at a node, n values.</summary>
-    public double[] Strengths { get; }
+    public double[] Strengths => laplacian.Strengths;
+
+    /// <summary>L of the whole network.</summary>
+    public Laplacian Laplacian => laplacian;
 
     /// <summary>Components, largest first, ties by smallest label; together they cover all nodes in order.</summary>
     public IReadOnlyList<Component> Components { get; }

@@ -6,7 +6,7 @@ using ScaleResist.Graphs;
 
 namespace ScaleResist.Kernels;
 
-/// <summary>Panel kernels over the nodes <c>start .. end-1</c> of a network.</summary>
+/// <summary>Panel kernels over the nodes <c>start .. end-1</c> of a laplacian.</summary>
 public static unsafe class PanelKernels
 {
     /// <summary>Whether the scalar twins run.</summary>
@@ -14,26 +14,26 @@ public static unsafe class PanelKernels
         string.Equals(Environment.GetEnvironmentVariable("SCALERESIST_KERNELS"), "scalar", StringComparison.OrdinalIgnoreCase);
 
     /// <summary>y = L x; returns x'y by column.</summary>
-    public static LaneSums Multiply<T>(Network network, Panel<T> x, Panel<T> y, int start, int end)
+    public static LaneSums Multiply<T>(Laplacian laplacian, Panel<T> x, Panel<T> y, int start, int end)
         where T : unmanaged, INumber<T>
     {
         LaneSums sums = default;
         if (Scalar)
-            ScalarKernels.Multiply(network, x.Pointer, y.Pointer, start, end, ref sums);
+            ScalarKernels.Multiply(laplacian, x.Pointer, y.Pointer, start, end, ref sums);
         else
-            VectorKernels.Multiply(network, x.Pointer, y.Pointer, start, end, ref sums);
+            VectorKernels.Multiply(laplacian, x.Pointer, y.Pointer, start, end, ref sums);
         return sums;
     }
 
     /// <summary>Returns |b - L x|^2 by column.</summary>
-    public static LaneSums Residual<T>(Network network, Panel<T> b, Panel<T> x, int start, int end)
+    public static LaneSums Residual<T>(Laplacian laplacian, Panel<T> b, Panel<T> x, int start, int end)
         where T : unmanaged, INumber<T>
     {
         LaneSums sums = default;
         if (Scalar)
-            ScalarKernels.Residual(network, b.Pointer, x.Pointer, start, end, ref sums);
+            ScalarKernels.Residual(laplacian, b.Pointer, x.Pointer, start, end, ref sums);
         else
-            VectorKernels.Residual(network, b.Pointer, x.Pointer, start, end, ref sums);
+            VectorKernels.Residual(laplacian, b.Pointer, x.Pointer, start, end, ref sums);
         return sums;
     }
 

@@ -9,7 +9,7 @@ namespace ScaleResist.Kernels;
 /// <summary>Reference kernels; see <see cref="VectorKernels"/> for each one's meaning.</summary>
 internal static unsafe class ScalarKernels
 {
-    public static void Multiply<T>(Network network, T* x, T* y, int start, int end, ref LaneSums sums)
+    public static void Multiply<T>(Laplacian laplacian, T* x, T* y, int start, int end, ref LaneSums sums)
         where T : unmanaged, INumber<T>
     {
         for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
@@ -21,7 +21,7 @@ internal static unsafe class ScalarKernels
                 for (int u = chunk; u < chunkEnd; u++)
                 {
                     ref T own = ref At(x, u, lane);
-                    T result = (T.CreateTruncating(network.Strengths[u]) * own) - Around(network, x, u, lane);
+                    T result = (T.CreateTruncating(laplacian.Strengths[u]) * own) - Around(laplacian, x, u, lane);
                     At(y, u, lane) = result;
                     products += own * result;
                 }
@@ -30,7 +30,7 @@ internal static unsafe class ScalarKernels
         }
     }
 
-    public static void Residual<T>(Network network, T* b, T* x, int start, int end, ref LaneSums sums)
+    public static void Residual<T>(Laplacian laplacian, T* b, T* x, int start, int end, ref LaneSums sums)
         where T : unmanaged, INumber<T>
     {
         for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
@@ -42,7 +42,7 @@ internal static unsafe class ScalarKernels
                 for (int u = chunk; u < chunkEnd; u++)
                 {
                     T residual = At(b, u, lane)
-                        - ((T.CreateTruncating(network.Strengths[u]) * At(x, u, lane)) - Around(network, x, u, lane));
+                        - ((T.CreateTruncating(laplacian.Strengths[u]) * At(x, u, lane)) - Around(laplacian, x, u, lane));
                     squares += residual * residual;
                 }
                 sums[lane] += double.CreateTruncating(squares);
@@ -128,14 +128,14 @@ internal static unsafe class ScalarKernels
         }
     }
 
-    private static T Around<T>(Network network, T* x, int node, int lane)
+    private static T Around<T>(Laplacian laplacian, T* x, int node, int lane)
         where T : unmanaged, INumber<T>
     {
         T around = T.Zero;
-        for (long k = network.RowStart[node]; k < network.RowStart[node + 1]; k++)
+        for (long k = laplacian.RowStart[node]; k < laplacian.RowStart[node + 1]; k++)
         {
-            T neighbour = At(x, network.Neighbours[k], lane);
-            around += network.Conductances is null ? neighbour : T.CreateTruncating(network.Conductances[k]) * neighbour;
+            T neighbour = At(x, laplacian.Neighbours[k], lane);
+            around += laplacian.Conductances is null ? neighbour : T.CreateTruncating(laplacian.Conductances[k]) * neighbour;
         }
         return around;
     }

@@ -18,13 +18,13 @@ internal static unsafe class VectorKernels
     private const int PrefetchArcs = 12;
 
     /// <summary>y = L x, and sums = x'y by column.</summary>
-    public static void Multiply<T>(Network network, T* x, T* y, int start, int end, ref LaneSums sums)
+    public static void Multiply<T>(Laplacian laplacian, T* x, T* y, int start, int end, ref LaneSums sums)
         where T : unmanaged
     {
-        fixed (long* rowStart = network.RowStart)
-        fixed (int* neighbours = network.Neighbours)
-        fixed (double* conductances = network.Conductances)
-        fixed (double* strengths = network.Strengths)
+        fixed (long* rowStart = laplacian.RowStart)
+        fixed (int* neighbours = laplacian.Neighbours)
+        fixed (double* conductances = laplacian.Conductances)
+        fixed (double* strengths = laplacian.Strengths)
         {
             long lastArc = rowStart[end] - 1;
             for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
@@ -53,13 +53,13 @@ internal static unsafe class VectorKernels
     }
 
     /// <summary>sums = |b - L x|^2 by column, nothing stored.</summary>
-    public static void Residual<T>(Network network, T* b, T* x, int start, int end, ref LaneSums sums)
+    public static void Residual<T>(Laplacian laplacian, T* b, T* x, int start, int end, ref LaneSums sums)
         where T : unmanaged
     {
-        fixed (long* rowStart = network.RowStart)
-        fixed (int* neighbours = network.Neighbours)
-        fixed (double* conductances = network.Conductances)
-        fixed (double* strengths = network.Strengths)
+        fixed (long* rowStart = laplacian.RowStart)
+        fixed (int* neighbours = laplacian.Neighbours)
+        fixed (double* conductances = laplacian.Conductances)
+        fixed (double* strengths = laplacian.Strengths)
         {
             for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
             {

@@ -21,7 +21,7 @@ public static class ConjugateGradient
     /// Solves to |b - Lx| &lt;= tolerance |b| column by column. Each column of b must sum to zero over the component; x is centred.
     /// The recurrence aims a fifth below the tolerance, so that the true residual, recomputed at the end, can meet it.
     /// </summary>
-    /// <param name="network">The network.</param>
+    /// <param name="laplacian">L.</param>
     /// <param name="preconditioner">M.</param>
     /// <param name="b">Right-hand sides, n x W.</param>
     /// <param name="x">Solutions, n x W; what it held is overwritten.</param>
@@ -31,7 +31,7 @@ public static class ConjugateGradient
     /// <param name="report">Receives iterations, reasons and true residuals.</param>
     /// <param name="cancel">Checked once an iteration.</param>
     public static void Solve<T>(
-        Network network,
+        Laplacian laplacian,
         IPreconditioner<T> preconditioner,
         Panel<T> b,
         Panel<T> x,
@@ -45,7 +45,7 @@ public static class ConjugateGradient
         (int start, int end) = (component.Start, component.End);
         Panel<T> r = workspace.R, p = workspace.P, q = workspace.Q;
         Clear(x, start, end);
-        LaneSums bb = PanelKernels.Residual(network, b, x, start, end); // x = 0, so this is |b|^2
+        LaneSums bb = PanelKernels.Residual(laplacian, b, x, start, end); // x = 0, so this is |b|^2
         Copy(b, r, start, end);
         LaneSums rs = preconditioner.Apply(r, q, start, end);
         Copy(q, p, start, end);
@@ -69,7 +69,7 @@ public static class ConjugateGradient
         {
             cancel.ThrowIfCancellationRequested();
             iteration++;
-            LaneSums pq = PanelKernels.Multiply(network, p, q, start, end);
+            LaneSums pq = PanelKernels.Multiply(laplacian, p, q, start, end);
             LaneSums a = default;
             for (int lane = 0; lane < Panel<T>.Width; lane++)
             {
@@ -98,7 +98,7 @@ public static class ConjugateGradient
         }
 
         report.Iterations = iteration;
-        LaneSums residual = PanelKernels.Residual(network, b, x, start, end);
+        LaneSums residual = PanelKernels.Residual(laplacian, b, x, start, end);
         for (int lane = 0; lane < Panel<T>.Width; lane++)
             report.Residuals[lane] = bb[lane] > 0 ? Math.Sqrt(residual[lane] / bb[lane]) : 0;
         PanelKernels.Centre(x, start, end);

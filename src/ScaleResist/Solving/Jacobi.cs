@@ -1,20 +1,19 @@
 // The diagonal preconditioner: enough on social cores, where conjugate gradient needs few steps; slow on meshes and roads.
 
 using System.Numerics;
-using ScaleResist.Graphs;
 using ScaleResist.Kernels;
 
 namespace ScaleResist.Solving;
 
 /// <summary>M = D^-1: each row divided by the node's strength.</summary>
 /// <typeparam name="T"><see cref="float"/> or <see cref="double"/>.</typeparam>
-/// <param name="network">The network whose strengths are used.</param>
-public sealed class Jacobi<T>(Network network) : IPreconditioner<T>
+/// <param name="strengths">The diagonal of L.</param>
+public sealed class Jacobi<T>(double[] strengths) : IPreconditioner<T>
     where T : unmanaged, INumber<T>
 {
     /// <inheritdoc/>
     public string Name => "jacobi";
 
     /// <inheritdoc/>
-    public LaneSums Apply(Panel<T> r, Panel<T> s, int start, int end) => PanelKernels.Scale(network.Strengths, r, s, start, end);
+    public LaneSums Apply(Panel<T> r, Panel<T> s, int start, int end) => PanelKernels.Scale(strengths, r, s, start, end);
 }

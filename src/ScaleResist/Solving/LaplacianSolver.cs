@@ -46,8 +46,8 @@ public sealed class LaplacianSolver
     public LaplacianSolver(Network network)
     {
         this.network = network;
-        single = new Jacobi<float>(network);
-        twice = new Jacobi<double>(network);
+        single = new Jacobi<float>(network.Strengths);
+        twice = new Jacobi<double>(network.Strengths);
     }
 
     /// <summary>The name of the preconditioner in use.</summary>
@@ -74,7 +74,7 @@ public sealed class LaplacianSolver
                 z.Row(component.Start).Clear();
                 continue;
             }
-            ConjugateGradient.Solve(network, single, b, z, workspace, component, SolveLimits.For(tolerance, component.Nodes), report, cancel);
+            ConjugateGradient.Solve(network.Laplacian, single, b, z, workspace, component, SolveLimits.For(tolerance, component.Nodes), report, cancel);
             List<int> failed = [];
             double residual = 0;
             for (int column = 0; column < columns; column++)
@@ -140,7 +140,7 @@ public sealed class LaplacianSolver
         CancellationToken cancel)
     {
         SolveReport report = new();
-        ConjugateGradient.Solve(network, twice, b, z, workspace, component, SolveLimits.For(tolerance, component.Nodes), report, cancel);
+        ConjugateGradient.Solve(network.Laplacian, twice, b, z, workspace, component, SolveLimits.For(tolerance, component.Nodes), report, cancel);
         double residual = 0;
         for (int column = 0; column < columns; column++)
         {

@@ -104,8 +104,8 @@ public unsafe class KernelTwinTests
         {
             List<LaneSums> sums =
             [
-                PanelKernels.Multiply(network, p, q, start, n),
-                PanelKernels.Residual(network, r, x, start, n),
+                PanelKernels.Multiply(network.Laplacian, p, q, start, n),
+                PanelKernels.Residual(network.Laplacian, r, x, start, n),
                 PanelKernels.Step(x, r, p, q, factors, start, n),
                 PanelKernels.Scale(network.Strengths, r, s, start, n),
             ];

@@ -23,8 +23,8 @@ public class ConjugateGradientTests
         LaplacianSolver solver = new(network);
         solver.Solve(b, x, 8, 1e-8, workspace, default);
         Assert.InRange(solver.Statistics.LargestResidual, 0, 1e-8);
-        LaneSums check = PanelKernels.Residual(network, b, x, 0, network.NodeCount);
-        LaneSums size = PanelKernels.Residual(network, b, new Panel<double>(network.NodeCount), 0, network.NodeCount);
+        LaneSums check = PanelKernels.Residual(network.Laplacian, b, x, 0, network.NodeCount);
+        LaneSums size = PanelKernels.Residual(network.Laplacian, b, new Panel<double>(network.NodeCount), 0, network.NodeCount);
         for (int j = 0; j < 8; j++)
             Assert.True(check[j] <= 1e-16 * size[j]);
     }
@@ -39,7 +39,7 @@ public class ConjugateGradientTests
         using GradientWorkspace<float> workspace = new(12);
         SolveReport report = new();
         ConjugateGradient.Solve(
-            network, new Jacobi<float>(network), b, x, workspace, network.Components[0], SolveLimits.For(1e-5, 12), report, default);
+            network.Laplacian, new Jacobi<float>(network.Strengths), b, x, workspace, network.Components[0], SolveLimits.For(1e-5, 12), report, default);
         for (int j = 0; j < 16; j++)
         {
             Assert.Equal(j == 5 ? StopReason.Converged : StopReason.ZeroRightHandSide, report.Reasons[j]);
@@ -55,7 +55,7 @@ public class ConjugateGradientTests
         using GradientWorkspace<double> workspace = new(500);
         SolveReport report = new();
         ConjugateGradient.Solve(
-            network, new Jacobi<double>(network), b, x, workspace, network.Components[0], new SolveLimits(1e-8, 20), report, default);
+            network.Laplacian, new Jacobi<double>(network.Strengths), b, x, workspace, network.Components[0], new SolveLimits(1e-8, 20), report, default);
         Assert.Equal(20, report.Iterations);
         Assert.All(report.Reasons[..8], reason => Assert.Equal(StopReason.IterationLimit, reason));
         Assert.All(report.Residuals[..8], residual => Assert.True(residual > 1e-8));
@@ -87,8 +87,8 @@ public class ConjugateGradientTests
         solver.Solve(b, z, 16, 1e-9, workspace, default);
         Assert.Equal(16, solver.Statistics.Retried);
         Assert.InRange(solver.Statistics.LargestResidual, 0, 1e-9);
-        LaneSums residual = PanelKernels.Residual(network, b, z, 0, network.NodeCount);
-        LaneSums size = PanelKernels.Residual(network, b, new Panel<float>(network.NodeCount), 0, network.NodeCount);
+        LaneSums residual = PanelKernels.Residual(network.Laplacian, b, z, 0, network.NodeCount);
+        LaneSums size = PanelKernels.Residual(network.Laplacian, b, new Panel<float>(network.NodeCount), 0, network.NodeCount);
         for (int j = 0; j < 16; j++)
             Assert.True(residual[j] <= 1e-10 * size[j]); // rounded back to floats
     }
