@@ -35,7 +35,8 @@ internal static class NetworkInput
     }
 
     /// <summary>Opens input of any form as rows.</summary>
-    public static IRowSource Open(string path, RowRequest request, Action<long>? bytesRead = null, CancellationToken ct = default) =>
+    public static IRowSource Open(
+        string path, RowRequest request, Action<long>? bytesRead = null, CancellationToken ct = default) =>
         Directory.Exists(path) || path.EndsWith(".parquet", StringComparison.OrdinalIgnoreCase)
             ? ParquetRows.Open(path, request, bytesRead, ct)
             : TextRows.Open(path, request, bytesRead, ct);

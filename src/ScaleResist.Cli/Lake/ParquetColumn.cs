@@ -1,6 +1,7 @@
 // One column of one row group, widened to what the readers work with: int64 or string labels, double numbers.
 // Invariant: after Load, no value is null; a null or an integer beyond int64 is refused with its row.
 
+using System.Buffers;
 using System.Numerics;
 using Parquet;
 using Parquet.Schema;
@@ -93,10 +94,7 @@ internal sealed class ParquetColumn
             : !isNumber && typeof(T) == typeof(long) ? Sized((T[])(Array)Integers, rows) : new T[rows];
         if (column.IsNullable)
         {
-            T?[] nullable = new T?[rows];
-            await group.ReadAsync<T>(column, nullable.AsMemory(), null, ct).ConfigureAwait(false);
-            for (int i = 0; i < rows; i++)
-                values[i] = nullable[i] ?? throw Null(i);
+            await LoadNullable(group, values, rows, ct).ConfigureAwait(false);
         }
         else
         {
@@ -113,10 +111,7 @@ internal sealed class ParquetColumn
         Texts = Sized(Texts, rows);
         if (column.IsNullable)
         {
-            ReadOnlyMemory<char>?[] nullable = new ReadOnlyMemory<char>?[rows];
-            await group.ReadAsync<ReadOnlyMemory<char>>(column, nullable.AsMemory(), null, ct).ConfigureAwait(false);
-            for (int i = 0; i < rows; i++)
-                Texts[i] = nullable[i] ?? throw Null(i);
+            await LoadNullable(group, Texts, rows, ct).ConfigureAwait(false);
         }
         else
         {
@@ -129,6 +124,22 @@ internal sealed class ParquetColumn
                 throw fault(i, $"the node id '{InputException.Show(Texts[i].Span)}' has {Texts[i].Length} characters",
                     $"give node ids of 1 to {RowRequest.LongestLabel} characters");
             }
+        }
+    }
+
+    private async Task LoadNullable<T>(ParquetRowGroupReader group, T[] values, int rows, CancellationToken ct)
+        where T : struct
+    {
+        T?[] nullable = ArrayPool<T?>.Shared.Rent(rows);
+        try
+        {
+            await group.ReadAsync<T>(column, nullable.AsMemory(0, rows), null, ct).ConfigureAwait(false);
+            for (int i = 0; i < rows; i++)
+                values[i] = nullable[i] ?? throw Null(i);
+        }
+        finally
+        {
+            ArrayPool<T?>.Shared.Return(nullable, clearArray: true);
         }
     }
 
@@ -145,9 +156,11 @@ internal sealed class ParquetColumn
         return wide;
     }
 
-    private InputException Null(int row) => fault(row, $"the column '{InputException.Show(column.Name)}' is null", "drop the row or fill it in");
+    private InputException Null(int row) =>
+        fault(row, $"the column '{InputException.Show(column.Name)}' is null", "drop the row or fill it in");
 
-    private static string NameOf(Type type) => type == typeof(ReadOnlyMemory<char>) ? "String" : type == typeof(byte[]) ? "Binary" : type.Name;
+    private static string NameOf(Type type) => type == typeof(ReadOnlyMemory<char>) ? "String"
+        : type == typeof(byte[]) || type == typeof(ReadOnlyMemory<byte>) ? "Binary" : type.Name;
 
     private static T[] Sized<T>(T[] buffer, int rows) => buffer.Length >= rows ? buffer : new T[rows];
 

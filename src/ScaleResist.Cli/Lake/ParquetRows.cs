@@ -1,5 +1,6 @@
 // Rows of a Parquet file, or of a folder of Parquet parts in the order of their names, one row group in memory at a time.
-// Invariant: all parts have the same columns; whatever the Parquet library throws at a broken file comes out as an InputException.
+// Invariant: all parts have the same columns; whatever the Parquet library throws at a broken file comes out as an
+// InputException.
 
 using System.Globalization;
 using System.Security.Cryptography;
@@ -30,6 +31,7 @@ internal sealed class ParquetRows : IRowSource
     private long rowsBefore;
     private long rows;
     private long bytes;
+    private long bytesBefore;
     private string? digest;
 
     private ParquetRows(string path, RowRequest request, Action<long>? bytesRead, CancellationToken ct)
@@ -56,7 +58,8 @@ internal sealed class ParquetRows : IRowSource
         Columns = names,
     };
 
-    /// <summary>Opens a <c>.parquet</c> file or a folder of them; names that begin with <c>_</c> or <c>.</c> are passed over.</summary>
+    /// <summary>Opens a <c>.parquet</c> file or a folder of them; names that begin with <c>_</c> or <c>.</c> are passed
+    /// over.</summary>
     /// <exception cref="InputException">The input cannot be used.</exception>
     public static IRowSource Open(string path, RowRequest request, Action<long>? bytesRead = null, CancellationToken ct = default)
     {
@@ -124,11 +127,13 @@ internal sealed class ParquetRows : IRowSource
                 .Order(StringComparer.Ordinal)];
             return parts.Length > 0
                 ? parts
-                : throw new InputException(folder, null, "is a folder without .parquet files", "name the folder that holds the parts");
+                : throw new InputException(folder, null, "is a folder without .parquet files",
+                    "name the folder that holds the parts");
         }
         catch (Exception e) when (e is IOException or UnauthorizedAccessException)
         {
-            throw new InputException(folder, null, $"the folder cannot be listed ({e.Message})", "ask for permission to read it", e);
+            throw new InputException(folder, null, $"the folder cannot be listed ({e.Message})",
+                "ask for permission to read it", e);
         }
     }
 
@@ -154,13 +159,15 @@ internal sealed class ParquetRows : IRowSource
                 using ParquetRowGroupReader open = reader.OpenRowGroupReader(group);
                 long count = open.RowCount;
                 if (count is < 0 or > LargestRowGroup)
-                    throw new InputException(parts[part], null, $"a row group of {count} rows", "write row groups of about a million rows");
+                    throw new InputException(parts[part], null, $"a row group of {count} rows",
+                        "write row groups of about a million rows");
                 foreach (ParquetColumn column in columns)
                     await column.Load(open, (int)count, ct).ConfigureAwait(false);
                 groupRows = (int)count;
                 return 0;
             });
             group++;
+            bytesRead?.Invoke(bytesBefore + ((bytes - bytesBefore) * group / reader.RowGroupCount));
             if (groupRows > 0)
                 return true;
         }
@@ -172,6 +179,7 @@ internal sealed class ParquetRows : IRowSource
             throw new InputException(file, null, "is a folder", "name the folder that holds the parts");
         group = 0;
         rowsBefore = 0;
+        bytesBefore = bytes;
         FileStream stream = TextRows.OpenFile(file);
         try
         {
@@ -211,7 +219,8 @@ internal sealed class ParquetRows : IRowSource
             if (request.Columns is null && i >= fields.Length)
             {
                 throw isNumber ? request.NumberMissing(file, null)
-                    : new InputException(file, null, $"has {fields.Length} of {request.ColumnsUsed} columns", "give it the columns needed");
+                    : new InputException(file, null, $"has {fields.Length} of {request.ColumnsUsed} columns",
+                        "give it the columns needed");
             }
             Field field = request.Columns is null ? fields[i] : Find(file, fields, request.Columns[i]);
             if (ParquetColumn.Unusable(field, isNumber) is { } problem)
@@ -235,7 +244,8 @@ internal sealed class ParquetRows : IRowSource
             found = [.. fields.Where(field => string.Equals(field.Name, name, StringComparison.OrdinalIgnoreCase))];
         return found.Length == 1 ? found[0] : throw new InputException(file, null,
             $"there is {(found.Length == 0 ? "no" : "more than one")} column '{InputException.Show(name)}'; it has "
-            + string.Join(", ", fields.Take(20).Select(field => InputException.Show(field.Name))), "name columns that the file has");
+            + string.Join(", ", fields.Take(20).Select(field => InputException.Show(field.Name))),
+            "name columns that the file has");
     }
 
     private void ClosePart()
@@ -244,7 +254,6 @@ internal sealed class ParquetRows : IRowSource
             return;
         reader.DisposeAsync().AsTask().GetAwaiter().GetResult();
         reader = null;
-        bytesRead?.Invoke(bytes);
     }
 
     // A broken file makes the library throw whatever its innermost loop stumbles over, out of range to out of memory.

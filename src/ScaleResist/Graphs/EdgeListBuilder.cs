@@ -21,13 +21,15 @@ public sealed class EdgeListBuilder
     /// <summary>Rows added so far.</summary>
     public long Count => links.Count;
 
-    /// <summary>Adds a link between integer labels. <paramref name="conductance"/> must be finite and positive; it is ignored without weights.</summary>
+    /// <summary>Adds a link between integer labels. <paramref name="conductance"/> must be finite and positive; it is ignored
+    /// without weights.</summary>
     public void Add(long source, long target, double conductance = 1)
     {
         if (byInteger is not null)
             Append(byInteger.GetOrAdd(source), byInteger.GetOrAdd(target), conductance);
         else
-            Append(Index(source.ToString(CultureInfo.InvariantCulture)), Index(target.ToString(CultureInfo.InvariantCulture)), conductance);
+            Append(Index(source.ToString(CultureInfo.InvariantCulture)), Index(target.ToString(CultureInfo.InvariantCulture)),
+                conductance);
     }
 
     /// <summary>Adds a link between labels as they stand in the file.</summary>

@@ -8,7 +8,8 @@ namespace ScaleResist.Graphs;
 /// <summary>Reads a network's links.</summary>
 public static class EdgeListReader
 {
-    /// <summary>Reads a text file of links in one pass: <c>.csv .tsv .txt .edges .mtx</c>, each also <c>.gz</c> and <c>.zst</c>.</summary>
+    /// <summary>Reads a text file of links in one pass: <c>.csv .tsv .txt .edges .mtx</c>, each also <c>.gz</c> and
+    /// <c>.zst</c>.</summary>
     /// <param name="path">The file; its ending names the form.</param>
     /// <param name="options">What the columns mean.</param>
     /// <param name="bytesRead">Told the bytes read from disk so far.</param>
@@ -33,7 +34,8 @@ public static class EdgeListReader
         }
         bool weighted = options.Weights is WeightMeaning.Conductance or WeightMeaning.Resistance;
         if (weighted && named == 2)
-            throw new InputException(path, null, "weights are asked for, and no weight column is named", "name it third in --columns");
+            throw new InputException(path, null, "weights are asked for, and no weight column is named",
+                "name it third in --columns");
         if (options.Weights == WeightMeaning.Unsaid && named == 3)
             throw RowRequest.WeightUnsaid(path, null);
         return new RowRequest
@@ -61,7 +63,10 @@ public static class EdgeListReader
                 builder.Add(row.First, row.Second, conductance);
         }
         InputFacts facts = rows.Facts;
-        CheckHeader(builder, rows, facts);
+        // A first row of names such as a,b may just as well be a link. If such a name turns up as a node below, nobody can tell.
+        if (rows.GuessedHeaderLine is { } line
+            && facts.Columns.Take(2).FirstOrDefault(name => builder.Contains(name)) is { } node)
+            throw RowRequest.HeaderOrNode(facts.Path, line, node);
         return builder.Finish(facts);
     }
 
@@ -75,20 +80,5 @@ public static class EdgeListReader
             ? rows.Fault($"the resistance {shown} has no finite positive conductance", "give a finite resistance above zero")
             : rows.Fault($"the conductance {shown} is not a finite positive number",
                 "give a finite conductance above zero, or drop the link");
-    }
-
-    // A first row of names such as a,b may just as well be a link. If such a name turns up as a node below, nobody can tell.
-    private static void CheckHeader(EdgeListBuilder builder, IRowSource rows, InputFacts facts)
-    {
-        if (rows.GuessedHeaderLine is not { } line)
-            return;
-        foreach (string name in facts.Columns.Take(2))
-        {
-            if (builder.Contains(name))
-            {
-                throw new InputException(facts.Path, line, $"'{InputException.Show(name)}' may be a column name or a node: it is a node further down",
-                    "put a header such as source,target (and weight) above the first link, or rename the columns");
-            }
-        }
     }
 }

@@ -29,7 +29,8 @@ public sealed record RowRequest
     public NumberColumn Number { get; init; }
 
     /// <summary>
-    /// Names or 1-based positions of the label columns and, where a number is required, of the number column. Null: the first ones.
+    /// Names or 1-based positions of the label columns and, where a number is required, of the number column. Null: the first
+    /// ones.
     /// </summary>
     public IReadOnlyList<string>? Columns { get; init; }
 
@@ -61,6 +62,21 @@ public sealed record RowRequest
         "there is a third column, and it was not said what it means",
         "say --weights conductance (a larger number is a stronger link), --weights resistance (a larger number is a weaker link) "
         + "or --weights none (ignore it)");
+
+    /// <summary>The refusal of a first row that may be a header and may be data.</summary>
+    internal static InputException HeaderOrNode(string path, long line, string name) => new(path, line,
+        $"'{InputException.Show(name)}' may be a column name or a node: there is a node of that name",
+        "put a header of other names above the first row, such as source,target (and weight)");
+
+    /// <summary>
+    /// Checks a file about nodes that are known: where the row taken for a header names nodes only, it may be data.
+    /// </summary>
+    internal void CheckHeader(IRowSource rows, NodeLabels labels)
+    {
+        InputFacts facts = rows.Facts;
+        if (rows.GuessedHeaderLine is { } line && facts.Columns.Take(Labels).All(name => labels.IndexOf(name) >= 0))
+            throw HeaderOrNode(facts.Path, line, facts.Columns[0]);
+    }
 
     /// <summary>The refusal of a file without the number column that was asked for.</summary>
     public InputException NumberMissing(string path, long? line) => new(path, line,

@@ -56,7 +56,8 @@ internal sealed class InputFile : IDisposable
             throw new InputException(path, null, "is a folder, not a file", "name a file in it");
         if (Array.IndexOf(Forms, ending) < 0)
         {
-            throw new InputException(path, null, $"the ending '{InputException.Show(ending + archive)}' names no form that can be read",
+            throw new InputException(path, null,
+                $"the ending '{InputException.Show(ending + archive)}' names no form that can be read",
                 "rename it to end in .csv, .tsv, .txt, .edges or .mtx, each also with .gz or .zst");
         }
         FileStream file = OpenStream(path, 0);

@@ -143,7 +143,8 @@ internal sealed class LineFilter : TextReader
         {
             chars.AsSpan(charAt, waiting).CopyTo(chars);
         }
-        OperationStatus status = Utf8.ToUtf16(block, chars.AsSpan(waiting), out int read, out int written, replaceInvalidSequences: false);
+        OperationStatus status = Utf8.ToUtf16(block, chars.AsSpan(waiting), out int read, out int written,
+            replaceInvalidSequences: false);
         if (status != OperationStatus.Done)
         {
             throw Fault(linesBefore + block[..read].Count((byte)'\n') + 1, $"byte 0x{block[read]:x2} is not UTF-8",
@@ -205,7 +206,8 @@ internal sealed class LineFilter : TextReader
                 : Fault(lines, $"control character 0x{text[control]:x2}; this is not text", "give a UTF-8 text file");
         }
         if ((text.Count((byte)'"') & 1) == 1)
-            throw Fault(lines, "a quote is opened and not closed on its line", "close the quote, or double a quote that belongs to a label");
+            throw Fault(lines, "a quote is opened and not closed on its line",
+                "close the quote, or double a quote that belongs to a label");
         if (Separation == Separation.Undecided)
             Separation = Decide(text);
         if (Separation == Separation.Blanks)

@@ -28,7 +28,8 @@ internal sealed class MatrixMarketRows : IRowSource
         this.cells = cells;
         this.request = request;
         if (request.Labels == 1)
-            throw cells.Fault(null, "is a matrix, where a list of nodes is needed", "give a .csv or .tsv file of node and number");
+            throw cells.Fault(null, "is a matrix, where a list of nodes is needed",
+                "give a .csv or .tsv file of node and number");
         if (request.Columns is not null)
             throw cells.Fault(null, "columns are named, and a Matrix Market file has none", "leave --columns out");
         (hasValues, symmetric) = ReadBanner(cells);
@@ -50,7 +51,8 @@ internal sealed class MatrixMarketRows : IRowSource
         {
             return rows == entries
                 ? false
-                : throw cells.Fault(cells.Line, $"the file ends after {rows} of the {entries} entries that its size line declares",
+                : throw cells.Fault(cells.Line,
+                    $"the file ends after {rows} of the {entries} entries that its size line declares",
                     "the file is truncated: fetch or make it again");
         }
         if (rows == entries)
@@ -88,7 +90,8 @@ internal sealed class MatrixMarketRows : IRowSource
     private long Index(ReadOnlySpan<char> cell) =>
         NodeLabels.TryCanonicalInteger(cell, out long index) && index >= 1 && index <= order
             ? index
-            : throw Fault($"the index '{InputException.Show(cell)}' is not within 1 to {order}", "indices start at 1 and end at the size declared");
+            : throw Fault($"the index '{InputException.Show(cell)}' is not within 1 to {order}",
+                "indices start at 1 and end at the size declared");
 
     private static (bool HasValues, bool Symmetric) ReadBanner(CellReader cells)
     {
@@ -120,7 +123,8 @@ internal sealed class MatrixMarketRows : IRowSource
             valid = long.TryParse(size[i], NumberStyles.None, CultureInfo.InvariantCulture, out numbers[i]);
         if (!valid)
         {
-            throw cells.Fault(cells.Line, $"the size line '{InputException.Show(string.Join(' ', size))}' is not three whole numbers",
+            throw cells.Fault(cells.Line,
+                $"the size line '{InputException.Show(string.Join(' ', size))}' is not three whole numbers",
                 "put a line 'rows columns entries' below the banner");
         }
         if (numbers[0] != numbers[1])

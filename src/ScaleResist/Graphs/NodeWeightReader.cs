@@ -40,15 +40,18 @@ public static class NodeWeightReader
                 ? PairReader.Index(labels, row.FirstInteger, rows)
                 : PairReader.Index(labels, row.First, rows);
             if (!double.IsNaN(weights[node]))
-                throw rows.Fault($"the node '{InputException.Show(labels[node])}' has a weight already", "give each node one row");
+                throw rows.Fault($"the node '{InputException.Show(labels[node])}' has a weight already",
+                    "give each node one row");
             if (!double.IsFinite(row.Number) || row.Number < 0)
             {
-                throw rows.Fault($"the weight {row.Number.ToString(CultureInfo.InvariantCulture)} is not a finite number from zero up",
+                string shown = row.Number.ToString(CultureInfo.InvariantCulture);
+                throw rows.Fault($"the weight {shown} is not a finite number from zero up",
                     "give a finite weight that is not negative");
             }
             weights[node] = row.Number;
             given++;
         }
+        Request(null).CheckHeader(rows, labels);
         if (given < weights.Length)
         {
             string missing = labels[Array.FindIndex(weights, double.IsNaN)];

@@ -6,7 +6,8 @@ namespace ScaleResist.Graphs;
 /// <summary>Reads the pairs of nodes whose resistance is wanted.</summary>
 public static class PairReader
 {
-    /// <summary>Reads a text file of pairs; the same forms as <see cref="EdgeListReader"/>. A node may be paired with itself.</summary>
+    /// <summary>Reads a text file of pairs; the same forms as <see cref="EdgeListReader"/>. A node may be paired with
+    /// itself.</summary>
     /// <param name="path">The file.</param>
     /// <param name="labels">The network's labels.</param>
     /// <param name="columns">Two column names or 1-based positions; null: the first two.</param>
@@ -32,6 +33,7 @@ public static class PairReader
                 ? (Index(labels, row.FirstInteger, rows), Index(labels, row.SecondInteger, rows))
                 : (Index(labels, row.First, rows), Index(labels, row.Second, rows)));
         }
+        Request(null).CheckHeader(rows, labels);
         return pairs;
     }
 
@@ -50,5 +52,6 @@ public static class PairReader
     }
 
     private static InputException Unknown(ReadOnlySpan<char> label, IRowSource rows) =>
-        rows.Fault($"the network has no node '{InputException.Show(label)}'", "name nodes of the network, spelled as in its file");
+        rows.Fault($"the network has no node '{InputException.Show(label)}'",
+            "name nodes of the network, spelled as in its file");
 }

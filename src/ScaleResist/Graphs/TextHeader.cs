@@ -17,12 +17,15 @@ internal sealed class TextHeader
         "from_node", "to_node", "fromnode", "tonode", "fromnodeid", "tonodeid", "node_id", "nodeid", "vertex",
     };
 
+    private static readonly StringComparison[] Comparisons = [StringComparison.Ordinal, StringComparison.OrdinalIgnoreCase];
+
     private TextHeader(int[] indices, bool isHeader, bool guessed, string[] first)
     {
         Indices = indices;
         IsHeader = isHeader;
         IsGuessed = guessed;
-        Names = Array.ConvertAll(indices, i => isHeader && i < first.Length ? first[i] : (i + 1).ToString(CultureInfo.InvariantCulture));
+        Names = Array.ConvertAll(
+            indices, i => isHeader && i < first.Length ? first[i] : (i + 1).ToString(CultureInfo.InvariantCulture));
     }
 
     /// <summary>The 0-based columns: labels, then the number where one is required.</summary>
@@ -42,7 +45,8 @@ internal sealed class TextHeader
     /// <param name="first">The first data row.</param>
     /// <param name="second">The second data row, or null.</param>
     /// <param name="fault">Makes an error at the first row.</param>
-    public static TextHeader Find(RowRequest request, string[] first, string[]? second, Func<string, string, InputException> fault)
+    public static TextHeader Find(
+        RowRequest request, string[] first, string[]? second, Func<string, string, InputException> fault)
     {
         int[] indices = new int[request.ColumnsUsed];
         bool named = false;
@@ -72,13 +76,14 @@ internal sealed class TextHeader
 
     private static int IndexOf(string name, string[] header, Func<string, string, InputException> fault)
     {
-        foreach (StringComparison comparison in (ReadOnlySpan<StringComparison>)[StringComparison.Ordinal, StringComparison.OrdinalIgnoreCase])
+        foreach (StringComparison comparison in Comparisons)
         {
             int[] found = [.. Enumerable.Range(0, header.Length).Where(i => string.Equals(header[i], name, comparison))];
             if (found.Length == 1)
                 return found[0];
             if (found.Length > 1)
-                throw fault($"the column '{InputException.Show(name)}' stands twice in the header", "give each column its own name");
+                throw fault($"the column '{InputException.Show(name)}' stands twice in the header",
+                    "give each column its own name");
         }
         string has = string.Join(", ", header.Take(20).Select(cell => InputException.Show(cell)));
         throw fault($"there is no column '{InputException.Show(name)}'; the first row reads {has}",
@@ -97,9 +102,9 @@ internal sealed class TextHeader
             return false;
         if (labels.All(i => !IsInteger(Cell(first, i)) && IsInteger(Cell(second, i))))
             return true;
-        // The column after the labels tells too: a name above a number.
-        int number = indices.Length > request.Labels ? indices[^1] : request.Columns is null ? request.Labels : -1;
-        return number >= 0 && number < first.Length && !IsNumber(first[number]) && IsNumber(Cell(second, number));
+        // The number column tells too: a name above a number.
+        return request.Number == NumberColumn.Required && !IsNumber(Cell(first, indices[^1]))
+            && IsNumber(Cell(second, indices[^1]));
     }
 
     private static bool IsInteger(string cell) => NodeLabels.TryCanonicalInteger(cell, out _);

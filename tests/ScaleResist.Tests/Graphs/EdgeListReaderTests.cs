@@ -25,7 +25,8 @@ public sealed class EdgeListReaderTests : IDisposable
 
     private static string Text(string form, IEnumerable<(int, int, double)> links)
     {
-        StringBuilder text = new(form == "mtx" ? "%%MatrixMarket matrix coordinate real general\n% made\n3000 3000 3000\n" : "# made\n");
+        StringBuilder text = new(form == "mtx"
+            ? "%%MatrixMarket matrix coordinate real general\n% made\n3000 3000 3000\n" : "# made\n");
         string separator = form switch { "csv" => ",", "tsv" => "\t", _ => "  " };
         foreach ((int u, int v, double c) in links)
             text.Append(u).Append(separator).Append(v).Append(separator).Append(FormattableString.Invariant($"{c}\n"));
@@ -160,7 +161,8 @@ public sealed class EdgeListReaderTests : IDisposable
     {
         string path = folder.Write("net.tsv", "1\t2\t4\tx\n2\t3\t0.5\ty\n");
         Assert.Equal(["1-2:4", "2-3:0.5"], Links.Of(EdgeListReader.Read(path, Conductance)));
-        Assert.Equal(["1-2:0.25", "2-3:2"], Links.Of(EdgeListReader.Read(path, new ReadOptions { Weights = WeightMeaning.Resistance })));
+        Assert.Equal(["1-2:0.25", "2-3:2"],
+            Links.Of(EdgeListReader.Read(path, new ReadOptions { Weights = WeightMeaning.Resistance })));
         Assert.Equal(["1-2", "2-3"], Links.Of(EdgeListReader.Read(path, new ReadOptions { Weights = WeightMeaning.None })));
     }
 
@@ -173,7 +175,8 @@ public sealed class EdgeListReaderTests : IDisposable
         text.Append("1\n2\t3\n");
         foreach (string name in (string[])["net.tsv", "net.txt", "net.tsv.gz", "net.txt.zst"])
         {
-            InputException e = Assert.Throws<InputException>(() => EdgeListReader.Read(folder.Write(name, text.ToString()), Plain));
+            InputException e = Assert.Throws<InputException>(() =>
+                EdgeListReader.Read(folder.Write(name, text.ToString()), Plain));
             Assert.Equal(100_000, e.Line);
         }
     }

@@ -32,16 +32,22 @@ public sealed class MatrixMarketTests : IDisposable
     [InlineData("%%MatrixMarket matrix coordinate real hermitian\n2 2 1\n2 1 1\n", 1, "'hermitian'", "symmetric")]
     [InlineData("%%MatrixMarket vector coordinate real general\n2 1\n", 1, "'vector'", "matrix coordinate")]
     [InlineData("%%MatrixMarket matrix coordinate pattern general\n2 3 1\n1 2\n", 2, "2 x 3, not square", "as many rows")]
-    [InlineData("%%MatrixMarket matrix coordinate pattern general\n% c\n2 x 1\n1 2\n", 3, "size line '2 x 1'", "rows columns entries")]
-    [InlineData("%%MatrixMarket matrix coordinate pattern general\n2 2 1\n1 3\n", 3, "the index '3' is not within 1 to 2", "start at 1")]
+    [InlineData("%%MatrixMarket matrix coordinate pattern general\n% c\n2 x 1\n1 2\n", 3, "size line '2 x 1'",
+        "rows columns entries")]
+    [InlineData("%%MatrixMarket matrix coordinate pattern general\n2 2 1\n1 3\n", 3, "the index '3' is not within 1 to 2",
+        "start at 1")]
     [InlineData("%%MatrixMarket matrix coordinate pattern general\n2 2 1\n0 1\n", 3, "the index '0'", "start at 1")]
     [InlineData("%%MatrixMarket matrix coordinate pattern general\n2 2 1\n1 x\n", 3, "the index 'x'", "start at 1")]
-    [InlineData("%%MatrixMarket matrix coordinate pattern general\n2 2 3\n1 2\n2 2\n", 4, "after 2 of the 3 entries", "truncated")]
-    [InlineData("%%MatrixMarket matrix coordinate pattern general\n2 2 1\n1 2\n2 2\n", 4, "more than the 1 entries", "number of entries")]
-    [InlineData("%%MatrixMarket matrix coordinate pattern general\n2 2 1\n1\n", 3, "has 1 cells where the banner asks for 2", "row and column")]
+    [InlineData("%%MatrixMarket matrix coordinate pattern general\n2 2 3\n1 2\n2 2\n", 4, "after 2 of the 3 entries",
+        "truncated")]
+    [InlineData("%%MatrixMarket matrix coordinate pattern general\n2 2 1\n1 2\n2 2\n", 4, "more than the 1 entries",
+        "number of entries")]
+    [InlineData("%%MatrixMarket matrix coordinate pattern general\n2 2 1\n1\n", 3, "has 1 cells where the banner asks for 2",
+        "row and column")]
     [InlineData("%%MatrixMarket matrix coordinate pattern general\n2 2 1\n1 2 5\n", 3, "has 3 cells", "row and column")]
     [InlineData("%%MatrixMarket matrix coordinate real general\n2 2 1\n1 2 5\n", 1, "a third column", "--weights")]
-    [InlineData("%%MatrixMarket matrix coordinate pattern symmetric\n2 2 2\n1 2\n2 1\n", 4, "both sides of the diagonal", "lower triangle")]
+    [InlineData("%%MatrixMarket matrix coordinate pattern symmetric\n2 2 2\n1 2\n2 1\n", 4, "both sides of the diagonal",
+        "lower triangle")]
     [InlineData("%%MatrixMarket matrix coordinate pattern general\n", 1, "size line is missing", "rows columns entries")]
     [InlineData("%%MatrixMarket matrix coordinate pattern general\n2 2 0\n", 2, "no data rows", "at least one")]
     public void Other_files_are_refused(string text, int line, string problem, string mend)
@@ -56,7 +62,8 @@ public sealed class MatrixMarketTests : IDisposable
     public void Weights_need_values_and_columns_have_no_meaning()
     {
         string text = "%%MatrixMarket matrix coordinate pattern general\n2 2 1\n1 2\n";
-        Assert.Contains("pattern", Assert.Throws<InputException>(() => Read(text, WeightMeaning.Conductance)).Problem, StringComparison.Ordinal);
+        Assert.Contains("pattern", Assert.Throws<InputException>(() => Read(text, WeightMeaning.Conductance)).Problem,
+            StringComparison.Ordinal);
         ReadOptions options = new() { Columns = ["1", "2"] };
         InputException e = Assert.Throws<InputException>(() => EdgeListReader.Read(folder.Write("net.mtx", text), options));
         Assert.Contains("--columns", e.Mend, StringComparison.Ordinal);

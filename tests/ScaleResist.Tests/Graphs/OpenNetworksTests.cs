@@ -4,7 +4,8 @@ namespace ScaleResist.Tests.Graphs;
 
 public sealed class OpenNetworksTests
 {
-    // Counts from data/README.md, less the nodes without links (128 of netscience, 7 of us-states): an edge list has no rows for those.
+    // Counts from data/README.md, less the nodes without links (128 of netscience, 7 of us-states): an edge list has no rows
+    // for those.
     [Theory]
     [InlineData("karate.tsv", 34, 78)]
     [InlineData("dolphins.tsv", 62, 159)]

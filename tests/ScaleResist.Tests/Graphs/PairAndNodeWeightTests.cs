@@ -54,6 +54,18 @@ public sealed class PairAndNodeWeightTests : IDisposable
         Assert.Equal([2, 3, 1], NodeWeightReader.Read(path, Texts, ["site", "load"]));
     }
 
+    [Fact]
+    public void A_first_row_that_looks_like_a_header_and_names_nodes_is_refused()
+    {
+        NodeLabels labels = new(["a", "b", "c"]);
+        InputException e = Assert.Throws<InputException>(() => PairReader.Read(folder.Write("p.csv", "a,b\nb,c\n"), labels));
+        Assert.Equal(1, e.Line);
+        Assert.Contains("header", e.Mend, StringComparison.Ordinal);
+        e = Assert.Throws<InputException>(() => NodeWeightReader.Read(folder.Write("w.csv", "a,x\nb,1\nc,2\n"), labels));
+        Assert.Equal(1, e.Line);
+        Assert.Equal([(1, 2)], PairReader.Read(folder.Write("q.csv", "source,target\nb,c\n"), labels));
+    }
+
     [Theory]
     [InlineData("10,1\n20,1\n", null, "1 nodes of the network have no weight, among them '30'", "every node")]
     [InlineData("10,1\n20,1\n30,1\n10,1\n", 4, "'10' has a weight already", "one row")]

@@ -45,22 +45,25 @@ public sealed class ReaderFuzzTests : IDisposable
                 }
             }));
 
-    private static readonly Gen<ReadOptions> Options = Gen.Select(Gen.Int[0, 3], Gen.Int[0, 3], (weights, columns) => new ReadOptions
-    {
-        Weights = (WeightMeaning)weights,
-        Columns = columns switch { 0 => ["source", "target"], 1 => ["2", "1", "3"], _ => null },
-    });
+    private static readonly Gen<ReadOptions> Options = Gen.Select(Gen.Int[0, 3], Gen.Int[0, 3], (weights, columns) =>
+        new ReadOptions
+        {
+            Weights = (WeightMeaning)weights,
+            Columns = columns switch { 0 => ["source", "target"], 1 => ["2", "1", "3"], _ => null },
+        });
 
     private static byte[] Valid(string form, int rows, bool weighted, bool texts)
     {
         string separator = form switch { "csv" => ",", "tsv" => "\t", _ => " " };
         StringBuilder text = new(form == "mtx"
-            ? $"%%MatrixMarket matrix coordinate {(weighted ? "real" : "pattern")} general\n% note\n{rows + 2} {rows + 2} {rows}\n"
+            ? $"%%MatrixMarket matrix coordinate {(weighted ? "real" : "pattern")} general\n% note\n"
+                + $"{rows + 2} {rows + 2} {rows}\n"
             : "# note\nsource" + separator + "target" + (weighted ? separator + "weight" : "") + "\n");
         for (int i = 1; i <= rows; i++)
         {
             string label = texts && form != "mtx" ? $"\"é \"\"{i}\"" : $"{i}";
-            text.Append(label).Append(separator).Append(i + 1).Append(weighted ? separator + "0.5" : "").Append(i % 5 == 0 ? "\r\n" : "\n");
+            string end = (weighted ? separator + "0.5" : "") + (i % 5 == 0 ? "\r\n" : "\n");
+            text.Append(label).Append(separator).Append(i + 1).Append(end);
         }
         return Encoding.UTF8.GetBytes(text.ToString());
     }
@@ -93,8 +96,10 @@ public sealed class ReaderFuzzTests : IDisposable
             .Sample(
                 (form, packing, rows, kind, before, after, options) =>
                 {
-                    byte[] text = before.Aggregate(Valid(Forms[form], rows, kind % 2 == 0, kind > 1), (bytes, mutate) => mutate(bytes));
-                    byte[] packed = after.Aggregate(ScratchFolder.Pack(Packings[packing], text), (bytes, mutate) => mutate(bytes));
+                    byte[] text = Valid(Forms[form], rows, kind % 2 == 0, kind > 1);
+                    text = before.Aggregate(text, (bytes, mutate) => mutate(bytes));
+                    byte[] packed = ScratchFolder.Pack(Packings[packing], text);
+                    packed = after.Aggregate(packed, (bytes, mutate) => mutate(bytes));
                     Read(Forms[form] + Packings[packing], packed, options);
                 },
                 seed: "0000KDr5Vc5n", iter: 3000);

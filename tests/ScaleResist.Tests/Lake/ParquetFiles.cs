@@ -19,7 +19,8 @@ internal static class ParquetFiles
 
     private static async Task<byte[]> BytesAsync(int rowsInGroup, (string Name, Array Values)[] columns)
     {
-        DataField[] fields = Array.ConvertAll(columns, column => new DataField(column.Name, column.Values.GetType().GetElementType()!));
+        DataField[] fields = Array.ConvertAll(columns, column =>
+            new DataField(column.Name, column.Values.GetType().GetElementType()!));
         using MemoryStream stream = new();
         await using (ParquetWriter writer = await ParquetWriter.CreateAsync(new ParquetSchema(fields), stream))
         {
@@ -39,7 +40,8 @@ internal static class ParquetFiles
     {
         // By exact type: to a pattern, an array of ulong is an array of long too.
         Type type = values.GetType().GetElementType()!;
-        return type == typeof(string) ? group.WriteAsync(field, (IReadOnlyCollection<string>)((string[])values)[start..(start + rows)])
+        return type == typeof(string)
+            ? group.WriteAsync(field, (IReadOnlyCollection<string>)((string[])values)[start..(start + rows)])
             : type == typeof(long) ? One<long>() : type == typeof(ulong) ? One<ulong>()
             : type == typeof(int) ? One<int>() : type == typeof(uint) ? One<uint>()
             : type == typeof(short) ? One<short>() : type == typeof(ushort) ? One<ushort>()

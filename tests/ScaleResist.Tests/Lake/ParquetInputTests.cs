@@ -48,7 +48,8 @@ public sealed class ParquetInputTests : IDisposable
     [Fact]
     public void Unsigned_and_signed_extremes_fit_or_are_refused_with_their_row()
     {
-        string path = Write("a.parquet", ("a", new ulong[] { 1, 1, 1, long.MaxValue }), ("b", new long[] { 2, 2, 2, long.MinValue }));
+        string path = Write("a.parquet", ("a", new ulong[] { 1, 1, 1, long.MaxValue }),
+            ("b", new long[] { 2, 2, 2, long.MinValue }));
         Assert.Equal([1, 2, long.MaxValue, long.MinValue], NetworkInput.Read(path, Plain).Labels.Integers.ToArray());
         path = Write("b.parquet", ("a", new ulong[] { 1, 1, 1, 1UL + long.MaxValue }), ("b", new long[] { 2, 2, 2, 2 }));
         Refused(path, Plain, path, 4, "does not fit into int64", "VARCHAR");
@@ -57,7 +58,8 @@ public sealed class ParquetInputTests : IDisposable
     [Fact]
     public void String_and_mixed_columns_give_string_labels()
     {
-        EdgeList read = NetworkInput.Read(Write("a.parquet", ("s", new[] { "x", "y", "x", "Ω" }), ("t", new[] { "y", "z", "z", "x" })), Plain);
+        EdgeList read = NetworkInput.Read(Write("a.parquet", ("s", new[] { "x", "y", "x", "Ω" }),
+            ("t", new[] { "y", "z", "z", "x" })), Plain);
         Assert.Equal(["x", "y", "z", "Ω"], read.Labels.Texts.ToArray());
         read = NetworkInput.Read(Write("b.parquet", ("s", new[] { 1L, 2L }), ("t", new[] { "y", "1" })), Plain);
         Assert.Equal(["1-y", "2-1"], Links.Of(read));
@@ -77,7 +79,8 @@ public sealed class ParquetInputTests : IDisposable
         Assert.Equal(["1-2:1", "2-3:2", "3-4:4", "4-1:8"], Links.Of(NetworkInput.Read(path, Conductance)));
         Assert.Equal(["1-2:1", "2-3:0.5", "3-4:0.25", "4-1:0.125"],
             Links.Of(NetworkInput.Read(path, new ReadOptions { Weights = WeightMeaning.Resistance })));
-        Assert.Equal(["1-2", "2-3", "3-4", "4-1"], Links.Of(NetworkInput.Read(path, new ReadOptions { Weights = WeightMeaning.None })));
+        Assert.Equal(["1-2", "2-3", "3-4", "4-1"],
+            Links.Of(NetworkInput.Read(path, new ReadOptions { Weights = WeightMeaning.None })));
         Refused(path, Plain, path, null, "a third column", "--weights conductance");
     }
 
@@ -85,12 +88,14 @@ public sealed class ParquetInputTests : IDisposable
     public void Columns_are_chosen_by_name()
     {
         string path = Write("net.parquet", ("km", new[] { 5.5 }), ("To", new[] { 2 }), ("from", new[] { 1 }));
-        EdgeList read = NetworkInput.Read(path, new ReadOptions { Weights = WeightMeaning.Conductance, Columns = ["from", "to", "km"] });
+        EdgeList read = NetworkInput.Read(path,
+            new ReadOptions { Weights = WeightMeaning.Conductance, Columns = ["from", "to", "km"] });
         Assert.Equal(["1-2:5.5"], Links.Of(read));
         Assert.Equal(["from", "To", "km"], read.Facts.Columns);
         Assert.Equal(["km", "To", "from"], read.Facts.Header);
         Assert.Equal(["1-2"], Links.Of(NetworkInput.Read(path, new ReadOptions { Columns = ["from", "to"] })));
-        Refused(path, new ReadOptions { Columns = ["from", "x"] }, path, null, "no column 'x'; it has km, To, from", "that the file has");
+        Refused(path, new ReadOptions { Columns = ["from", "x"] }, path, null, "no column 'x'; it has km, To, from",
+            "that the file has");
         Refused(path, Conductance, path, null, "'km' of type Double cannot be read as node ids", "BIGINT or VARCHAR");
     }
 
@@ -98,7 +103,8 @@ public sealed class ParquetInputTests : IDisposable
     public void A_folder_is_read_in_the_order_of_names_and_hidden_parts_are_passed_over()
     {
         string parts = Directory.CreateDirectory(folder.Path("net")).FullName;
-        foreach ((string name, int first) in ((string, int)[])[("part-2", 9), ("part-1", 1), ("part-10", 5), ("_half", 90), (".hidden", 91)])
+        foreach ((string name, int first) in ((string, int)[])[("part-2", 9), ("part-1", 1), ("part-10", 5), ("_half", 90),
+            (".hidden", 91)])
         {
             int[] source = [first, first + 1, first + 2, first + 3];
             ParquetFiles.Write(Path.Combine(parts, name + ".parquet"), 3, ("a", source), ("b", source));
@@ -107,7 +113,8 @@ public sealed class ParquetInputTests : IDisposable
         List<long> progress = [];
         EdgeList read = NetworkInput.Read(parts, Plain, progress.Add);
         Assert.Equal(Enumerable.Range(1, 12).Select(i => (long)i), read.Labels.Integers.ToArray());
-        byte[] all = [.. ((string[])["part-1", "part-10", "part-2"]).SelectMany(name => File.ReadAllBytes(Path.Combine(parts, name + ".parquet")))];
+        byte[] all = [.. ((string[])["part-1", "part-10", "part-2"]).SelectMany(name =>
+            File.ReadAllBytes(Path.Combine(parts, name + ".parquet")))];
         Assert.Equal(Convert.ToHexStringLower(SHA256.HashData(all)), read.Facts.Sha256);
         Assert.Equal((all.Length, 12, "parquet"), (read.Facts.Bytes, read.Facts.Rows, read.Facts.Form));
         Assert.Equal(all.Length, progress[^1]);
@@ -217,9 +224,12 @@ public sealed class ParquetInputTests : IDisposable
     {
         byte[][] valid =
         [
-            ParquetFiles.Bytes(20, ("a", Enumerable.Range(0, 50).ToArray()), ("b", Enumerable.Range(1, 50).ToArray()), ("w", new double[50])),
-            ParquetFiles.Bytes(20, ("a", Enumerable.Range(0, 50).Select(i => $"n{i}").ToArray()), ("b", new string[50].Select(_ => "x").ToArray())),
-            ParquetFiles.Bytes(20, ("a", new long?[50].Select((_, i) => (long?)i).ToArray()), ("b", new long?[50].Select((_, i) => (long?)(i * i)).ToArray())),
+            ParquetFiles.Bytes(20, ("a", Enumerable.Range(0, 50).ToArray()), ("b", Enumerable.Range(1, 50).ToArray()),
+                ("w", new double[50])),
+            ParquetFiles.Bytes(20, ("a", Enumerable.Range(0, 50).Select(i => $"n{i}").ToArray()),
+                ("b", new string[50].Select(_ => "x").ToArray())),
+            ParquetFiles.Bytes(20, ("a", new long?[50].Select((_, i) => (long?)i).ToArray()),
+                ("b", new long?[50].Select((_, i) => (long?)(i * i)).ToArray())),
         ];
         int files = 0;
         Gen.Select(Gen.Int[0, 2], ReaderFuzzTests.Mutation.Array[1, 3], Gen.Int[0, 2]).Sample(
