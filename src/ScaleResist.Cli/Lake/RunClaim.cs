@@ -27,19 +27,17 @@ internal sealed class RunClaim : IDisposable
         string folder = Path.GetDirectoryName(file)!;
         for (int attempt = 0; attempt < MostAttempts; attempt++)
         {
+            // Here and not above: another run that ends removes the folder when it is empty.
+            Directory.CreateDirectory(folder);
             try
             {
-                // Here and not above: another run that ends removes the folder when it is empty.
-                Directory.CreateDirectory(folder);
-                using FileStream stream = new(file, FileMode.CreateNew, FileAccess.ReadWrite, FileShare.None);
-                me.WriteTo(stream);
+                Fill(new FileStream(file, FileMode.CreateNew, FileAccess.ReadWrite, FileShare.None), me);
                 return new RunClaim(file, me);
             }
             catch (DirectoryNotFoundException)
             {
-                continue;
             }
-            catch (IOException) when (File.Exists(file))
+            catch (IOException error) when (IsThere(error) || IsBusy(error))
             {
                 if (Judge(file, runId, me))
                     return new RunClaim(file, me);
@@ -66,7 +64,7 @@ internal sealed class RunClaim : IDisposable
             {
                 return; // A person removed it.
             }
-            catch (IOException)
+            catch (IOException error) when (IsBusy(error))
             {
                 Thread.Sleep(PauseMilliseconds); // Another process is judging it.
             }
@@ -93,12 +91,36 @@ internal sealed class RunClaim : IDisposable
             stream.SetLength(0);
             me.WriteTo(stream);
         }
-        catch (IOException)
+        catch (Exception error) when (error is FileNotFoundException or DirectoryNotFoundException)
+        {
+        }
+        catch (IOException error) when (IsBusy(error))
         {
             Thread.Sleep(PauseMilliseconds);
         }
         return false;
     }
+
+    private static void Fill(FileStream created, Holder me)
+    {
+        using FileStream stream = created;
+        try
+        {
+            me.WriteTo(stream);
+        }
+        catch (IOException)
+        {
+            File.Delete(stream.Name); // A full disk must not leave a claim that names nobody.
+            throw;
+        }
+    }
+
+    // EEXIST, ERROR_FILE_EXISTS.
+    private static bool IsThere(IOException error) => error.HResult is 17 or unchecked((int)0x80070050);
+
+    // EWOULDBLOCK of a lock (Linux, macOS), ERROR_SHARING_VIOLATION, ERROR_LOCK_VIOLATION.
+    private static bool IsBusy(IOException error) =>
+        error.HResult is 11 or 35 or unchecked((int)0x80070020) or unchecked((int)0x80070021);
 
     private sealed record Holder(int Process, string Host, string ProcessStart, DateTime Since, string Token)
     {

@@ -82,9 +82,30 @@ internal sealed partial class RunFolder
         catch (Exception error)
         {
             claim?.Dispose();
+            RemoveEmptyFolders(createdLake);
             if (LakeException.IsFileSystemError(error))
                 throw LakeException.From(Lake, error);
             throw;
+        }
+    }
+
+    // Only where empty: other runs may be at work.
+    internal void RemoveEmptyFolders(bool createdLake)
+    {
+        Quietly(() => Directory.Delete(StagingRoot));
+        if (createdLake)
+            Quietly(() => Directory.Delete(Lake));
+    }
+
+    // Tidying must not hide the error that led here; what it leaves is outside the lake's pattern and discarded by the next run.
+    internal static void Quietly(Action tidy)
+    {
+        try
+        {
+            tidy();
+        }
+        catch (Exception error) when (LakeException.IsFileSystemError(error))
+        {
         }
     }
 
@@ -149,23 +170,8 @@ internal sealed class StagedRun : IDisposable
     public void Dispose()
     {
         if (!published)
-            Quietly(() => Directory.Delete(Path, recursive: true));
-        Quietly(claim.Dispose);
-        // Only where empty: other runs may be at work.
-        Quietly(() => Directory.Delete(folder.StagingRoot));
-        if (createdLake && !published)
-            Quietly(() => Directory.Delete(folder.Lake));
-    }
-
-    // Tidying must not hide the error that led here; what it leaves is outside the lake's pattern and discarded by the next run.
-    private static void Quietly(Action tidy)
-    {
-        try
-        {
-            tidy();
-        }
-        catch (Exception error) when (LakeException.IsFileSystemError(error))
-        {
-        }
+            RunFolder.Quietly(() => Directory.Delete(Path, recursive: true));
+        RunFolder.Quietly(claim.Dispose);
+        folder.RemoveEmptyFolders(createdLake);
     }
 }

@@ -175,9 +175,14 @@ public sealed class Estimate_runs
         Assert.Equal(exit, result.Exit);
         Assert.Contains(line, Assert.Single(result.Messages));
         Assert.Empty(place.LakeContent());
-        CliResult traced = CliRun.InProcess(new FakeEngine { FailAfterLinks = failure }, place.Estimate("a", "--verbose"));
-        Assert.Equal(exit, traced.Exit);
-        Assert.Contains("   at ScaleResist.", traced.Error);
+        Assert.DoesNotContain("   at ScaleResist.", result.Error);
+        foreach (bool byEnvironment in (bool[])[false, true])
+        {
+            CliResult traced = CliRun.InProcess(new FakeEngine { FailAfterLinks = failure },
+                byEnvironment ? place.Estimate() : place.Estimate("a", "--verbose"), trace: byEnvironment);
+            Assert.Equal(exit, traced.Exit);
+            Assert.Contains("   at ScaleResist.", traced.Error);
+        }
     }
 
     [Fact]
