@@ -37,7 +37,7 @@ public sealed class StrengthForms
             for (int j = 0; j < columns; j++)
                 PutCentred(sources[j], b, j, component);
         }
-        using (GradientWorkspace<double> workspace = new(network.NodeCount))
+        using (SolverWorkspace<double> workspace = solver.NewWorkspace<double>())
             solver.Solve(b, z, columns, Tolerance, workspace, cancel);
         double[][] forms = [new double[network.Components.Count], new double[network.Components.Count]];
         for (int c = 0; c < network.Components.Count; c++)

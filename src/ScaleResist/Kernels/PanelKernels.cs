@@ -75,6 +75,18 @@ public static unsafe class PanelKernels
             VectorKernels.Direction(p.Pointer, s.Pointer, b, start, end);
     }
 
+    /// <summary>Returns |x|^2 by column.</summary>
+    public static LaneSums Squares<T>(Panel<T> x, int start, int end)
+        where T : unmanaged, INumber<T>
+    {
+        LaneSums sums = default;
+        if (Scalar)
+            ScalarKernels.Squares(x.Pointer, start, end, ref sums);
+        else
+            VectorKernels.Squares(x.Pointer, start, end, ref sums);
+        return sums;
+    }
+
     /// <summary>Takes each column's mean off it, so that it sums to zero.</summary>
     public static void Centre<T>(Panel<T> x, int start, int end)
         where T : unmanaged, INumber<T>

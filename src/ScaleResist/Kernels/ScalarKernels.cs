@@ -102,6 +102,22 @@ internal static unsafe class ScalarKernels
         }
     }
 
+    public static void Squares<T>(T* x, int start, int end, ref LaneSums sums)
+        where T : unmanaged, INumber<T>
+    {
+        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
+        {
+            int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                T squares = T.Zero;
+                for (int u = chunk; u < chunkEnd; u++)
+                    squares += At(x, u, lane) * At(x, u, lane);
+                sums[lane] += double.CreateTruncating(squares);
+            }
+        }
+    }
+
     public static void Sum<T>(T* x, int start, int end, ref LaneSums sums)
         where T : unmanaged, INumber<T>
     {

@@ -129,6 +129,20 @@ internal static unsafe class VectorKernels
             (Vector512.Load(Row(s, u)) + (b * Vector512.Load(Row(p, u)))).Store(Row(p, u));
     }
 
+    /// <summary>sums = |x|^2 by column.</summary>
+    public static void Squares<T>(T* x, int start, int end, ref LaneSums sums)
+        where T : unmanaged
+    {
+        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
+        {
+            int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
+            Vector512<T> squares = Vector512<T>.Zero;
+            for (int u = chunk; u < chunkEnd; u++)
+                squares += Vector512.Load(Row(x, u)) * Vector512.Load(Row(x, u));
+            Add(ref sums, squares);
+        }
+    }
+
     /// <summary>sums = the sum of each column.</summary>
     public static void Sum<T>(T* x, int start, int end, ref LaneSums sums)
         where T : unmanaged
@@ -157,11 +171,11 @@ internal static unsafe class VectorKernels
         where T : unmanaged => (T*)((byte*)panel + ((long)node * 64));
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
-    private static Vector512<T> Broadcast<T>(double value)
+    internal static Vector512<T> Broadcast<T>(double value)
         where T : unmanaged =>
         typeof(T) == typeof(float) ? Vector512.Create((float)value).As<float, T>() : Vector512.Create(value).As<double, T>();
 
-    private static void Add<T>(ref LaneSums sums, Vector512<T> values)
+    internal static void Add<T>(ref LaneSums sums, Vector512<T> values)
         where T : unmanaged
     {
         for (int lane = 0; lane < Panel<T>.Width; lane++)

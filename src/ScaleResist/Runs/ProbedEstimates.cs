@@ -43,7 +43,7 @@ internal sealed class ProbedEstimates
         try
         {
             for (int i = 0; i < slots.Length; i++)
-                slots[i] = new Slot(new ProbePanel(network, plan.Seed), new GradientWorkspace<float>(network.NodeCount));
+                slots[i] = new Slot(new ProbePanel(network, plan.Seed), solver.NewWorkspace<float>());
             for (int first = 0; first < panels; first += slots.Length)
             {
                 int count = Math.Min(slots.Length, panels - first);
@@ -93,7 +93,7 @@ internal sealed class ProbedEstimates
         }
     }
 
-    private sealed record Slot(ProbePanel Panel, GradientWorkspace<float> Workspace) : IDisposable
+    private sealed record Slot(ProbePanel Panel, SolverWorkspace<float> Workspace) : IDisposable
     {
         public void Dispose()
         {

@@ -14,19 +14,19 @@ using ScaleResist.Kernels;
 
 namespace ScaleResist.Solving;
 
-/// <summary>Lockstep conjugate gradient for L x = b on one component, W columns at a time.</summary>
+/// <summary>Lockstep conjugate gradient for L x = b on the rows <c>start .. end-1</c>, one component, W columns at a time.</summary>
 public static class ConjugateGradient
 {
     /// <summary>
-    /// Solves to |b - Lx| &lt;= tolerance |b| column by column. Each column of b must sum to zero over the component; x is centred.
-    /// The recurrence aims a fifth below the tolerance, so that the true residual, recomputed at the end, can meet it.
+    /// Solves to |b - Lx| &lt;= tolerance |b| column by column, and recomputes the true residual. Each column of b must sum to zero; x is centred.
     /// </summary>
     /// <param name="laplacian">L.</param>
     /// <param name="preconditioner">M.</param>
     /// <param name="b">Right-hand sides, n x W.</param>
     /// <param name="x">Solutions, n x W; what it held is overwritten.</param>
-    /// <param name="workspace">Three panels of n rows.</param>
-    /// <param name="component">The rows to work on.</param>
+    /// <param name="workspace">Three panels of at least n rows.</param>
+    /// <param name="start">First row.</param>
+    /// <param name="end">One past the last row.</param>
     /// <param name="limits">When to stop.</param>
     /// <param name="report">Receives iterations, reasons and true residuals.</param>
     /// <param name="cancel">Checked once an iteration.</param>
@@ -36,17 +36,51 @@ public static class ConjugateGradient
         Panel<T> b,
         Panel<T> x,
         GradientWorkspace<T> workspace,
-        Component component,
+        int start,
+        int end,
         SolveLimits limits,
         SolveReport report,
         CancellationToken cancel)
         where T : unmanaged, INumber<T>
     {
-        (int start, int end) = (component.Start, component.End);
+        LaneSums size = PanelKernels.Squares(b, start, end);
+        Iterate(laplacian, preconditioner, b, x, workspace, start, end, size, limits, report, cancel);
+        Verify(laplacian, b, x, start, end, size, report);
+        PanelKernels.Centre(x, start, end);
+    }
+
+    /// <summary>Puts |b - Lx| / |b| of every column into the report; <paramref name="size"/> holds |b|^2.</summary>
+    internal static void Verify<T>(
+        Laplacian laplacian, Panel<T> b, Panel<T> x, int start, int end, in LaneSums size, SolveReport report)
+        where T : unmanaged, INumber<T>
+    {
+        LaneSums residual = PanelKernels.Residual(laplacian, b, x, start, end);
+        for (int lane = 0; lane < Panel<T>.Width; lane++)
+            report.Residuals[lane] = size[lane] > 0 ? Math.Sqrt(residual[lane] / size[lane]) : 0;
+    }
+
+    /// <summary>
+    /// The iteration alone, until the recurrence's |r|^2 is below the tolerance squared times <paramref name="size"/>. It aims a fifth below
+    /// the tolerance, so that the true residual can meet it.
+    /// </summary>
+    internal static void Iterate<T>(
+        Laplacian laplacian,
+        IPreconditioner<T> preconditioner,
+        Panel<T> b,
+        Panel<T> x,
+        GradientWorkspace<T> workspace,
+        int start,
+        int end,
+        in LaneSums size,
+        SolveLimits limits,
+        SolveReport report,
+        CancellationToken cancel)
+        where T : unmanaged, INumber<T>
+    {
         Panel<T> r = workspace.R, p = workspace.P, q = workspace.Q;
         Clear(x, start, end);
-        LaneSums bb = PanelKernels.Residual(laplacian, b, x, start, end); // x = 0, so this is |b|^2
         Copy(b, r, start, end);
+        LaneSums rr = PanelKernels.Squares(r, start, end);
         LaneSums rs = preconditioner.Apply(r, q, start, end);
         Copy(q, p, start, end);
 
@@ -55,9 +89,10 @@ public static class ConjugateGradient
         uint active = 0;
         for (int lane = 0; lane < Panel<T>.Width; lane++)
         {
-            target[lane] = limits.Tolerance * limits.Tolerance * 0.64 * bb[lane];
-            report.Reasons[lane] = bb[lane] > 0 ? StopReason.IterationLimit : StopReason.ZeroRightHandSide;
-            if (bb[lane] > 0)
+            target[lane] = limits.Tolerance * limits.Tolerance * 0.64 * size[lane];
+            report.Reasons[lane] =
+                size[lane] == 0 ? StopReason.ZeroRightHandSide : rr[lane] <= target[lane] ? StopReason.Converged : StopReason.IterationLimit;
+            if (report.Reasons[lane] == StopReason.IterationLimit)
             {
                 active |= 1u << lane;
                 running++;
@@ -79,7 +114,7 @@ public static class ConjugateGradient
                 if (!(pq[lane] > 0 && double.IsFinite(a[lane])))
                     Stop(lane, StopReason.Breakdown, ref a);
             }
-            LaneSums rr = PanelKernels.Step(x, r, p, q, a, start, end);
+            rr = PanelKernels.Step(x, r, p, q, a, start, end);
             LaneSums newRs = preconditioner.Apply(r, q, start, end);
             LaneSums beta = default;
             for (int lane = 0; lane < Panel<T>.Width; lane++)
@@ -98,10 +133,6 @@ public static class ConjugateGradient
         }
 
         report.Iterations = iteration;
-        LaneSums residual = PanelKernels.Residual(laplacian, b, x, start, end);
-        for (int lane = 0; lane < Panel<T>.Width; lane++)
-            report.Residuals[lane] = bb[lane] > 0 ? Math.Sqrt(residual[lane] / bb[lane]) : 0;
-        PanelKernels.Centre(x, start, end);
 
         void Stop(int lane, StopReason reason, ref LaneSums factors)
         {
@@ -112,11 +143,11 @@ public static class ConjugateGradient
         }
     }
 
-    private static unsafe void Clear<T>(Panel<T> panel, int start, int end)
+    internal static unsafe void Clear<T>(Panel<T> panel, int start, int end)
         where T : unmanaged =>
         System.Runtime.InteropServices.NativeMemory.Clear(panel.Pointer + ((long)start * Panel<T>.Width), (nuint)(end - start) * 64);
 
-    private static unsafe void Copy<T>(Panel<T> from, Panel<T> to, int start, int end)
+    internal static unsafe void Copy<T>(Panel<T> from, Panel<T> to, int start, int end)
         where T : unmanaged
     {
         long offset = (long)start * Panel<T>.Width;

@@ -1,6 +1,7 @@
 // z = L+ b for whole panels over all components: floats first, doubles for the columns that floats cannot bring home.
 // Invariant: every column returned meets the tolerance by its recomputed residual, or SolveException is thrown.
 
+using System.Numerics;
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
 
@@ -35,79 +36,97 @@ public sealed class SolveStatistics
     }
 }
 
-/// <summary>Solves Laplacian systems of one network. One instance may serve several threads, each with its own panels and workspace.</summary>
+/// <summary>
+/// Solves Laplacian systems of one network. Prepared once; serves several threads, each with its own panels and workspace.
+/// </summary>
 public sealed class LaplacianSolver
 {
     private readonly Network network;
-    private readonly Jacobi<float> single;
-    private readonly Jacobi<double> twice;
+    private readonly ComponentSolver[] solvers;
 
-    /// <summary>A solver for the network.</summary>
-    public LaplacianSolver(Network network)
+    /// <summary>Prepares all components: eliminates, tries, factorises. Near-linear in the links.</summary>
+    /// <param name="network">The network.</param>
+    /// <param name="seed">Of the sampled factor.</param>
+    /// <param name="cancel">Ends the preparation.</param>
+    public LaplacianSolver(Network network, ulong seed = 1, CancellationToken cancel = default)
     {
         this.network = network;
-        single = new Jacobi<float>(network.Strengths);
-        twice = new Jacobi<double>(network.Strengths);
+        int several = 0;
+        while (several < network.Components.Count && network.Components[several].Nodes > 1)
+            several++; // single nodes come last
+        solvers = new ComponentSolver[several];
+        for (int c = 0; c < several; c++)
+            solvers[c] = new ComponentSolver(network.Laplacian, network.Components[c], seed, cancel);
     }
 
-    /// <summary>The name of the preconditioner in use.</summary>
-    public string Preconditioner => single.Name;
+    /// <summary>The name of the largest component's preconditioner.</summary>
+    public string Preconditioner => solvers.Length == 0 ? "none" : solvers[0].Choice.Name;
+
+    /// <summary>Why it was chosen.</summary>
+    public string Reason => solvers.Length == 0 ? "no links" : solvers[0].Choice.Reason;
+
+    /// <summary>Nodes eliminated exactly, over all components.</summary>
+    public long Eliminated => solvers.Sum(solver => (long)solver.Eliminated);
 
     /// <summary>Counts over all solves.</summary>
     public SolveStatistics Statistics { get; } = new();
+
+    /// <summary>Panels for the solves of one thread.</summary>
+    public SolverWorkspace<T> NewWorkspace<T>()
+        where T : unmanaged, INumber<T> =>
+        new(solvers.Select(solver => solver.GradientRows).DefaultIfEmpty(1).Max(), solvers.Select(solver => solver.CoreRows).DefaultIfEmpty(1).Max());
 
     /// <summary>z = L+ b for 16 columns in floats, to a relative residual of <paramref name="tolerance"/> in every component.</summary>
     /// <param name="b">n x 16; each column sums to zero over every component.</param>
     /// <param name="z">n x 16; each column is centred in every component, and 0 at single nodes.</param>
     /// <param name="columns">How many of the 16 columns are in use.</param>
     /// <param name="tolerance">The relative residual wanted; floats reach about 1e-5.</param>
-    /// <param name="workspace">Panels of n rows.</param>
+    /// <param name="workspace">From <see cref="NewWorkspace"/>.</param>
     /// <param name="cancel">Checked once an iteration.</param>
     /// <exception cref="SolveException">A column did not reach the tolerance, in doubles either.</exception>
-    public void Solve(Panel<float> b, Panel<float> z, int columns, double tolerance, GradientWorkspace<float> workspace, CancellationToken cancel)
+    public void Solve(Panel<float> b, Panel<float> z, int columns, double tolerance, SolverWorkspace<float> workspace, CancellationToken cancel)
     {
-        SolveReport report = new();
-        foreach (Component component in network.Components)
+        for (int c = 0; c < solvers.Length; c++)
         {
-            if (component.Nodes == 1)
-            {
-                z.Row(component.Start).Clear();
-                continue;
-            }
-            ConjugateGradient.Solve(network.Laplacian, single, b, z, workspace, component, SolveLimits.For(tolerance, component.Nodes), report, cancel);
+            solvers[c].Solve(b, z, tolerance, workspace, cancel);
             List<int> failed = [];
             double residual = 0;
             for (int column = 0; column < columns; column++)
             {
-                if (report.Residuals[column] <= tolerance)
-                    residual = Math.Max(residual, report.Residuals[column]);
+                if (workspace.Report.Residuals[column] <= tolerance)
+                    residual = Math.Max(residual, workspace.Report.Residuals[column]);
                 else
                     failed.Add(column);
             }
-            Statistics.Add(columns - failed.Count, 0, report.Iterations, residual);
+            Statistics.Add(columns - failed.Count, 0, workspace.Report.Iterations, residual);
             if (failed.Count > 0)
-                SolveAgainInDoubles(b, z, failed, tolerance, component, cancel);
+                SolveAgainInDoubles(c, b, z, failed, tolerance, cancel);
         }
+        ClearSingles(z);
     }
 
     /// <summary>x = L+ b for 8 columns in doubles, to a relative residual of <paramref name="tolerance"/> in every component.</summary>
-    /// <inheritdoc cref="Solve(Panel{float}, Panel{float}, int, double, GradientWorkspace{float}, CancellationToken)"/>
-    public void Solve(Panel<double> b, Panel<double> z, int columns, double tolerance, GradientWorkspace<double> workspace, CancellationToken cancel)
+    /// <inheritdoc cref="Solve(Panel{float}, Panel{float}, int, double, SolverWorkspace{float}, CancellationToken)"/>
+    public void Solve(Panel<double> b, Panel<double> z, int columns, double tolerance, SolverWorkspace<double> workspace, CancellationToken cancel)
     {
-        foreach (Component component in network.Components)
-        {
-            if (component.Nodes == 1)
-                z.Row(component.Start).Clear();
-            else
-                SolveComponent(b, z, columns, tolerance, component, workspace, retried: 0, cancel);
-        }
+        for (int c = 0; c < solvers.Length; c++)
+            SolveInDoubles(c, b, z, columns, tolerance, workspace, retried: 0, cancel);
+        ClearSingles(z);
+    }
+
+    private void ClearSingles<T>(Panel<T> z)
+        where T : unmanaged
+    {
+        for (int c = solvers.Length; c < network.Components.Count; c++)
+            z.Row(network.Components[c].Start).Clear();
     }
 
     private void SolveAgainInDoubles(
-        Panel<float> b, Panel<float> z, List<int> failed, double tolerance, Component component, CancellationToken cancel)
+        int number, Panel<float> b, Panel<float> z, List<int> failed, double tolerance, CancellationToken cancel)
     {
+        Component component = network.Components[number];
         using Panel<double> b2 = new(network.NodeCount), z2 = new(network.NodeCount);
-        using GradientWorkspace<double> workspace = new(network.NodeCount);
+        using SolverWorkspace<double> workspace = NewWorkspace<double>();
         int width = Panel<double>.Width;
         for (int first = 0; first < failed.Count; first += width)
         {
@@ -120,7 +139,7 @@ public sealed class LaplacianSolver
                     to[j] = b.Row(u)[failed[first + j]];
             }
             PanelKernels.Centre(b2, component.Start, component.End);
-            SolveComponent(b2, z2, count, tolerance, component, workspace, count, cancel);
+            SolveInDoubles(number, b2, z2, count, tolerance, workspace, count, cancel);
             for (int u = component.Start; u < component.End; u++)
             {
                 for (int j = 0; j < count; j++)
@@ -129,18 +148,18 @@ public sealed class LaplacianSolver
         }
     }
 
-    private void SolveComponent(
+    private void SolveInDoubles(
+        int number,
         Panel<double> b,
         Panel<double> z,
         int columns,
         double tolerance,
-        Component component,
-        GradientWorkspace<double> workspace,
+        SolverWorkspace<double> workspace,
         int retried,
         CancellationToken cancel)
     {
-        SolveReport report = new();
-        ConjugateGradient.Solve(network.Laplacian, twice, b, z, workspace, component, SolveLimits.For(tolerance, component.Nodes), report, cancel);
+        solvers[number].Solve(b, z, tolerance, workspace, cancel);
+        SolveReport report = workspace.Report;
         double residual = 0;
         for (int column = 0; column < columns; column++)
         {
@@ -149,8 +168,8 @@ public sealed class LaplacianSolver
                 continue;
             throw new SolveException(
                 $"a solve stopped at relative residual {report.Residuals[column]:0.0e+0} where {tolerance:0.0e+0} was wanted "
-                + $"({report.Reasons[column]}, {report.Iterations:N0} iterations, component of {component.Nodes:N0} nodes); "
-                + "this network needs a stronger preconditioner than this version has");
+                + $"({report.Reasons[column]}, {report.Iterations:N0} iterations, {solvers[number].Choice.Name}, component of "
+                + $"{network.Components[number].Nodes:N0} nodes); ask for fewer digits, or narrow the spread of the conductances");
         }
         Statistics.Add(columns, retried, report.Iterations, residual);
     }

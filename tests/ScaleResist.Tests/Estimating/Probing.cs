@@ -20,7 +20,7 @@ internal sealed class Probing
         plain = new double[network.LinkCount];
         LaplacianSolver solver = new(network);
         using ProbePanel panel = new(network, seed);
-        using GradientWorkspace<float> workspace = new(network.NodeCount);
+        using SolverWorkspace<float> workspace = solver.NewWorkspace<float>();
         for (int i = 0; i < ProbePanel.CountFor(probes); i++)
         {
             panel.Draw(i, probes, 1);

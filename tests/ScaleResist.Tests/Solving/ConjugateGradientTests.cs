@@ -19,8 +19,8 @@ public class ConjugateGradientTests
     {
         Network network = TestNetworks.Of(family, nodes, decades: decades);
         using Panel<double> b = RightHandSides<double>(network), x = new(network.NodeCount);
-        using GradientWorkspace<double> workspace = new(network.NodeCount);
         LaplacianSolver solver = new(network);
+        using SolverWorkspace<double> workspace = solver.NewWorkspace<double>();
         solver.Solve(b, x, 8, 1e-8, workspace, default);
         Assert.InRange(solver.Statistics.LargestResidual, 0, 1e-8);
         LaneSums check = PanelKernels.Residual(network.Laplacian, b, x, 0, network.NodeCount);
@@ -39,7 +39,7 @@ public class ConjugateGradientTests
         using GradientWorkspace<float> workspace = new(12);
         SolveReport report = new();
         ConjugateGradient.Solve(
-            network.Laplacian, new Jacobi<float>(network.Strengths), b, x, workspace, network.Components[0], SolveLimits.For(1e-5, 12), report, default);
+            network.Laplacian, new Jacobi<float>(network.Strengths), b, x, workspace, 0, network.NodeCount, SolveLimits.For(1e-5, 12), report, default);
         for (int j = 0; j < 16; j++)
         {
             Assert.Equal(j == 5 ? StopReason.Converged : StopReason.ZeroRightHandSide, report.Reasons[j]);
@@ -55,7 +55,7 @@ public class ConjugateGradientTests
         using GradientWorkspace<double> workspace = new(500);
         SolveReport report = new();
         ConjugateGradient.Solve(
-            network.Laplacian, new Jacobi<double>(network.Strengths), b, x, workspace, network.Components[0], new SolveLimits(1e-8, 20), report, default);
+            network.Laplacian, new Jacobi<double>(network.Strengths), b, x, workspace, 0, network.NodeCount, new SolveLimits(1e-8, 20), report, default);
         Assert.Equal(20, report.Iterations);
         Assert.All(report.Reasons[..8], reason => Assert.Equal(StopReason.IterationLimit, reason));
         Assert.All(report.Residuals[..8], residual => Assert.True(residual > 1e-8));
@@ -66,8 +66,8 @@ public class ConjugateGradientTests
     {
         Network network = TestNetworks.Of(Family.Road, 600, decades: 1);
         using Panel<double> all = RightHandSides<double>(network), x = new(network.NodeCount);
-        using GradientWorkspace<double> workspace = new(network.NodeCount);
         LaplacianSolver solver = new(network);
+        using SolverWorkspace<double> workspace = solver.NewWorkspace<double>();
         solver.Solve(all, x, 8, 1e-9, workspace, default);
         using Panel<double> one = new(network.NodeCount), alone = new(network.NodeCount);
         for (int u = 0; u < network.NodeCount; u++)
@@ -82,8 +82,8 @@ public class ConjugateGradientTests
     {
         Network network = TestNetworks.Of(Family.Grid, 900, decades: 2);
         using Panel<float> b = RightHandSides<float>(network), z = new(network.NodeCount);
-        using GradientWorkspace<float> workspace = new(network.NodeCount);
         LaplacianSolver solver = new(network);
+        using SolverWorkspace<float> workspace = solver.NewWorkspace<float>();
         solver.Solve(b, z, 16, 1e-9, workspace, default);
         Assert.Equal(16, solver.Statistics.Retried);
         Assert.InRange(solver.Statistics.LargestResidual, 0, 1e-9);
@@ -97,10 +97,11 @@ public class ConjugateGradientTests
     public void A_tolerance_that_nothing_reaches_ends_in_an_error_that_says_so()
     {
         Network network = TestNetworks.Of(Family.Path, 200, decades: 12);
+        LaplacianSolver solver = new(network);
+        using SolverWorkspace<double> workspace = solver.NewWorkspace<double>();
         using Panel<double> b = RightHandSides<double>(network), x = new(network.NodeCount);
-        using GradientWorkspace<double> workspace = new(network.NodeCount);
         SolveException error = Assert.Throws<SolveException>(
-            () => new LaplacianSolver(network).Solve(b, x, 8, 1e-17, workspace, default));
+            () => solver.Solve(b, x, 8, 1e-17, workspace, default));
         Assert.Contains("relative residual", error.Message, StringComparison.Ordinal);
         Assert.DoesNotContain('\n', error.Message);
     }
@@ -118,13 +119,14 @@ public class ConjugateGradientTests
         for (long i = 1000; i < 1100; i++)
             links.Add((i, i + 1, 1));
         Network network = TestNetworks.Of([.. links]);
+        LaplacianSolver solver = new(network);
+        using SolverWorkspace<float> workspace = solver.NewWorkspace<float>();
         using Panel<float> b = new(network.NodeCount), z = new(network.NodeCount);
-        using GradientWorkspace<float> workspace = new(network.NodeCount);
         b.Row(network.Node(0))[0] = 100;
         b.Row(network.Node(1))[0] = -100;
         b.Row(network.Node(1000))[0] = 1e-3f;
         b.Row(network.Node(1100))[0] = -1e-3f;
-        new LaplacianSolver(network).Solve(b, z, 1, 1e-4, workspace, default);
+        solver.Solve(b, z, 1, 1e-4, workspace, default);
         Assert.Equal(0.1, z.Row(network.Node(1000))[0] - z.Row(network.Node(1100))[0], 1e-4);
     }
 

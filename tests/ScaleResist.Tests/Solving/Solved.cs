@@ -11,10 +11,11 @@ internal static class Solved
     public static double Resistance(Network network, int u, int v)
     {
         using Panel<double> b = new(network.NodeCount), z = new(network.NodeCount);
-        using GradientWorkspace<double> workspace = new(network.NodeCount);
+        LaplacianSolver solver = new(network);
+        using SolverWorkspace<double> workspace = solver.NewWorkspace<double>();
         b.Row(u)[0] = 1;
         b.Row(v)[0] = -1;
-        new LaplacianSolver(network).Solve(b, z, 1, 1e-12, workspace, default);
+        solver.Solve(b, z, 1, 1e-12, workspace, default);
         return z.Row(u)[0] - z.Row(v)[0];
     }
 
@@ -26,8 +27,8 @@ internal static class Solved
     {
         int n = network.NodeCount, width = Panel<double>.Width;
         using Panel<double> b = new(n), z = new(n);
-        using GradientWorkspace<double> workspace = new(n);
         LaplacianSolver solver = new(network);
+        using SolverWorkspace<double> workspace = solver.NewWorkspace<double>();
         double trace = 0;
         for (int first = 0; first < n; first += width)
         {

@@ -1,0 +1,159 @@
+// Triangular sweeps of a factor and substitution through eliminated nodes, on whole panels; scalar twins in FactorKernelTwins.
+// Invariant: within a column, operations follow the scalar twin's order exactly, so both give the same bits.
+//
+// Data movement in panels of the core's n rows, beside 8 bytes an entry of the factor each way:
+//   Forward   reads 1, writes 1, gathers a row an entry      Back   reads 2, writes 1, gathers a row an entry
+//   Eliminate and Restore move two to four rows an eliminated node
+
+using System.Numerics;
+using System.Runtime.CompilerServices;
+using System.Runtime.Intrinsics;
+using System.Runtime.Intrinsics.X86;
+
+namespace ScaleResist.Kernels;
+
+/// <summary>One half of a factor in compressed rows: indices and shares of each place.</summary>
+/// <param name="Start">n + 1 offsets.</param>
+/// <param name="Index">Other places.</param>
+/// <param name="Share">Beside them.</param>
+internal readonly record struct FactorHalf(long[] Start, int[] Index, float[] Share);
+
+/// <summary>A node taken out of a system: neighbours in the panel's numbering (-1 where there are fewer than three), shares c_i / d, 1 / d.</summary>
+internal readonly record struct EliminationStep(int Node, int A, int B, int C, double ShareA, double ShareB, double ShareC, double Inverse);
+
+/// <summary>Kernels of factors and eliminations.</summary>
+internal static unsafe class FactorKernels
+{
+    private const int PrefetchEntries = 8;
+
+    /// <summary>y_v = r_v + sum over predecessors u of share y_u, in order.</summary>
+    public static void Forward<T>(FactorHalf rows, Panel<T> r, Panel<T> y, int n)
+        where T : unmanaged, INumber<T>
+    {
+        if (PanelKernels.Scalar)
+        {
+            FactorKernelTwins.Forward(rows, r, y, n);
+            return;
+        }
+        fixed (long* start = rows.Start)
+        fixed (int* index = rows.Index)
+        fixed (float* share = rows.Share)
+        {
+            long last = start[n] - 1;
+            for (int v = 0; v < n; v++)
+            {
+                Vector512<T> sum = Vector512.Load(Row(r.Pointer, v));
+                for (long k = start[v]; k < start[v + 1]; k++)
+                {
+                    if (Sse.IsSupported)
+                        Sse.Prefetch0(Row(y.Pointer, index[Math.Min(k + PrefetchEntries, last)]));
+                    sum += Broadcast<T>(share[k]) * Vector512.Load(Row(y.Pointer, index[k]));
+                }
+                sum.Store(Row(y.Pointer, v));
+            }
+        }
+    }
+
+    /// <summary>x_v = y_v inverse_v + sum over successors w of share x_w, in reverse order, x over y; returns r'x by column.</summary>
+    public static LaneSums Back<T>(FactorHalf columns, float[] inverse, Panel<T> r, Panel<T> y, int n)
+        where T : unmanaged, INumber<T>
+    {
+        if (PanelKernels.Scalar)
+            return FactorKernelTwins.Back(columns, inverse, r, y, n);
+        LaneSums sums = default;
+        fixed (long* start = columns.Start)
+        fixed (int* index = columns.Index)
+        fixed (float* share = columns.Share)
+        {
+            for (int chunkEnd = n; chunkEnd > 0; chunkEnd -= LaneSums.ChunkRows)
+            {
+                int chunk = Math.Max(0, chunkEnd - LaneSums.ChunkRows);
+                Vector512<T> products = Vector512<T>.Zero;
+                for (int v = chunkEnd - 1; v >= chunk; v--)
+                {
+                    Vector512<T> sum = Broadcast<T>(inverse[v]) * Vector512.Load(Row(y.Pointer, v));
+                    for (long k = start[v]; k < start[v + 1]; k++)
+                    {
+                        if (Sse.IsSupported)
+                            Sse.Prefetch0(Row(y.Pointer, index[Math.Max(k - PrefetchEntries, 0)]));
+                        sum += Broadcast<T>(share[k]) * Vector512.Load(Row(y.Pointer, index[k]));
+                    }
+                    sum.Store(Row(y.Pointer, v));
+                    products += Vector512.Load(Row(r.Pointer, v)) * sum;
+                }
+                VectorKernels.Add(ref sums, products);
+            }
+        }
+        return sums;
+    }
+
+    /// <summary>b_i += share_i b_v for every step in order.</summary>
+    public static void Eliminate<T>(ReadOnlySpan<EliminationStep> steps, Panel<T> b)
+        where T : unmanaged, INumber<T>
+    {
+        if (PanelKernels.Scalar)
+        {
+            FactorKernelTwins.Eliminate(steps, b);
+            return;
+        }
+        foreach (ref readonly EliminationStep step in steps)
+        {
+            Vector512<T> own = Vector512.Load(Row(b.Pointer, step.Node));
+            AddTo(step.A, step.ShareA);
+            if (step.B < 0)
+                continue;
+            AddTo(step.B, step.ShareB);
+            if (step.C >= 0)
+                AddTo(step.C, step.ShareC);
+
+            void AddTo(int node, double share) =>
+                (Vector512.Load(Row(b.Pointer, node)) + (Broadcast<T>(share) * own)).Store(Row(b.Pointer, node));
+        }
+    }
+
+    /// <summary>x_v = b_v / d + sum share_i x_i for every step in reverse; x over b.</summary>
+    public static void Restore<T>(ReadOnlySpan<EliminationStep> steps, Panel<T> x)
+        where T : unmanaged, INumber<T>
+    {
+        if (PanelKernels.Scalar)
+        {
+            FactorKernelTwins.Restore(steps, x);
+            return;
+        }
+        for (int i = steps.Length - 1; i >= 0; i--)
+        {
+            ref readonly EliminationStep step = ref steps[i];
+            Vector512<T> sum = (Broadcast<T>(step.Inverse) * Vector512.Load(Row(x.Pointer, step.Node)))
+                + (Broadcast<T>(step.ShareA) * Vector512.Load(Row(x.Pointer, step.A)));
+            if (step.B >= 0)
+                sum += Broadcast<T>(step.ShareB) * Vector512.Load(Row(x.Pointer, step.B));
+            if (step.C >= 0)
+                sum += Broadcast<T>(step.ShareC) * Vector512.Load(Row(x.Pointer, step.C));
+            sum.Store(Row(x.Pointer, step.Node));
+        }
+    }
+
+    /// <summary>to_i = from_(rows[i]) for i below the count of rows.</summary>
+    public static void Gather<T>(Panel<T> from, int[] rows, Panel<T> to)
+        where T : unmanaged, INumber<T>
+    {
+        for (int i = 0; i < rows.Length; i++)
+            from.Row(rows[i]).CopyTo(to.Row(i));
+    }
+
+    /// <summary>to_(rows[i]) = from_i.</summary>
+    public static void Scatter<T>(Panel<T> from, int[] rows, Panel<T> to)
+        where T : unmanaged, INumber<T>
+    {
+        for (int i = 0; i < rows.Length; i++)
+            from.Row(i).CopyTo(to.Row(rows[i]));
+    }
+
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static T* Row<T>(T* panel, int node)
+        where T : unmanaged => (T*)((byte*)panel + ((long)node * 64));
+
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static Vector512<T> Broadcast<T>(double value)
+        where T : unmanaged => VectorKernels.Broadcast<T>(value);
+}

@@ -1,0 +1,160 @@
+// One component made ready for many solves: what can be eliminated exactly is, and the core gets the preconditioner that a short trial favours.
+// Invariant: what is prepared depends on the component and the seed alone, never on clocks or threads, so that runs repeat to the bit.
+
+using System.Numerics;
+using ScaleResist.Graphs;
+using ScaleResist.Kernels;
+
+namespace ScaleResist.Solving;
+
+/// <summary>Panels that the solves of one thread share; sized for the largest core.</summary>
+/// <typeparam name="T"><see cref="float"/> or <see cref="double"/>.</typeparam>
+public sealed class SolverWorkspace<T> : IDisposable
+    where T : unmanaged, INumber<T>
+{
+    internal SolverWorkspace(int gradientRows, int coreRows)
+    {
+        Gradient = new GradientWorkspace<T>(gradientRows);
+        CoreB = new Panel<T>(coreRows);
+        CoreX = new Panel<T>(coreRows);
+    }
+
+    internal GradientWorkspace<T> Gradient { get; }
+
+    internal Panel<T> CoreB { get; }
+
+    internal Panel<T> CoreX { get; }
+
+    internal SolveReport Report { get; } = new();
+
+    /// <inheritdoc/>
+    public void Dispose()
+    {
+        Gradient.Dispose();
+        CoreB.Dispose();
+        CoreX.Dispose();
+    }
+}
+
+/// <summary>Solves on one component of more than one node.</summary>
+internal sealed class ComponentSolver
+{
+    private const int LeastToTry = 200; // below, conjugate gradient ends in few steps anyway
+    private readonly Laplacian laplacian;
+    private readonly Component component;
+    private readonly EliminationStep[] steps = [];
+    private readonly int[]? coreRows; // the Laplacian's row of each row of the core; null: the component itself, in place
+    private readonly Laplacian core;
+    private readonly IPreconditioner<float> single;
+    private readonly IPreconditioner<double> twice;
+
+    public ComponentSolver(Laplacian laplacian, Component component, ulong seed, CancellationToken cancel)
+    {
+        this.laplacian = laplacian;
+        this.component = component;
+        Elimination elimination = Elimination.Of(laplacian, component);
+        bool inPlace = elimination.Steps.Count == 0 && component.Start == 0;
+        core = laplacian;
+        if (!inPlace)
+        {
+            steps = [.. elimination.Steps];
+            coreRows = elimination.Core;
+            core = elimination.BuildCore();
+        }
+        int coreNodes = elimination.Core.Length;
+        Choice = coreNodes < LeastToTry
+            ? PreconditionerChoice.Small
+            : PreconditionerChoice.ByTrial(core, coreNodes, () => inPlace ? elimination.BuildCore() : core, seed, cancel);
+        if (Choice.Factor is not null && inPlace)
+        {
+            coreRows = elimination.Core;
+            core = elimination.BuildCore();
+        }
+        if (Choice.Factor is SampledFactor factor)
+        {
+            coreRows = Compose(coreRows, factor.Order);
+            core = Renumbered(core, factor.Order);
+            single = new SampledElimination<float>(factor);
+            twice = new SampledElimination<double>(factor);
+        }
+        else
+        {
+            single = new Jacobi<float>(core.Strengths);
+            twice = new Jacobi<double>(core.Strengths);
+        }
+    }
+
+    /// <summary>What preconditions the core, and why.</summary>
+    public PreconditionerChoice Choice { get; }
+
+    /// <summary>Nodes eliminated exactly.</summary>
+    public int Eliminated => steps.Length;
+
+    /// <summary>Rows that the three panels of an iteration need.</summary>
+    public int GradientRows => coreRows is null ? component.End : core.NodeCount;
+
+    /// <summary>Rows that the core's own right-hand sides and solutions need; 0 where the core is the component in place.</summary>
+    public int CoreRows => coreRows is null ? 0 : core.NodeCount;
+
+    /// <summary>z = L+ b on the component's rows; residuals of all columns, on the whole component, go to the workspace's report.</summary>
+    public void Solve<T>(Panel<T> b, Panel<T> z, double tolerance, SolverWorkspace<T> workspace, CancellationToken cancel)
+        where T : unmanaged, INumber<T>
+    {
+        (int start, int end) = (component.Start, component.End);
+        IPreconditioner<T> preconditioner = typeof(T) == typeof(float) ? (IPreconditioner<T>)single : (IPreconditioner<T>)twice;
+        SolveLimits limits = SolveLimits.For(tolerance, GradientRows);
+        LaneSums size = PanelKernels.Squares(b, start, end);
+        if (coreRows is null)
+        {
+            ConjugateGradient.Iterate(core, preconditioner, b, z, workspace.Gradient, start, end, size, limits, workspace.Report, cancel);
+        }
+        else
+        {
+            ConjugateGradient.Copy(b, z, start, end);
+            FactorKernels.Eliminate<T>(steps, z);
+            FactorKernels.Gather(z, coreRows, workspace.CoreB);
+            ConjugateGradient.Iterate(
+                core, preconditioner, workspace.CoreB, workspace.CoreX, workspace.Gradient, 0, core.NodeCount, size, limits, workspace.Report, cancel);
+            FactorKernels.Scatter(workspace.CoreX, coreRows, z);
+            FactorKernels.Restore<T>(steps, z);
+        }
+        ConjugateGradient.Verify(laplacian, b, z, start, end, size, workspace.Report);
+        PanelKernels.Centre(z, start, end);
+    }
+
+    private static int[] Compose(int[]? rows, int[] order)
+    {
+        int[] composed = new int[order.Length];
+        for (int i = 0; i < order.Length; i++)
+            composed[i] = rows is null ? order[i] : rows[order[i]];
+        return composed;
+    }
+
+    private static Laplacian Renumbered(Laplacian laplacian, int[] order)
+    {
+        int n = order.Length;
+        int[] place = new int[n];
+        for (int i = 0; i < n; i++)
+            place[order[i]] = i;
+        long[] rowStart = new long[n + 1];
+        double[] strengths = new double[n];
+        for (int i = 0; i < n; i++)
+        {
+            rowStart[i + 1] = rowStart[i] + (laplacian.RowStart[order[i] + 1] - laplacian.RowStart[order[i]]);
+            strengths[i] = laplacian.Strengths[order[i]];
+        }
+        int[] neighbours = new int[rowStart[n]];
+        double[]? conductances = laplacian.Conductances is null ? null : new double[rowStart[n]];
+        for (int i = 0; i < n; i++)
+        {
+            long write = rowStart[i];
+            for (long k = laplacian.RowStart[order[i]]; k < laplacian.RowStart[order[i] + 1]; k++, write++)
+            {
+                neighbours[write] = place[laplacian.Neighbours[k]];
+                if (conductances is not null)
+                    conductances[write] = laplacian.Conductances![k];
+            }
+        }
+        return new Laplacian(rowStart, neighbours, conductances, strengths);
+    }
+}
