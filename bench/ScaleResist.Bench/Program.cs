@@ -14,7 +14,10 @@ switch (args)
     case ["job", string file, string probes] when int.TryParse(probes, out int count):
         WholeJob.Run(file, count);
         return 0;
+    case ["solver", .. string[] rest]:
+        SolverBench.Run(1e-4, rest.FirstOrDefault());
+        return 0;
     default:
-        Console.Error.WriteLine("say: kernels [BenchmarkDotNet options] | job FILE [PROBES]");
+        Console.Error.WriteLine("say: kernels [BenchmarkDotNet options] | job FILE [PROBES] | solver [FAMILY]");
         return 2;
 }

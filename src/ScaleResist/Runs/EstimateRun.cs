@@ -40,12 +40,13 @@ public static class EstimateRun
         if (plan.Want.HasFlag(Want.Components))
             Write("components", Tables.Components(label), network.NodeCount, w => NodeRows.WriteComponents(network, w, cancel));
 
-        LaplacianSolver solver = new(network);
+        LaplacianSolver? solver = null;
         ProbedEstimates? probed = null;
         LinkRows? links = null;
         List<IndexEntry> index = [];
         if ((plan.Want & ~Want.Components) != 0)
         {
+            solver = phases.Do("preparing", network.LinkCount, "links", () => new LaplacianSolver(network, plan.Probes, plan.Seed, cancel));
             probed = phases.Do(
                 "solving", plan.Probes, "probes", () => ProbedEstimates.Run(network, bridges, plan, inputs, solver, observer, cancel));
             links = WalkLinks(probed);
@@ -80,9 +81,11 @@ public static class EstimateRun
             Index = index,
             CriticalLinks = plan.Want.HasFlag(Want.Links) ? links!.Critical : [],
             FosterSum = links?.FosterSums.Sum(),
-            Solver = probed is null ? null : new SolverFacts
+            Solver = solver is null ? null : new SolverFacts
             {
                 Preconditioner = solver.Preconditioner,
+                Reason = solver.Reason,
+                Eliminated = solver.Eliminated,
                 Columns = solver.Statistics.Columns,
                 MostIterations = solver.Statistics.MostIterations,
                 LargestResidual = solver.Statistics.LargestResidual,

@@ -72,8 +72,14 @@ public sealed record CriticalLink
 /// <summary>How the solves went.</summary>
 public sealed record SolverFacts
 {
-    /// <summary>Name of the preconditioner used.</summary>
+    /// <summary>Name of the preconditioner used on the largest component.</summary>
     public required string Preconditioner { get; init; }
+
+    /// <summary>Why it was chosen.</summary>
+    public required string Reason { get; init; }
+
+    /// <summary>Nodes eliminated exactly before anything iterates.</summary>
+    public required long Eliminated { get; init; }
 
     /// <summary>Right-hand sides solved, over all components.</summary>
     public required long Columns { get; init; }

@@ -48,7 +48,7 @@ internal sealed class ComponentSolver
     private readonly IPreconditioner<float> single;
     private readonly IPreconditioner<double> twice;
 
-    public ComponentSolver(Laplacian laplacian, Component component, ulong seed, CancellationToken cancel)
+    public ComponentSolver(Laplacian laplacian, Component component, int solves, ulong seed, CancellationToken cancel)
     {
         this.laplacian = laplacian;
         this.component = component;
@@ -64,7 +64,7 @@ internal sealed class ComponentSolver
         int coreNodes = elimination.Core.Length;
         Choice = coreNodes < LeastToTry
             ? PreconditionerChoice.Small
-            : PreconditionerChoice.ByTrial(core, coreNodes, () => inPlace ? elimination.BuildCore() : core, seed, cancel);
+            : PreconditionerChoice.ByTrial(core, coreNodes, () => inPlace ? elimination.BuildCore() : core, solves, seed, cancel);
         if (Choice.Factor is not null && inPlace)
         {
             coreRows = elimination.Core;

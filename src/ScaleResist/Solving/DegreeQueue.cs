@@ -1,84 +1,59 @@
-// Nodes by degree, the least first, degrees changing by one at a time: doubly linked buckets, constant time an operation.
-// Invariant: every node not yet taken stands in the bucket of its degree, capped at the last bucket.
+// Nodes by degree, the least first. A node may stand in several buckets; what a bucket says is checked when the node comes up.
+// Invariant: every node not yet taken stands in at least one bucket that is not above its degree, so none is overlooked.
 
 using ScaleResist.Graphs;
 
 namespace ScaleResist.Solving;
 
-/// <summary>A bucket queue of nodes by degree.</summary>
+/// <summary>A bucket queue of nodes by degree, capped at the last bucket.</summary>
 internal sealed class DegreeQueue
 {
-    private const int Buckets = 4096;
-    private readonly int[] head = new int[Buckets];
-    private readonly int[] next;
-    private readonly int[] previous;
-    private readonly int[] degree;
-    private int least = Buckets - 1;
+    private const int Last = 1023;
+    private readonly Stack<int>[] buckets = [.. Enumerable.Range(0, Last + 1).Select(_ => new Stack<int>())];
+    private readonly int[] degree; // -1: taken
+    private int least;
 
     /// <summary>All nodes of a Laplacian by the length of their rows.</summary>
     public DegreeQueue(Laplacian laplacian)
     {
-        int n = laplacian.NodeCount;
-        next = new int[n];
-        previous = new int[n];
-        degree = new int[n];
-        Array.Fill(head, -1);
-        for (int v = n - 1; v >= 0; v--)
+        degree = new int[laplacian.NodeCount];
+        for (int v = degree.Length - 1; v >= 0; v--)
         {
             degree[v] = (int)(laplacian.RowStart[v + 1] - laplacian.RowStart[v]);
-            Insert(v);
+            buckets[Bucket(v)].Push(v);
         }
     }
 
     /// <summary>Takes a node of least degree.</summary>
     public int TakeLeast()
     {
-        while (head[least] < 0)
-            least++;
-        int node = head[least];
-        Remove(node);
-        return node;
+        while (true)
+        {
+            while (buckets[least].Count == 0)
+                least++;
+            int node = buckets[least].Pop();
+            if (degree[node] < 0)
+                continue;
+            int bucket = Bucket(node);
+            if (bucket <= least)
+            {
+                degree[node] = -1;
+                return node;
+            }
+            buckets[bucket].Push(node);
+        }
     }
 
-    /// <summary>The node lost a link.</summary>
-    public void Lower(int node) => Move(node, -1);
-
-    /// <summary>The node gained a link.</summary>
-    public void Raise(int node) => Move(node, 1);
-
-    private void Move(int node, int step)
+    /// <summary>The node's degree changed by so much.</summary>
+    public void Change(int node, int by)
     {
-        int before = Bucket(node);
-        degree[node] += step;
-        int now = Bucket(node);
-        if (before == now)
-            return;
-        degree[node] -= step;
-        Remove(node);
-        degree[node] += step;
-        Insert(node);
-    }
-
-    private int Bucket(int node) => Math.Clamp(degree[node], 0, Buckets - 1);
-
-    private void Insert(int node)
-    {
+        degree[node] += by;
+        if (by >= 0)
+            return; // it stands too low for now, and moves up when it comes up
         int bucket = Bucket(node);
-        next[node] = head[bucket];
-        previous[node] = -1;
-        if (head[bucket] >= 0)
-            previous[head[bucket]] = node;
-        head[bucket] = node;
+        buckets[bucket].Push(node);
         least = Math.Min(least, bucket);
     }
 
-    private void Remove(int node)
-    {
-        if (previous[node] >= 0)
-            next[previous[node]] = next[node];
-        else
-            head[Bucket(node)] = next[node];
-        if (next[node] >= 0)
-            previous[next[node]] = previous[node];
-    }
+    private int Bucket(int node) => Math.Clamp(degree[node], 0, Last);
 }

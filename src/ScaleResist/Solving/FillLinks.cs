@@ -9,33 +9,26 @@ internal sealed class FillLinks(int nodes)
 {
     private readonly int[] head = Heads(nodes);
     private readonly int[] length = new int[nodes];
-    private int[] next = new int[16];
-    private int[] to = new int[16];
-    private double[] weight = new double[16];
+    private Entry[] entries = new Entry[16];
     private int count;
 
     /// <summary>The first entry of a node, or -1.</summary>
     public int First(int node) => head[node];
 
     /// <summary>The entry after this one, or -1.</summary>
-    public int Next(int link) => next[link];
+    public int Next(int link) => entries[link].Next;
 
     /// <summary>The other end.</summary>
-    public int To(int link) => to[link];
+    public int To(int link) => entries[link].To;
 
     /// <summary>The weight.</summary>
-    public double Weight(int link) => weight[link];
+    public double Weight(int link) => entries[link].Weight;
 
     /// <summary>Adds a link.</summary>
     public void Add(int u, int v, double c)
     {
-        if (count + 2 > to.Length)
-        {
-            int size = checked(2 * to.Length);
-            Array.Resize(ref next, size);
-            Array.Resize(ref to, size);
-            Array.Resize(ref weight, size);
-        }
+        if (count + 2 > entries.Length)
+            Array.Resize(ref entries, checked(2 * entries.Length));
         Put(u, v, c);
         Put(v, u, c);
     }
@@ -46,35 +39,40 @@ internal sealed class FillLinks(int nodes)
         if (length[u] > length[v])
             (u, v) = (v, u);
         int before = -1;
-        for (int link = head[u]; link >= 0; link = next[link])
+        for (int link = head[u]; link >= 0; link = entries[link].Next)
         {
-            if (to[link] == v)
+            if (entries[link].To == v)
             {
-                weight[link] += c;
-                weight[link ^ 1] += c;
+                entries[link].Weight += c;
+                entries[link ^ 1].Weight += c;
                 return true;
             }
-            if (!gone[to[link]])
+            if (!gone[entries[link].To])
             {
                 before = link;
                 continue;
             }
             length[u]--;
             if (before < 0)
-                head[u] = next[link];
+                head[u] = entries[link].Next;
             else
-                next[before] = next[link];
+                entries[before].Next = entries[link].Next;
         }
         return false;
     }
 
     private void Put(int from, int end, double c)
     {
-        to[count] = end;
-        weight[count] = c;
-        next[count] = head[from];
+        entries[count] = new Entry { To = end, Next = head[from], Weight = c };
         head[from] = count++;
         length[from]++;
+    }
+
+    private struct Entry
+    {
+        public int To;
+        public int Next;
+        public double Weight;
     }
 
     private static int[] Heads(int nodes)

@@ -46,9 +46,10 @@ public sealed class LaplacianSolver
 
     /// <summary>Prepares all components: eliminates, tries, factorises. Near-linear in the links.</summary>
     /// <param name="network">The network.</param>
+    /// <param name="solves">Right-hand sides to come, which a larger set-up must pay for.</param>
     /// <param name="seed">Of the sampled factor.</param>
     /// <param name="cancel">Ends the preparation.</param>
-    public LaplacianSolver(Network network, ulong seed = 1, CancellationToken cancel = default)
+    public LaplacianSolver(Network network, int solves = 64, ulong seed = 1, CancellationToken cancel = default)
     {
         this.network = network;
         int several = 0;
@@ -56,7 +57,7 @@ public sealed class LaplacianSolver
             several++; // single nodes come last
         solvers = new ComponentSolver[several];
         for (int c = 0; c < several; c++)
-            solvers[c] = new ComponentSolver(network.Laplacian, network.Components[c], seed, cancel);
+            solvers[c] = new ComponentSolver(network.Laplacian, network.Components[c], solves, seed, cancel);
     }
 
     /// <summary>The name of the largest component's preconditioner.</summary>

@@ -98,9 +98,13 @@ internal sealed class SampledFactor
         private readonly AppendBuffer<int> successors = new();
         private readonly AppendBuffer<float> shares = new();
         private readonly int[] position; // 1 + place among the gathered neighbours
-        private int[] nodes = new int[64];
-        private double[] weights = new double[64];
-        private double[] after = new double[65];
+        private int[] nodes = []; // the row in work: neighbours, ...
+        private int[] sortedNodes = [];
+        private double[] weights = []; // ... weights, ...
+        private double[] after = []; // ... sums of later weights, ...
+        private int[] place = []; // ... where each stood before the sort, ...
+        private int[] multiplicity = []; // ... how many parallel links went into each, ...
+        private int[] change = []; // ... and how each one's degree changes
         private ulong state;
 
         public Builder(Laplacian laplacian, int samples, ulong seed)
@@ -116,6 +120,7 @@ internal sealed class SampledFactor
             columnStart = new long[n + 1];
             position = new int[n];
             queue = new DegreeQueue(laplacian);
+            Grow(64);
         }
 
         public void Run()
@@ -126,7 +131,7 @@ internal sealed class SampledFactor
                 order[place] = v;
                 gone[v] = true;
                 int count = Gather(v);
-                Array.Sort(weights, nodes, 0, count);
+                SortByWeight(count);
                 double d = 0;
                 for (int i = count - 1; i >= 0; i--)
                 {
@@ -139,7 +144,6 @@ internal sealed class SampledFactor
                 {
                     successors.Add(nodes[i]);
                     shares.Add((float)(weights[i] / d));
-                    queue.Lower(nodes[i]);
                 }
                 columnStart[place + 1] = successors.Count;
                 for (int i = 0; i + 1 < count; i++)
@@ -151,10 +155,12 @@ internal sealed class SampledFactor
                     {
                         int j = Draw(i, count);
                         fill.Add(nodes[i], nodes[j], c);
-                        queue.Raise(nodes[i]);
-                        queue.Raise(nodes[j]);
+                        change[i]++;
+                        change[j]++;
                     }
                 }
+                for (int i = 0; i < count; i++)
+                    queue.Change(nodes[i], change[i]);
             }
         }
 
@@ -174,6 +180,38 @@ internal sealed class SampledFactor
             return low;
         }
 
+        // Most rows are short: insertion beats the general sort there. Ties keep the order of gathering, so the factor is reproducible.
+        private void SortByWeight(int count)
+        {
+            for (int i = 0; i < count; i++)
+                place[i] = i;
+            if (count > 24)
+            {
+                Array.Sort(weights, place, 0, count);
+            }
+            else
+            {
+                for (int i = 1; i < count; i++)
+                {
+                    double weight = weights[i];
+                    int from = place[i], j = i;
+                    for (; j > 0 && weights[j - 1] > weight; j--)
+                    {
+                        weights[j] = weights[j - 1];
+                        place[j] = place[j - 1];
+                    }
+                    weights[j] = weight;
+                    place[j] = from;
+                }
+            }
+            for (int i = 0; i < count; i++)
+            {
+                sortedNodes[i] = nodes[place[i]];
+                change[i] = -multiplicity[place[i]];
+            }
+            (nodes, sortedNodes) = (sortedNodes, nodes);
+        }
+
         private int Gather(int v)
         {
             int count = 0;
@@ -184,33 +222,39 @@ internal sealed class SampledFactor
             }
             for (int link = fill.First(v); link >= 0; link = fill.Next(link))
             {
-                if (gone[fill.To(link)])
-                    continue;
-                if (!Put(fill.To(link), fill.Weight(link)))
-                    queue.Lower(fill.To(link)); // a parallel link counted twice in the neighbour's degree
+                if (!gone[fill.To(link)])
+                    Put(fill.To(link), fill.Weight(link));
             }
             for (int i = 0; i < count; i++)
                 position[nodes[i]] = 0;
             return count;
 
-            bool Put(int node, double weight)
+            void Put(int node, double weight)
             {
                 if (position[node] > 0)
                 {
                     weights[position[node] - 1] += weight;
-                    return false;
+                    multiplicity[position[node] - 1]++;
+                    return;
                 }
-                if (count == nodes.Length)
-                {
-                    Array.Resize(ref nodes, 2 * count);
-                    Array.Resize(ref weights, 2 * count);
-                    Array.Resize(ref after, (2 * count) + 1);
-                }
+                if (count == weights.Length)
+                    Grow(2 * count);
                 nodes[count] = node;
+                multiplicity[count] = 1;
                 weights[count++] = weight;
                 position[node] = count;
-                return true;
             }
+        }
+
+        private void Grow(int size)
+        {
+            Array.Resize(ref nodes, size);
+            Array.Resize(ref sortedNodes, size);
+            Array.Resize(ref weights, size);
+            Array.Resize(ref after, size + 1);
+            Array.Resize(ref place, size);
+            Array.Resize(ref change, size);
+            Array.Resize(ref multiplicity, size);
         }
 
         private double NextUnit()
@@ -224,15 +268,15 @@ internal sealed class SampledFactor
 
         public SampledFactor Finish()
         {
-            int[] place = new int[n]; // of a node in the order of elimination
+            int[] placeOf = position; // of a node in the order of elimination
             for (int i = 0; i < n; i++)
-                place[order[i]] = i;
+                placeOf[order[i]] = i;
             int[] index = new int[successors.Count];
             float[] value = new float[successors.Count];
             for (int block = 0, k = 0; block < successors.BlockCount; block++)
             {
                 foreach (int node in successors.Block(block))
-                    index[k++] = place[node];
+                    index[k++] = placeOf[node];
             }
             for (int block = 0, k = 0; block < shares.BlockCount; block++)
             {

@@ -159,6 +159,8 @@ internal sealed class FakeEngine : IEstimateEngine
         Solver = new SolverFacts
         {
             Preconditioner = "jacobi",
+            Reason = "a trial foretells 7 steps",
+            Eliminated = 12,
             Columns = 64,
             MostIterations = 123,
             LargestResidual = 9.9e-5,
