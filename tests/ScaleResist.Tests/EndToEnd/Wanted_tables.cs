@@ -1,0 +1,39 @@
+// --want limits what is written and what is computed.
+
+using System.Text.Json;
+using ScaleResist.Tests.Cli;
+
+namespace ScaleResist.Tests.EndToEnd;
+
+public sealed class Wanted_tables
+{
+    // The sample has three components, and a right-hand side counts once in each. The index solves one more, for the strengths.
+    [Theory]
+    [InlineData("components", null, "finding bridges,writing components")]
+    [InlineData("links", 48, "finding bridges,solving,writing links")]
+    [InlineData("nodes", 48, "finding bridges,solving,checking,writing nodes")]
+    [InlineData("coordinates", 48, "finding bridges,solving,checking,writing coordinates")]
+    [InlineData("pairs", 48, "finding bridges,solving,checking,writing pairs")]
+    [InlineData("index", 51, "finding bridges,solving,checking,writing index")]
+    [InlineData("index,links", 51, "finding bridges,solving,writing links,writing index")]
+    public void Only_the_wanted_tables_are_computed_and_written(string want, int? columns, string phases)
+    {
+        using Place place = new();
+        string[] pairs = want == "pairs" ? ["--pairs", Command.Sample("pairs.csv")] : [];
+        Command.Succeed(Command.Sample("links.csv"), place.Lake,
+            ["--run-id", "a", "--weights", "conductance", "--probes", "16", "--want", want, .. pairs]);
+        string[] tables = want.Split(',');
+        Assert.Equal(tables.Order(), Directory.GetDirectories(place.Run("a")).Select(Path.GetFileName).Order());
+        Assert.Equal(["_SUCCESS", "run.json"], Directory.GetFiles(place.Run("a")).Select(Path.GetFileName).Order());
+        Assert.Equal(["run=a"], Directory.GetFileSystemEntries(place.Lake).Select(Path.GetFileName));
+
+        using JsonDocument json = JsonDocument.Parse(File.ReadAllBytes(Path.Combine(place.Run("a"), "run.json")));
+        JsonElement record = json.RootElement;
+        Assert.Equal(tables.Order(), record.GetProperty("rows").EnumerateObject().Select(table => table.Name).Order());
+        Assert.Equal(["reading", "building", .. phases.Split(',')],
+            record.GetProperty("phases").EnumerateArray().Select(phase => phase.GetProperty("name").GetString()));
+        JsonElement solver = record.GetProperty("solver");
+        Assert.Equal(columns, solver.ValueKind == JsonValueKind.Null ? null : solver.GetProperty("columns").GetInt32());
+        Assert.Equal(columns is not null, record.GetProperty("foster").ValueKind == JsonValueKind.Object);
+    }
+}
