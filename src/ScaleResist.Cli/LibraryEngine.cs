@@ -4,6 +4,7 @@ using ScaleResist.Cli.Commands;
 using ScaleResist.Cli.Lake;
 using ScaleResist.Graphs;
 using ScaleResist.Runs;
+using ScaleResist.Solving;
 
 namespace ScaleResist.Cli;
 
@@ -21,9 +22,18 @@ internal sealed class LibraryEngine : IEstimateEngine
                 ? NetworkInput.ReadNodeWeights(weights, network.Labels, ct: interrupted)
                 : null,
         };
-        EstimateSummary summary =
-            EstimateRun.Execute(network, request.Plan, inputs, openSink(network.Input), observer, interrupted);
-        return new EstimateOutcome(network.Input, network.Cleaning, summary);
+        try
+        {
+            EstimateSummary summary =
+                EstimateRun.Execute(network, request.Plan, inputs, openSink(network.Input), observer, interrupted);
+            return new EstimateOutcome(network.Input, network.Cleaning, summary);
+        }
+        catch (SolveException unsolved)
+        {
+            // Doubles end where conductances of one component lie some fourteen decades apart; that is for the input to mend.
+            throw new InputException(request.Network, null, unsolved.Message,
+                "its conductances lie too far apart: merge nodes that nothing parts, or drop links that carry nothing", unsolved);
+        }
     }
 
     private static Network Load(EstimateRequest request, IRunObserver observer, CancellationToken interrupted)

@@ -22,7 +22,7 @@ internal static class RunPlan
         ["probes"] = request.Plan.Probes,
         ["confidence"] = request.Plan.Confidence,
         ["seed"] = request.Plan.Seed,
-        ["tolerance"] = request.Plan.Tolerance,
+        ["mode_error"] = request.Plan.EffectiveModeError,
         // Without --weights a third column is refused, so a run that finished had none.
         ["weights"] = request.Reading.Weights is WeightMeaning.Unsaid
             ? "none"

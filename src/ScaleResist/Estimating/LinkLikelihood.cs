@@ -25,13 +25,18 @@ namespace ScaleResist.Estimating;
 /// <param name="FactorV">Factor of b_v.</param>
 public readonly record struct LinkBounds(double Lower, double Upper, double FactorU, double FactorV)
 {
-    /// <summary>Upper - Lower, without cancellation.</summary>
+    private const double RoundOff = 1e-14;
+
+    /// <summary>Upper - Lower, without cancellation; 0 where the link is as good as alone.</summary>
     public double Range { get; private init; }
 
     /// <summary>The bounds of a link of conductance c between nodes of strengths d_u and d_v, both above c (so it is no lone link).</summary>
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
     public static LinkBounds Of(double c, double du, double dv)
     {
+        // Where all else at an end is lost in rounding beside c, the link is as good as alone.
+        if (!(du - c > RoundOff * du && dv - c > RoundOff * dv))
+            return new LinkBounds(1 / c, 1 / c, 0, 0) { Range = 0 };
         double restU = 1 / (du - c), restV = 1 / (dv - c);
         double g = restU + restV;
         double damp = 1 / (1 + (c * g));
@@ -54,6 +59,8 @@ public static class LinkLikelihood
     /// <param name="quantile">Of the standard normal, for the confidence wanted.</param>
     public static Estimate Estimate(in LinkBounds bounds, double shorted, double single, int probes, double quantile)
     {
+        if (bounds.Range == 0)
+            return Estimating.Estimate.Exact(bounds.Upper);
         double scale = 1 / (probes * bounds.Range);
         double s = Maximise(shorted * scale, single * scale);
         double rest = 1 - s;

@@ -12,7 +12,7 @@ namespace ScaleResist.Estimating;
 /// <summary>d'L+d and w'L+w for every component.</summary>
 public sealed class StrengthForms
 {
-    private const double Tolerance = 1e-6; // the form's error is the square of the energy-norm error, so this is ample
+    private const double Tolerance = 1e-4; // in the energy norm; the form's own error is its square
 
     private StrengthForms(double[] byStrength, double[] byWeight)
     {

@@ -46,21 +46,29 @@ internal static class FactorKernelTwins
         return sums;
     }
 
-    public static void Eliminate<T>(ReadOnlySpan<EliminationStep> steps, Panel<T> b)
+    public static LaneSums Eliminate<T>(ReadOnlySpan<EliminationStep> steps, Panel<T> b)
         where T : unmanaged, INumber<T>
     {
-        foreach (ref readonly EliminationStep step in steps)
+        LaneSums sums = default;
+        for (int lane = 0; lane < Panel<T>.Width; lane++)
         {
-            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            for (int chunk = 0; chunk < steps.Length; chunk += LaneSums.ChunkRows)
             {
-                T own = b.Row(step.Node)[lane];
-                b.Row(step.A)[lane] += T.CreateTruncating(step.ShareA) * own;
-                if (step.B >= 0)
-                    b.Row(step.B)[lane] += T.CreateTruncating(step.ShareB) * own;
-                if (step.C >= 0)
-                    b.Row(step.C)[lane] += T.CreateTruncating(step.ShareC) * own;
+                T energy = T.Zero;
+                foreach (ref readonly EliminationStep step in steps[chunk..Math.Min(steps.Length, chunk + LaneSums.ChunkRows)])
+                {
+                    T own = b.Row(step.Node)[lane];
+                    energy += T.CreateTruncating(step.Inverse) * own * own;
+                    b.Row(step.A)[lane] += T.CreateTruncating(step.ShareA) * own;
+                    if (step.B >= 0)
+                        b.Row(step.B)[lane] += T.CreateTruncating(step.ShareB) * own;
+                    if (step.C >= 0)
+                        b.Row(step.C)[lane] += T.CreateTruncating(step.ShareC) * own;
+                }
+                sums[lane] += double.CreateTruncating(energy);
             }
         }
+        return sums;
     }
 
     public static void Restore<T>(ReadOnlySpan<EliminationStep> steps, Panel<T> x)

@@ -87,29 +87,35 @@ internal static unsafe class FactorKernels
         return sums;
     }
 
-    /// <summary>b_i += share_i b_v for every step in order.</summary>
-    public static void Eliminate<T>(ReadOnlySpan<EliminationStep> steps, Panel<T> b)
+    /// <summary>b_i += share_i b_v for every step in order; returns the energy b_v^2 / d that the steps take out, by column.</summary>
+    public static LaneSums Eliminate<T>(ReadOnlySpan<EliminationStep> steps, Panel<T> b)
         where T : unmanaged, INumber<T>
     {
         if (PanelKernels.Scalar)
+            return FactorKernelTwins.Eliminate(steps, b);
+        LaneSums sums = default;
+        for (int chunk = 0; chunk < steps.Length; chunk += LaneSums.ChunkRows)
         {
-            FactorKernelTwins.Eliminate(steps, b);
-            return;
+            Vector512<T> energy = Vector512<T>.Zero;
+            foreach (ref readonly EliminationStep step in steps[chunk..Math.Min(steps.Length, chunk + LaneSums.ChunkRows)])
+            {
+                Vector512<T> own = Vector512.Load(Row(b.Pointer, step.Node));
+                energy += Broadcast<T>(step.Inverse) * own * own;
+                AddShare(b, step.A, step.ShareA, own);
+                if (step.B >= 0)
+                    AddShare(b, step.B, step.ShareB, own);
+                if (step.C >= 0)
+                    AddShare(b, step.C, step.ShareC, own);
+            }
+            VectorKernels.Add(ref sums, energy);
         }
-        foreach (ref readonly EliminationStep step in steps)
-        {
-            Vector512<T> own = Vector512.Load(Row(b.Pointer, step.Node));
-            AddTo(step.A, step.ShareA);
-            if (step.B < 0)
-                continue;
-            AddTo(step.B, step.ShareB);
-            if (step.C >= 0)
-                AddTo(step.C, step.ShareC);
-
-            void AddTo(int node, double share) =>
-                (Vector512.Load(Row(b.Pointer, node)) + (Broadcast<T>(share) * own)).Store(Row(b.Pointer, node));
-        }
+        return sums;
     }
+
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static void AddShare<T>(Panel<T> b, int node, double share, Vector512<T> own)
+        where T : unmanaged, INumber<T> =>
+        (Vector512.Load(Row(b.Pointer, node)) + (Broadcast<T>(share) * own)).Store(Row(b.Pointer, node));
 
     /// <summary>x_v = b_v / d + sum share_i x_i for every step in reverse; x over b.</summary>
     public static void Restore<T>(ReadOnlySpan<EliminationStep> steps, Panel<T> x)

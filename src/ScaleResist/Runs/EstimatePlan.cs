@@ -49,6 +49,12 @@ public sealed record EstimatePlan
     /// <summary>Threads to use; results do not depend on it.</summary>
     public int Threads { get; init; } = Environment.ProcessorCount;
 
-    /// <summary>The relative residual |b - Lz| / |b| at which a solve stops.</summary>
-    public double Tolerance { get; init; } = 1e-4;
+    /// <summary>
+    /// The solver error allowed in any mode of z, relative to the mode's standard deviation; null: a twentieth of the relative statistical
+    /// error sqrt(2/K) of a mode's square, so that solver errors stay below a tenth of the error bars.
+    /// </summary>
+    public double? ModeError { get; init; }
+
+    /// <summary>The mode error in force.</summary>
+    public double EffectiveModeError => ModeError ?? 0.05 * Math.Sqrt(2.0 / Probes);
 }

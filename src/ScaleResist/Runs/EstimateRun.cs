@@ -50,6 +50,8 @@ public static class EstimateRun
             probed = phases.Do(
                 "solving", plan.Probes, "probes", () => ProbedEstimates.Run(network, bridges, plan, inputs, solver, observer, cancel));
             links = WalkLinks(probed);
+            if (!links.FosterSums.All(double.IsFinite))
+                throw new SolveException("an estimate is not a finite number");
         }
         if (plan.Want.HasFlag(Want.Index))
         {
@@ -89,6 +91,7 @@ public static class EstimateRun
                 Columns = solver.Statistics.Columns,
                 MostIterations = solver.Statistics.MostIterations,
                 LargestResidual = solver.Statistics.LargestResidual,
+                LargestEnergyError = solver.Statistics.LargestEnergyError,
                 Retried = solver.Statistics.Retried,
             },
             Phases = phases.Times,

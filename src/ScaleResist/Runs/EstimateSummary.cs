@@ -90,6 +90,9 @@ public sealed record SolverFacts
     /// <summary>The largest true relative residual, recomputed after the solve.</summary>
     public required double LargestResidual { get; init; }
 
+    /// <summary>The largest relative error of a solve in the energy norm, estimated from the true residual.</summary>
+    public required double LargestEnergyError { get; init; }
+
     /// <summary>Columns solved again in doubles because floats did not reach the tolerance.</summary>
     public required long Retried { get; init; }
 }

@@ -52,8 +52,8 @@ internal sealed class ProbedEstimates
                 {
                     (Slot slot, int number) = (slots[i], first + i);
                     slot.Panel.Draw(number, plan.Probes, plan.Threads);
-                    work.Add(() => solver.Solve(
-                        slot.Panel.B, slot.Panel.Z, slot.Panel.Probes, plan.Tolerance, slot.Workspace, cancel));
+                    work.Add(() => solver.SolveProbes(
+                        slot.Panel.B, slot.Panel.Z, slot.Panel.Probes, plan.EffectiveModeError, slot.Workspace, cancel));
                 }
                 // The forms ride along with the last batch, which may have a thread to spare.
                 if (forms && first + count == panels)

@@ -39,7 +39,7 @@ public sealed class SolverWorkspace<T> : IDisposable
 /// <summary>Solves on one component of more than one node.</summary>
 internal sealed class ComponentSolver
 {
-    private const int LeastToTry = 200; // below, conjugate gradient ends in few steps anyway
+
     private readonly Laplacian laplacian;
     private readonly Component component;
     private readonly EliminationStep[] steps = [];
@@ -62,8 +62,8 @@ internal sealed class ComponentSolver
             core = elimination.BuildCore();
         }
         int coreNodes = elimination.Core.Length;
-        Choice = coreNodes < LeastToTry
-            ? PreconditionerChoice.Small
+        Choice = coreNodes == 1
+            ? PreconditionerChoice.None
             : PreconditionerChoice.ByTrial(core, coreNodes, () => inPlace ? elimination.BuildCore() : core, solves, seed, cancel);
         if (Choice.Factor is not null && inPlace)
         {
@@ -79,8 +79,8 @@ internal sealed class ComponentSolver
         }
         else
         {
-            single = new Jacobi<float>(core.Strengths);
-            twice = new Jacobi<double>(core.Strengths);
+            single = new Jacobi<float>(core.Strengths, Choice.LeastEigenvalue);
+            twice = new Jacobi<double>(core.Strengths, Choice.LeastEigenvalue);
         }
     }
 
@@ -96,30 +96,33 @@ internal sealed class ComponentSolver
     /// <summary>Rows that the core's own right-hand sides and solutions need; 0 where the core is the component in place.</summary>
     public int CoreRows => coreRows is null ? 0 : core.NodeCount;
 
-    /// <summary>z = L+ b on the component's rows; residuals of all columns, on the whole component, go to the workspace's report.</summary>
+    /// <summary>
+    /// z = L+ b on the component's rows, centred. Energy errors go to the workspace's report, and the true residuals of the whole component.
+    /// </summary>
     public void Solve<T>(Panel<T> b, Panel<T> z, double tolerance, SolverWorkspace<T> workspace, CancellationToken cancel)
         where T : unmanaged, INumber<T>
     {
         (int start, int end) = (component.Start, component.End);
         IPreconditioner<T> preconditioner = typeof(T) == typeof(float) ? (IPreconditioner<T>)single : (IPreconditioner<T>)twice;
         SolveLimits limits = SolveLimits.For(tolerance, GradientRows);
-        LaneSums size = PanelKernels.Squares(b, start, end);
+        SolveReport report = workspace.Report;
         if (coreRows is null)
         {
-            ConjugateGradient.Iterate(core, preconditioner, b, z, workspace.Gradient, start, end, size, limits, workspace.Report, cancel);
+            ConjugateGradient.Solve(core, preconditioner, b, z, workspace.Gradient, start, end, default, limits, report, cancel);
+            PanelKernels.Centre(z, start, end);
+            return;
         }
-        else
-        {
-            ConjugateGradient.Copy(b, z, start, end);
-            FactorKernels.Eliminate<T>(steps, z);
-            FactorKernels.Gather(z, coreRows, workspace.CoreB);
-            ConjugateGradient.Iterate(
-                core, preconditioner, workspace.CoreB, workspace.CoreX, workspace.Gradient, 0, core.NodeCount, size, limits, workspace.Report, cancel);
-            FactorKernels.Scatter(workspace.CoreX, coreRows, z);
-            FactorKernels.Restore<T>(steps, z);
-        }
-        ConjugateGradient.Verify(laplacian, b, z, start, end, size, workspace.Report);
+        ConjugateGradient.Copy(b, z, start, end);
+        LaneSums eliminated = FactorKernels.Eliminate<T>(steps, z);
+        FactorKernels.Gather(z, coreRows, workspace.CoreB);
+        ConjugateGradient.Solve(
+            core, preconditioner, workspace.CoreB, workspace.CoreX, workspace.Gradient, 0, core.NodeCount, eliminated, limits, report, cancel);
+        FactorKernels.Scatter(workspace.CoreX, coreRows, z);
+        FactorKernels.Restore<T>(steps, z);
         PanelKernels.Centre(z, start, end);
+        LaneSums size = PanelKernels.Squares(b, start, end), residual = PanelKernels.Residual(laplacian, b, z, start, end);
+        for (int lane = 0; lane < Panel<T>.Width; lane++)
+            report.Residuals[lane] = size[lane] > 0 ? Math.Sqrt(residual[lane] / size[lane]) : 0;
     }
 
     private static int[] Compose(int[]? rows, int[] order)

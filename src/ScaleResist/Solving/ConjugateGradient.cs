@@ -7,8 +7,13 @@
 //   p = s + b p                         (Direction: reads s, p, writes p)
 //
 // 11 panel passes an iteration beside the gathers of L p. s lives in q's memory, which is free by then.
+//
+// When to stop. A residual small beside b says little: a weak cut's mode may hold most of x and next to nothing of b. What counts is the error in
+// the energy norm, |x - x*|_L^2 = r' L+ r <= r'M r / m with m the least eigenvalue of M L on vectors that sum to zero; the energy x'b = sum a r's
+// comes with the recurrence, and so does m, as the least Ritz value. A column stops when r's <= tolerance^2 (m/2) (energy so far).
 
 using System.Numerics;
+using System.Runtime.InteropServices;
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
 
@@ -17,8 +22,13 @@ namespace ScaleResist.Solving;
 /// <summary>Lockstep conjugate gradient for L x = b on the rows <c>start .. end-1</c>, one component, W columns at a time.</summary>
 public static class ConjugateGradient
 {
+    // The recurrence aims below the tolerance, so that the error recomputed from the true residual can meet it.
+    private const double Aim = 0.64;
+    private const double Safety = 0.5;
+
     /// <summary>
-    /// Solves to |b - Lx| &lt;= tolerance |b| column by column, and recomputes the true residual. Each column of b must sum to zero; x is centred.
+    /// Solves until |x - x*|_L &lt;= tolerance |x*|_L, as far as the preconditioner lets one tell, and checks by the true residual. Each column of b
+    /// must sum to zero; x is not centred.
     /// </summary>
     /// <param name="laplacian">L.</param>
     /// <param name="preconditioner">M.</param>
@@ -27,8 +37,9 @@ public static class ConjugateGradient
     /// <param name="workspace">Three panels of at least n rows.</param>
     /// <param name="start">First row.</param>
     /// <param name="end">One past the last row.</param>
+    /// <param name="known">Energy that x*'b has beside the rows solved for here, by column.</param>
     /// <param name="limits">When to stop.</param>
-    /// <param name="report">Receives iterations, reasons and true residuals.</param>
+    /// <param name="report">Receives iterations, reasons, energy errors and true residuals.</param>
     /// <param name="cancel">Checked once an iteration.</param>
     public static void Solve<T>(
         Laplacian laplacian,
@@ -38,60 +49,30 @@ public static class ConjugateGradient
         GradientWorkspace<T> workspace,
         int start,
         int end,
-        SolveLimits limits,
-        SolveReport report,
-        CancellationToken cancel)
-        where T : unmanaged, INumber<T>
-    {
-        LaneSums size = PanelKernels.Squares(b, start, end);
-        Iterate(laplacian, preconditioner, b, x, workspace, start, end, size, limits, report, cancel);
-        Verify(laplacian, b, x, start, end, size, report);
-        PanelKernels.Centre(x, start, end);
-    }
-
-    /// <summary>Puts |b - Lx| / |b| of every column into the report; <paramref name="size"/> holds |b|^2.</summary>
-    internal static void Verify<T>(
-        Laplacian laplacian, Panel<T> b, Panel<T> x, int start, int end, in LaneSums size, SolveReport report)
-        where T : unmanaged, INumber<T>
-    {
-        LaneSums residual = PanelKernels.Residual(laplacian, b, x, start, end);
-        for (int lane = 0; lane < Panel<T>.Width; lane++)
-            report.Residuals[lane] = size[lane] > 0 ? Math.Sqrt(residual[lane] / size[lane]) : 0;
-    }
-
-    /// <summary>
-    /// The iteration alone, until the recurrence's |r|^2 is below the tolerance squared times <paramref name="size"/>. It aims a fifth below
-    /// the tolerance, so that the true residual can meet it.
-    /// </summary>
-    internal static void Iterate<T>(
-        Laplacian laplacian,
-        IPreconditioner<T> preconditioner,
-        Panel<T> b,
-        Panel<T> x,
-        GradientWorkspace<T> workspace,
-        int start,
-        int end,
-        in LaneSums size,
+        in LaneSums known,
         SolveLimits limits,
         SolveReport report,
         CancellationToken cancel)
         where T : unmanaged, INumber<T>
     {
         Panel<T> r = workspace.R, p = workspace.P, q = workspace.Q;
+        LanczosMatrix lanczos = report.Lanczos;
+        lanczos.Clear();
         Clear(x, start, end);
         Copy(b, r, start, end);
-        LaneSums rr = PanelKernels.Squares(r, start, end);
         LaneSums rs = preconditioner.Apply(r, q, start, end);
         Copy(q, p, start, end);
 
-        LaneSums target = default;
+        double least = preconditioner.LeastEigenvalue;
+        double factor = limits.Tolerance * limits.Tolerance * Aim * Safety;
+        LaneSums first = rs, energy = known;
         int running = 0;
         uint active = 0;
         for (int lane = 0; lane < Panel<T>.Width; lane++)
         {
-            target[lane] = limits.Tolerance * limits.Tolerance * 0.64 * size[lane];
-            report.Reasons[lane] =
-                size[lane] == 0 ? StopReason.ZeroRightHandSide : rr[lane] <= target[lane] ? StopReason.Converged : StopReason.IterationLimit;
+            report.Reasons[lane] = !(rs[lane] > 0)
+                ? StopReason.ZeroRightHandSide
+                : rs[lane] <= factor * least * energy[lane] ? StopReason.Converged : StopReason.IterationLimit;
             if (report.Reasons[lane] == StopReason.IterationLimit)
             {
                 active |= 1u << lane;
@@ -113,8 +94,10 @@ public static class ConjugateGradient
                 a[lane] = rs[lane] / pq[lane];
                 if (!(pq[lane] > 0 && double.IsFinite(a[lane])))
                     Stop(lane, StopReason.Breakdown, ref a);
+                energy[lane] += a[lane] * rs[lane];
             }
-            rr = PanelKernels.Step(x, r, p, q, a, start, end);
+            lanczos.AddSteps(a);
+            PanelKernels.Step(x, r, p, q, a, start, end);
             LaneSums newRs = preconditioner.Apply(r, q, start, end);
             LaneSums beta = default;
             for (int lane = 0; lane < Panel<T>.Width; lane++)
@@ -123,16 +106,30 @@ public static class ConjugateGradient
                     continue;
                 beta[lane] = newRs[lane] / rs[lane];
                 rs[lane] = newRs[lane];
-                if (rr[lane] <= target[lane])
+                if (rs[lane] <= limits.Reduction * first[lane] || IsNear(lane))
                     Stop(lane, StopReason.Converged, ref beta);
                 else if (!(beta[lane] > 0 && double.IsFinite(beta[lane])))
                     Stop(lane, StopReason.Breakdown, ref beta);
             }
+            lanczos.AddDirections(beta);
             if (running > 0)
                 PanelKernels.Direction(p, q, beta, start, end);
         }
 
         report.Iterations = iteration;
+        report.LeastEigenvalue = least;
+        report.WorstReduction = 0;
+        for (int lane = 0; lane < Panel<T>.Width; lane++)
+            report.WorstReduction = Math.Max(report.WorstReduction, first[lane] > 0 ? rs[lane] / first[lane] : 0);
+        Verify(laplacian, preconditioner, b, x, workspace, start, end, energy, report);
+
+        bool IsNear(int lane)
+        {
+            if (rs[lane] > factor * least * energy[lane])
+                return false;
+            least = Math.Min(least, lanczos.LeastRitzValue(lane));
+            return rs[lane] <= factor * least * energy[lane];
+        }
 
         void Stop(int lane, StopReason reason, ref LaneSums factors)
         {
@@ -143,9 +140,34 @@ public static class ConjugateGradient
         }
     }
 
-    internal static unsafe void Clear<T>(Panel<T> panel, int start, int end)
-        where T : unmanaged =>
-        System.Runtime.InteropServices.NativeMemory.Clear(panel.Pointer + ((long)start * Panel<T>.Width), (nuint)(end - start) * 64);
+    // r = b - L x from x itself: its energy error by M, and its size beside b.
+    private static void Verify<T>(
+        Laplacian laplacian,
+        IPreconditioner<T> preconditioner,
+        Panel<T> b,
+        Panel<T> x,
+        GradientWorkspace<T> workspace,
+        int start,
+        int end,
+        in LaneSums energy,
+        SolveReport report)
+        where T : unmanaged, INumber<T>
+    {
+        LaneSums ones = default;
+        for (int lane = 0; lane < Panel<T>.Width; lane++)
+            ones[lane] = 1;
+        LaneSums size = PanelKernels.Squares(b, start, end);
+        PanelKernels.Multiply(laplacian, x, workspace.Q, start, end);
+        Copy(b, workspace.R, start, end);
+        LaneSums rr = PanelKernels.Step(workspace.P, workspace.R, workspace.P, workspace.Q, ones, start, end); // p is free, and doubled in vain
+        LaneSums rs = preconditioner.Apply(workspace.R, workspace.Q, start, end);
+        for (int lane = 0; lane < Panel<T>.Width; lane++)
+        {
+            report.Residuals[lane] = size[lane] > 0 ? Math.Sqrt(rr[lane] / size[lane]) : 0;
+            report.EnergyErrors[lane] =
+                rs[lane] > 0 ? Math.Sqrt(rs[lane] / (Safety * report.LeastEigenvalue * energy[lane])) : rs[lane] == 0 ? 0 : double.NaN;
+        }
+    }
 
     internal static unsafe void Copy<T>(Panel<T> from, Panel<T> to, int start, int end)
         where T : unmanaged
@@ -153,4 +175,8 @@ public static class ConjugateGradient
         long offset = (long)start * Panel<T>.Width;
         Buffer.MemoryCopy(from.Pointer + offset, to.Pointer + offset, (end - start) * 64L, (end - start) * 64L);
     }
+
+    private static unsafe void Clear<T>(Panel<T> panel, int start, int end)
+        where T : unmanaged =>
+        NativeMemory.Clear(panel.Pointer + ((long)start * Panel<T>.Width), (nuint)(end - start) * 64);
 }

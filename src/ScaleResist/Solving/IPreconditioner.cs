@@ -13,6 +13,9 @@ public interface IPreconditioner<T>
     /// <summary>The name that reports show.</summary>
     string Name { get; }
 
+    /// <summary>The least eigenvalue of M L on vectors that sum to zero, as far as it is known before a solve: an upper bound to start from.</summary>
+    double LeastEigenvalue { get; }
+
     /// <summary>Applies M to the rows <c>start .. end-1</c>, which are one component; returns r's by column.</summary>
     LaneSums Apply(Panel<T> r, Panel<T> s, int start, int end);
 }

@@ -8,9 +8,13 @@ namespace ScaleResist.Solving;
 /// <summary>M = D^-1: each row divided by the node's strength.</summary>
 /// <typeparam name="T"><see cref="float"/> or <see cref="double"/>.</typeparam>
 /// <param name="strengths">The diagonal of L.</param>
-public sealed class Jacobi<T>(double[] strengths) : IPreconditioner<T>
+/// <param name="leastEigenvalue">What a trial saw; 1 where there was none.</param>
+public sealed class Jacobi<T>(double[] strengths, double leastEigenvalue = 1) : IPreconditioner<T>
     where T : unmanaged, INumber<T>
 {
+    /// <inheritdoc/>
+    public double LeastEigenvalue => leastEigenvalue;
+
     /// <inheritdoc/>
     public string Name => "jacobi";
 

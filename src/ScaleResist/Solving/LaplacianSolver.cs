@@ -24,7 +24,10 @@ public sealed class SolveStatistics
     /// <summary>The largest true relative residual of a column that was kept.</summary>
     public double LargestResidual { get; private set; }
 
-    internal void Add(int columns, int retried, int iterations, double residual)
+    /// <summary>The largest relative error in the energy norm of a column that was kept.</summary>
+    public double LargestEnergyError { get; private set; }
+
+    internal void Add(int columns, int retried, int iterations, double residual, double energyError)
     {
         lock (gate)
         {
@@ -32,6 +35,7 @@ public sealed class SolveStatistics
             Retried += retried;
             MostIterations = Math.Max(MostIterations, iterations);
             LargestResidual = Math.Max(LargestResidual, residual);
+            LargestEnergyError = Math.Max(LargestEnergyError, energyError);
         }
     }
 }
@@ -77,36 +81,41 @@ public sealed class LaplacianSolver
         where T : unmanaged, INumber<T> =>
         new(solvers.Select(solver => solver.GradientRows).DefaultIfEmpty(1).Max(), solvers.Select(solver => solver.CoreRows).DefaultIfEmpty(1).Max());
 
-    /// <summary>z = L+ b for 16 columns in floats, to a relative residual of <paramref name="tolerance"/> in every component.</summary>
+    /// <summary>
+    /// z = L+ b for 16 probes, whose modes all have the same expected energy, 1: solved until the error of no mode can exceed
+    /// <paramref name="modeError"/> of it, that is to a relative energy-norm error of modeError / sqrt(n-1) in each component.
+    /// </summary>
     /// <param name="b">n x 16; each column sums to zero over every component.</param>
     /// <param name="z">n x 16; each column is centred in every component, and 0 at single nodes.</param>
     /// <param name="columns">How many of the 16 columns are in use.</param>
-    /// <param name="tolerance">The relative residual wanted; floats reach about 1e-5.</param>
+    /// <param name="modeError">The error wanted, relative to a mode's standard deviation.</param>
+    /// <param name="workspace">From <see cref="NewWorkspace"/>.</param>
+    /// <param name="cancel">Checked once an iteration.</param>
+    /// <exception cref="SolveException">A column did not reach the tolerance, in doubles either.</exception>
+    public void SolveProbes(
+        Panel<float> b, Panel<float> z, int columns, double modeError, SolverWorkspace<float> workspace, CancellationToken cancel)
+    {
+        for (int c = 0; c < solvers.Length; c++)
+            SolveInFloats(c, b, z, columns, modeError / Math.Sqrt(network.Components[c].Nodes - 1), workspace, cancel);
+        ClearSingles(z);
+    }
+
+    /// <summary>z = L+ b for 16 columns in floats, to a relative error of <paramref name="tolerance"/> in the energy norm, in every component.</summary>
+    /// <param name="b">n x 16; each column sums to zero over every component.</param>
+    /// <param name="z">n x 16; each column is centred in every component, and 0 at single nodes.</param>
+    /// <param name="columns">How many of the 16 columns are in use.</param>
+    /// <param name="tolerance">The relative error |z - L+b|_L / |L+b|_L wanted.</param>
     /// <param name="workspace">From <see cref="NewWorkspace"/>.</param>
     /// <param name="cancel">Checked once an iteration.</param>
     /// <exception cref="SolveException">A column did not reach the tolerance, in doubles either.</exception>
     public void Solve(Panel<float> b, Panel<float> z, int columns, double tolerance, SolverWorkspace<float> workspace, CancellationToken cancel)
     {
         for (int c = 0; c < solvers.Length; c++)
-        {
-            solvers[c].Solve(b, z, tolerance, workspace, cancel);
-            List<int> failed = [];
-            double residual = 0;
-            for (int column = 0; column < columns; column++)
-            {
-                if (workspace.Report.Residuals[column] <= tolerance)
-                    residual = Math.Max(residual, workspace.Report.Residuals[column]);
-                else
-                    failed.Add(column);
-            }
-            Statistics.Add(columns - failed.Count, 0, workspace.Report.Iterations, residual);
-            if (failed.Count > 0)
-                SolveAgainInDoubles(c, b, z, failed, tolerance, cancel);
-        }
+            SolveInFloats(c, b, z, columns, tolerance, workspace, cancel);
         ClearSingles(z);
     }
 
-    /// <summary>x = L+ b for 8 columns in doubles, to a relative residual of <paramref name="tolerance"/> in every component.</summary>
+    /// <summary>The same for 8 columns in doubles.</summary>
     /// <inheritdoc cref="Solve(Panel{float}, Panel{float}, int, double, SolverWorkspace{float}, CancellationToken)"/>
     public void Solve(Panel<double> b, Panel<double> z, int columns, double tolerance, SolverWorkspace<double> workspace, CancellationToken cancel)
     {
@@ -114,6 +123,27 @@ public sealed class LaplacianSolver
             SolveInDoubles(c, b, z, columns, tolerance, workspace, retried: 0, cancel);
         ClearSingles(z);
     }
+
+    private void SolveInFloats(
+        int number, Panel<float> b, Panel<float> z, int columns, double tolerance, SolverWorkspace<float> workspace, CancellationToken cancel)
+    {
+        solvers[number].Solve(b, z, tolerance, workspace, cancel);
+        SolveReport report = workspace.Report;
+        List<int> failed = [];
+        for (int column = 0; column < columns; column++)
+        {
+            if (IsGood(report, column, tolerance))
+                Statistics.Add(1, 0, report.Iterations, report.Residuals[column], report.EnergyErrors[column]);
+            else
+                failed.Add(column);
+        }
+        if (failed.Count > 0)
+            SolveAgainInDoubles(number, b, z, failed, tolerance, cancel);
+    }
+
+    // The residual of the whole component is a second witness beside the energy error of its core.
+    private static bool IsGood(SolveReport report, int column, double tolerance) =>
+        report.EnergyErrors[column] <= tolerance && report.Residuals[column] <= Math.Max(1e-3, tolerance);
 
     private void ClearSingles<T>(Panel<T> z)
         where T : unmanaged
@@ -161,17 +191,16 @@ public sealed class LaplacianSolver
     {
         solvers[number].Solve(b, z, tolerance, workspace, cancel);
         SolveReport report = workspace.Report;
-        double residual = 0;
         for (int column = 0; column < columns; column++)
         {
-            residual = Math.Max(residual, report.Residuals[column]);
-            if (report.Residuals[column] <= tolerance)
-                continue;
-            throw new SolveException(
-                $"a solve stopped at relative residual {report.Residuals[column]:0.0e+0} where {tolerance:0.0e+0} was wanted "
-                + $"({report.Reasons[column]}, {report.Iterations:N0} iterations, {solvers[number].Choice.Name}, component of "
-                + $"{network.Components[number].Nodes:N0} nodes); ask for fewer digits, or narrow the spread of the conductances");
+            if (!IsGood(report, column, tolerance))
+            {
+                throw new SolveException(
+                    $"a solve stopped at a relative error of {report.EnergyErrors[column]:0.0e+0} and a residual of {report.Residuals[column]:0.0e+0} "
+                    + $"where {tolerance:0.0e+0} was wanted ({report.Reasons[column]}, {report.Iterations:N0} iterations, "
+                    + $"{solvers[number].Choice.Name}, component of {network.Components[number].Nodes:N0} nodes)");
+            }
+            Statistics.Add(1, retried > 0 ? 1 : 0, report.Iterations, report.Residuals[column], report.EnergyErrors[column]);
         }
-        Statistics.Add(columns, retried, report.Iterations, residual);
     }
 }

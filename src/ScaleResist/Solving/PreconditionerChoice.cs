@@ -9,20 +9,21 @@ namespace ScaleResist.Solving;
 /// <param name="Name">As reports show it.</param>
 /// <param name="Reason">One line.</param>
 /// <param name="Factor">The sampled factor, or null where the diagonal is enough.</param>
-internal sealed record PreconditionerChoice(string Name, string Reason, SampledFactor? Factor)
+/// <param name="LeastEigenvalue">Of D^-1 L, as the trial saw it; 1 where there was none.</param>
+internal sealed record PreconditionerChoice(string Name, string Reason, SampledFactor? Factor, double LeastEigenvalue = 1)
 {
-    private const double Tolerance = 1e-4;
     private const int TrialSteps = 12;
     private const double MostJacobiSteps = 30;
     private const int ManySolves = 256; // on grids and roads a second sample costs as much to set up as it saves in some 150 solves;
     private const double PlanarDegree = 4.5; // on denser cores it fills in, and never pays
 
-    /// <summary>For cores too small to matter.</summary>
-    public static PreconditionerChoice Small { get; } = new("jacobi", "small core", null);
+    /// <summary>For a core of one node, where nothing is left to solve.</summary>
+    public static PreconditionerChoice None { get; } = new("elimination", "nothing is left to iterate on", null);
 
     /// <summary>
-    /// Jacobi where twelve steps foretell that thirty are enough: no factor pays then, since each of its 11 or more iterations moves three to
-    /// four times the bytes and its set-up the bytes of some tens of iterations. Else a sampled factor.
+    /// Tries Jacobi on white right-hand sides, in which every mode has the same share, a weak cut's too, until a thousandth of one mode's share
+    /// is left. Where that takes at most thirty steps no factor pays: each of its 11 or more iterations moves three to four times the bytes,
+    /// and its set-up the bytes of some tens of iterations. The trial also shows the least eigenvalue of D^-1 L. Else a sampled factor.
     /// </summary>
     /// <param name="laplacian">L, of which the first <paramref name="n"/> rows are tried.</param>
     /// <param name="n">The number of nodes.</param>
@@ -37,25 +38,29 @@ internal sealed record PreconditionerChoice(string Name, string Reason, SampledF
         using GradientWorkspace<float> workspace = new(n);
         SolveReport report = new();
         FillSigns(b, seed);
-        LaneSums size = PanelKernels.Squares(b, 0, n);
-        ConjugateGradient.Iterate(
-            laplacian, new Jacobi<float>(laplacian.Strengths), b, x, workspace, 0, n, size, new SolveLimits(Tolerance, TrialSteps), report, cancel);
-        double steps = report.Iterations;
-        if (report.Reasons.Any(reason => reason != StopReason.Converged))
-        {
-            LaneSums left = PanelKernels.Squares(workspace.R, 0, n);
-            double worst = 0;
-            for (int lane = 0; lane < Panel<float>.Width; lane++)
-                worst = Math.Max(worst, Math.Sqrt(left[lane] / size[lane]));
-            steps = worst < 1 ? TrialSteps * Math.Log(Tolerance) / Math.Log(worst) : double.PositiveInfinity;
-        }
+        double reduction = 1e-3 / n;
+        double steps = Try(TrialSteps);
+        if (steps > TrialSteps && steps <= MostJacobiSteps)
+            steps = Try((int)Math.Ceiling(1.2 * MostJacobiSteps));
         if (steps <= MostJacobiSteps)
-            return new("jacobi", $"a trial foretells {steps:0} steps", null);
+        {
+            double least = Enumerable.Range(0, Panel<float>.Width).Min(report.Lanczos.LeastRitzValue);
+            return new("jacobi", $"a trial needs {steps:0} steps", null, least);
+        }
         Laplacian own = core();
         int samples = solves >= ManySolves && own.Neighbours.Length < PlanarDegree * n ? 2 : 1;
         return new(
             $"sampled elimination, {samples} sample{(samples == 1 ? "" : "s")} an entry", $"a trial of jacobi foretells {steps:0} steps",
             SampledFactor.Of(own, samples, seed));
+
+        double Try(int most)
+        {
+            ConjugateGradient.Solve(
+                laplacian, new Jacobi<float>(laplacian.Strengths), b, x, workspace, 0, n, default, new SolveLimits(0, most, reduction), report, cancel);
+            return report.Reasons.All(reason => reason == StopReason.Converged)
+                ? report.Iterations
+                : report.Iterations * Math.Log(reduction) / Math.Log(Math.Min(report.WorstReduction, 0.999));
+        }
     }
 
     private static void FillSigns(Panel<float> b, ulong seed)

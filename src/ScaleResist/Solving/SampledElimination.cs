@@ -14,6 +14,9 @@ internal sealed class SampledElimination<T>(SampledFactor factor) : IPreconditio
     private readonly FactorHalf columns = new(factor.ColumnStart, factor.Successors, factor.ColumnShares);
 
     /// <inheritdoc/>
+    public double LeastEigenvalue => 1;
+
+    /// <inheritdoc/>
     public string Name => "sampled elimination";
 
     /// <inheritdoc/>

@@ -32,12 +32,24 @@ public sealed class SolveReport
 
     /// <summary>|b - Lx| / |b| by column, recomputed from x after the last iteration; 0 where b is 0.</summary>
     public double[] Residuals { get; } = new double[16];
+
+    /// <summary>|x - x*|_L / |x*|_L by column, estimated from the true residual: sqrt(r'M r / (m/2) / x'b).</summary>
+    public double[] EnergyErrors { get; } = new double[16];
+
+    /// <summary>The least eigenvalue m of M L as far as it was seen.</summary>
+    public double LeastEigenvalue { get; internal set; }
+
+    /// <summary>The largest share of r'M r that a column has left when it stops.</summary>
+    public double WorstReduction { get; internal set; }
+
+    internal LanczosMatrix Lanczos { get; } = new();
 }
 
 /// <summary>When to stop.</summary>
-/// <param name="Tolerance">The relative residual wanted.</param>
+/// <param name="Tolerance">The relative error in the energy norm that is wanted.</param>
 /// <param name="MostIterations">The most iterations allowed.</param>
-public readonly record struct SolveLimits(double Tolerance, int MostIterations)
+/// <param name="Reduction">Stop also when r'M r has fallen to this share of its first value; 0: never.</param>
+public readonly record struct SolveLimits(double Tolerance, int MostIterations, double Reduction = 0)
 {
     /// <summary>
     /// Limits for a component of n nodes: conjugate gradient ends after n steps in exact arithmetic; rounding may ask for more.

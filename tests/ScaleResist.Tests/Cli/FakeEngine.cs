@@ -164,6 +164,7 @@ internal sealed class FakeEngine : IEstimateEngine
             Columns = 64,
             MostIterations = 123,
             LargestResidual = 9.9e-5,
+            LargestEnergyError = 1e-5,
             Retried = 0,
         },
         Phases = [],

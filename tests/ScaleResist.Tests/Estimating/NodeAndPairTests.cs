@@ -53,7 +53,7 @@ public class NodeAndPairTests
         int covered = 0, counted = 0;
         for (ulong seed = 1; seed <= 25; seed++)
         {
-            MemorySink sink = Run(network, new EstimatePlan { Want = Want.Pairs, Probes = 32, Seed = seed, Tolerance = 1e-5 }, pairs);
+            MemorySink sink = Run(network, new EstimatePlan { Want = Want.Pairs, Probes = 32, Seed = seed, ModeError = 1e-3 }, pairs);
             double[] lower = sink["pairs"].Column<double>("resistance_lower"), upper = sink["pairs"].Column<double>("resistance_upper");
             for (int i = 0; i < pairs.Length; i++)
             {
@@ -74,7 +74,7 @@ public class NodeAndPairTests
         Network network = TestNetworks.Of(Family.SmallWorld, 200, decades: 1);
         Matrix<double> exact = network.DensePseudoInverse();
         const int probes = 400;
-        MemorySink sink = Run(network, new EstimatePlan { Want = Want.Coordinates, Probes = probes, Tolerance = 1e-5 }, null);
+        MemorySink sink = Run(network, new EstimatePlan { Want = Want.Coordinates, Probes = probes, ModeError = 1e-3 }, null);
         float[] r = sink["coordinates"].Column<float>("r");
         double squares = 0;
         int count = 0;

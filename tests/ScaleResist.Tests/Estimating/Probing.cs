@@ -11,7 +11,7 @@ internal sealed class Probing
     private readonly LinkSums sums;
     private readonly double[] plain;
 
-    public Probing(Network network, int probes, ulong seed, double tolerance = 1e-5, double[]? weights = null)
+    public Probing(Network network, int probes, ulong seed, double modeError = 1e-3, double[]? weights = null)
     {
         Network = network;
         Bridges = Bridges.Find(network);
@@ -24,7 +24,7 @@ internal sealed class Probing
         for (int i = 0; i < ProbePanel.CountFor(probes); i++)
         {
             panel.Draw(i, probes, 1);
-            solver.Solve(panel.B, panel.Z, panel.Probes, tolerance, workspace, default);
+            solver.SolveProbes(panel.B, panel.Z, panel.Probes, modeError, workspace, default);
             sums.Add(panel, 1);
             Nodes.Add(panel, 1);
             AddPlain(panel, probes);

@@ -15,7 +15,7 @@ internal static class Solved
         using SolverWorkspace<double> workspace = solver.NewWorkspace<double>();
         b.Row(u)[0] = 1;
         b.Row(v)[0] = -1;
-        solver.Solve(b, z, 1, 1e-12, workspace, default);
+        solver.Solve(b, z, 1, 1e-10, workspace, default);
         return z.Row(u)[0] - z.Row(v)[0];
     }
 
@@ -38,7 +38,7 @@ internal static class Solved
                 for (int j = 0; j < width; j++)
                     b.Row(u)[j] = j < count ? (u == first + j ? 1.0 : 0.0) - (1.0 / n) : 0;
             }
-            solver.Solve(b, z, count, 1e-12, workspace, default);
+            solver.Solve(b, z, count, 1e-10, workspace, default);
             for (int j = 0; j < count; j++)
                 trace += z.Row(first + j)[j];
         }
