@@ -56,7 +56,8 @@ internal static class SummaryText
         }
         if (record.Solver is SolverFacts solver)
         {
-            yield return Entry("solver", $"{Numbers.Count(solver.Eliminated)} nodes eliminated, {solver.Preconditioner}, {Numbers.Many(solver.Columns, "right-hand side")}, at most "
+            yield return Entry("solver", $"{Numbers.Count(solver.Eliminated)} nodes eliminated, {solver.Preconditioner}, "
+                + $"{Numbers.Many(solver.Columns, "right-hand side")}, at most "
                 + $"{Numbers.Many(solver.MostIterations, "iteration")}, residual {Numbers.Value(solver.LargestResidual, 2)}"
                 + (solver.Retried > 0 ? $", {Numbers.Count(solver.Retried)} again in doubles" : ""));
         }
