@@ -15,9 +15,10 @@ public partial class RoomTests
     {
         List<string> wrong = [];
         int read = 0;
-        foreach (string file in Directory.EnumerateFiles(Path.Combine(Source(), "src", "ScaleResist"), "*.cs", SearchOption.AllDirectories))
+        string library = Path.Combine(Source(), "src", "ScaleResist");
+        foreach (string file in Directory.EnumerateFiles(library, "*.cs", SearchOption.AllDirectories))
         {
-            string room = Path.GetRelativePath(Path.Combine(Source(), "src", "ScaleResist"), file).Split(Path.DirectorySeparatorChar)[0];
+            string room = Path.GetRelativePath(library, file).Split(Path.DirectorySeparatorChar)[0];
             if (room is "obj" or "bin")
                 continue;
             Assert.Contains(room, Rooms);
@@ -25,7 +26,8 @@ public partial class RoomTests
             foreach (Match match in Named().Matches(File.ReadAllText(file)))
             {
                 string other = match.Groups[1].Value;
-                bool allowed = Array.IndexOf(Rooms, other) <= Array.IndexOf(Rooms, room) && !(room == "Distances" && other == "Estimating");
+                bool allowed = Array.IndexOf(Rooms, other) <= Array.IndexOf(Rooms, room)
+                    && !(room == "Distances" && other == "Estimating");
                 if (!allowed)
                     wrong.Add($"{Path.GetFileName(file)} of {room} uses {other}");
             }
@@ -37,7 +39,8 @@ public partial class RoomTests
     [Fact]
     public void The_library_knows_neither_Parquet_nor_the_console()
     {
-        string[] references = [.. typeof(ScaleResist.Graphs.Network).Assembly.GetReferencedAssemblies().Select(name => name.Name!)];
+        string[] references =
+            [.. typeof(ScaleResist.Graphs.Network).Assembly.GetReferencedAssemblies().Select(name => name.Name!)];
         Assert.DoesNotContain("Parquet", references);
         Assert.DoesNotContain("System.Console", references);
     }
@@ -45,6 +48,7 @@ public partial class RoomTests
     private static string Source([CallerFilePath] string here = "") =>
         Path.GetFullPath(Path.Combine(Path.GetDirectoryName(here)!, "..", ".."));
 
-    [GeneratedRegex(@"(?:\bScaleResist\.|^\s*using\s+|[^\w.])(Graphs|Kernels|Solving|Estimating|Distances|Runs)(?:\.|;)", RegexOptions.Multiline)]
+    [GeneratedRegex(@"(?:\bScaleResist\.|^\s*using\s+|[^\w.])(Graphs|Kernels|Solving|Estimating|Distances|Runs)(?:\.|;)",
+        RegexOptions.Multiline)]
     private static partial Regex Named();
 }

@@ -69,7 +69,8 @@ internal static class TestNetworks
     public static Matrix<double> DensePseudoInverse(this Network network)
     {
         double share = 1.0 / network.NodeCount;
-        return network.DenseLaplacian().Add(share).Cholesky().Solve(Matrix<double>.Build.DenseIdentity(network.NodeCount)).Subtract(share);
+        Matrix<double> identity = Matrix<double>.Build.DenseIdentity(network.NodeCount);
+        return network.DenseLaplacian().Add(share).Cholesky().Solve(identity).Subtract(share);
     }
 
     /// <summary>R(u,v) from L+.</summary>

@@ -56,8 +56,9 @@ internal static class SummaryText
         }
         if (record.Solver is SolverFacts solver)
         {
-            yield return Entry("solver", $"{Numbers.Count(solver.Eliminated)} nodes eliminated, {solver.Preconditioner}, {Numbers.Many(solver.Columns, "right-hand side")}, at most "
-                + $"{Numbers.Many(solver.MostIterations, "iteration")}, error {Numbers.Value(solver.LargestEnergyError, 2)}, residual {Numbers.Value(solver.LargestResidual, 2)}"
+            yield return Entry("solver", $"{Numbers.Count(solver.Eliminated)} nodes eliminated, {solver.Preconditioner}, "
+                + $"{Numbers.Many(solver.Columns, "right-hand side")}, at most {Numbers.Many(solver.MostIterations, "iteration")}, "
+                + $"error {Numbers.Value(solver.LargestEnergyError, 2)}, residual {Numbers.Value(solver.LargestResidual, 2)}"
                 + (solver.Retried > 0 ? $", {Numbers.Count(solver.Retried)} again in doubles" : ""));
         }
         yield return Entry("time", $"{Numbers.Duration((record.Finished - record.Started).TotalSeconds)}: "

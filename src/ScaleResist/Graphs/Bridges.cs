@@ -25,7 +25,9 @@ public sealed class Bridges
     /// <summary>How many there are.</summary>
     public int Count => links.Length;
 
-    /// <summary>The position in <see cref="Links"/> of the first bridge whose number is not below <paramref name="link"/>.</summary>
+    /// <summary>
+    /// The position in <see cref="Links"/> of the first bridge whose number is not below <paramref name="link"/>.
+    /// </summary>
     public int FirstFrom(long link)
     {
         int at = Array.BinarySearch(links, link);

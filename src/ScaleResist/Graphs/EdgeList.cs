@@ -12,7 +12,9 @@ public sealed record InputFacts
     /// <summary>The path as the user named it.</summary>
     public required string Path { get; init; }
 
-    /// <summary>The form: <c>csv</c>, <c>tsv</c>, <c>text</c>, <c>mtx</c> or <c>parquet</c>, with <c>+gz</c> or <c>+zst</c>.</summary>
+    /// <summary>
+    /// The form: <c>csv</c>, <c>tsv</c>, <c>text</c>, <c>mtx</c> or <c>parquet</c>, with <c>+gz</c> or <c>+zst</c>.
+    /// </summary>
     public required string Form { get; init; }
 
     /// <summary>Bytes on disk.</summary>

@@ -1,5 +1,5 @@
-// Rows to an edge list: what the number in the third column means, and that it is finite and positive.
-// Invariant: no conductance reaches an EdgeList that is not a finite positive number.
+// Rows to an edge list: what the number in the third column means, and that it lies in the range of numbers that can be summed.
+// Invariant: every conductance of an EdgeList lies from 1e-18 to 1e18, so that no sum over parallel links or a node overflows.
 
 using System.Globalization;
 
@@ -8,6 +8,12 @@ namespace ScaleResist.Graphs;
 /// <summary>Reads a network's links.</summary>
 public static class EdgeListReader
 {
+    /// <summary>The smallest weight of a link; as a resistance, the reciprocal of <see cref="LargestWeight"/>.</summary>
+    public const double SmallestWeight = 1e-18;
+
+    /// <summary>The largest weight of a link.</summary>
+    public const double LargestWeight = 1e18;
+
     /// <summary>Reads a text file of links in one pass: <c>.csv .tsv .txt .edges .mtx</c>, each also <c>.gz</c> and
     /// <c>.zst</c>.</summary>
     /// <param name="path">The file; its ending names the form.</param>
@@ -48,6 +54,9 @@ public static class EdgeListReader
     }
 
     /// <summary>Reads all rows of a source that was opened with <see cref="Request"/>.</summary>
+    /// <exception cref="InputException">
+    /// A row cannot be used, or its weight lies outside <see cref="SmallestWeight"/> to <see cref="LargestWeight"/>.
+    /// </exception>
     public static EdgeList Read(IRowSource rows, WeightMeaning weights)
     {
         bool weighted = weights is WeightMeaning.Conductance or WeightMeaning.Resistance;
@@ -72,13 +81,18 @@ public static class EdgeListReader
 
     private static double Conductance(double number, WeightMeaning weights, IRowSource rows)
     {
-        double conductance = weights == WeightMeaning.Resistance ? 1 / number : number;
-        if (double.IsFinite(number) && number > 0 && double.IsFinite(conductance) && conductance > 0)
-            return conductance;
+        bool isResistance = weights == WeightMeaning.Resistance;
+        if (number is >= SmallestWeight and <= LargestWeight)
+            return isResistance ? 1 / number : number;
+        string what = isResistance ? "resistance" : "conductance";
         string shown = number.ToString(CultureInfo.InvariantCulture);
-        throw weights == WeightMeaning.Resistance
-            ? rows.Fault($"the resistance {shown} has no finite positive conductance", "give a finite resistance above zero")
-            : rows.Fault($"the conductance {shown} is not a finite positive number",
-                "give a finite conductance above zero, or drop the link");
+        if (double.IsFinite(number) && number > 0)
+        {
+            throw rows.Fault($"the {what} {shown} is not within 1e-18 to 1e18",
+                $"give all links in a {(number < SmallestWeight ? "smaller" : "larger")} unit");
+        }
+        // A link of conductance zero is no link; one of resistance zero makes its ends one node, which dropping it would not.
+        throw rows.Fault($"the {what} {shown} is not a finite positive number",
+            $"give a finite {what} above zero{(isResistance ? "" : ", or drop the link")}");
     }
 }

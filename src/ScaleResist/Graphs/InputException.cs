@@ -34,7 +34,9 @@ public sealed class InputException : Exception
     /// <summary>How to mend it.</summary>
     public string Mend { get; }
 
-    /// <summary>Shortens a value from a file for use in a message: at most 40 characters, control characters shown as '?'.</summary>
+    /// <summary>
+    /// Shortens a value from a file for use in a message: at most 40 characters, control characters shown as '?'.
+    /// </summary>
     public static string Show(ReadOnlySpan<char> value)
     {
         int length = Math.Min(value.Length, 40);

@@ -18,8 +18,9 @@ public readonly record struct Component(int Start, int End)
 }
 
 /// <summary>
-/// A simple undirected network with n nodes and m links. Node u's neighbours are <c>Neighbours[RowStart[u] .. RowStart[u+1]-1]</c>, ascending;
-/// each link is stored once from each end (2m arcs). Node numbers are internal: outside, only labels are shown.
+/// A simple undirected network with n nodes and m links. Node u's neighbours are
+/// <c>Neighbours[RowStart[u] .. RowStart[u+1]-1]</c>, ascending; each link is stored once from each end (2m arcs). Node numbers
+/// are internal: outside, only labels are shown.
 /// </summary>
 public sealed class Network
 {
@@ -27,7 +28,8 @@ public sealed class Network
     private readonly Laplacian laplacian;
 
     internal Network(
-        NodeLabels labels, long[] rowStart, int[] neighbours, double[]? conductances, Component[] components, CleaningFacts cleaning, InputFacts input)
+        NodeLabels labels, long[] rowStart, int[] neighbours, double[]? conductances, Component[] components,
+        CleaningFacts cleaning, InputFacts input)
     {
         Labels = labels;
         Components = components;

@@ -10,19 +10,21 @@ public static class NetworkBuilder
     /// Cleans and builds. Parallel links add their conductances, self-loops drop out, direction is ignored.
     /// O(n + m) time but for the sort of components.
     /// </summary>
-    /// <exception cref="InputException">No link is left after cleaning, or the network has more arcs than one array holds.</exception>
+    /// <exception cref="InputException">
+    /// No link is left after cleaning, or the network has more arcs than one array holds.
+    /// </exception>
     public static Network Build(EdgeList list)
     {
         if (2 * list.Links.Count > Array.MaxLength)
         {
-            throw new InputException(
-                list.Facts.Path, null, $"{list.Links.Count:N0} rows are more than this version holds ({Array.MaxLength / 2:N0})", "split the network");
+            throw new InputException(list.Facts.Path, null,
+                $"{list.Links.Count:N0} rows are more than this version holds ({Array.MaxLength / 2:N0})", "split the network");
         }
         Rows raw = GatherRows(list, out long selfLoops);
         if (raw.Neighbours.Length == 0)
         {
-            throw new InputException(
-                list.Facts.Path, null, "no link is left after self-loops were dropped", "give at least one link between two different nodes");
+            throw new InputException(list.Facts.Path, null, "no link is left after self-loops were dropped",
+                "give at least one link between two different nodes");
         }
         NodeOrder order = NodeOrder.BreadthFirst(raw.Start, raw.Neighbours, list.Labels);
         Rows ordered = Renumber(raw, order.NodeAt, order.PlaceOf);
@@ -30,7 +32,8 @@ public static class NetworkBuilder
         Rows merged = MergeParallel(ordered);
         CleaningFacts cleaning = new(selfLoops, (before - merged.Neighbours.Length) / 2);
         return new Network(
-            list.Labels.Reordered(order.NodeAt), merged.Start, merged.Neighbours, merged.Conductances, order.Components, cleaning, list.Facts);
+            list.Labels.Reordered(order.NodeAt), merged.Start, merged.Neighbours, merged.Conductances, order.Components, cleaning,
+            list.Facts);
     }
 
     private static Rows GatherRows(EdgeList list, out long selfLoops)

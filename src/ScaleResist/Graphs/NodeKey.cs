@@ -18,7 +18,9 @@ public static class NodeKey
         return x ^ (x >> 31);
     }
 
-    /// <summary>The key of a string label: FNV-1a (Fowler, Noll &amp; Vo) over its UTF-16 units, then the finaliser above.</summary>
+    /// <summary>
+    /// The key of a string label: FNV-1a (Fowler, Noll &amp; Vo) over its UTF-16 units, then the finaliser above.
+    /// </summary>
     public static ulong Of(ReadOnlySpan<char> label)
     {
         ulong hash = 0xCBF29CE484222325;

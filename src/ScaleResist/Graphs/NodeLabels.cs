@@ -37,8 +37,8 @@ public sealed class NodeLabels
         integers is not null ? integers[a].CompareTo(integers[b]) : string.CompareOrdinal(texts![a], texts[b]);
 
     /// <summary>
-    /// The node with this label, or -1. The label is taken as it stands: integers only in canonical form (no '+', no leading zero).
-    /// The first call builds an index of O(n) memory.
+    /// The node with this label, or -1. The label is taken as it stands: integers only in canonical form (no '+', no leading
+    /// zero). The first call builds an index of O(n) memory.
     /// </summary>
     public int IndexOf(ReadOnlySpan<char> label)
     {

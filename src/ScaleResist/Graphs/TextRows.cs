@@ -28,6 +28,11 @@ public sealed class TextRows : IRowSource
         if (ahead.Count == 0)
             throw cells.NoRows();
         (line, string[] first) = ahead.Peek();
+        if (request.Labels == 2 && cells.Separator == "commas" && HasDecimalCommas(first))
+        {
+            throw Fault($"'{InputException.Show(string.Join(',', first))}' has semicolons between cells and commas in numbers",
+                "put commas between cells and points into numbers, as in 1,2,0.5");
+        }
         if (request.Number == NumberColumn.Refused && first.Length > request.Labels)
             throw RowRequest.WeightUnsaid(cells.Path, line);
         if (request is { Number: NumberColumn.Required, Columns: null } && first.Length == request.Labels)
@@ -111,6 +116,13 @@ public sealed class TextRows : IRowSource
             : throw rows.Fault(cell.IsEmpty ? "the number is empty" : $"'{InputException.Show(cell)}' is not a number",
                 "give a number with a decimal point, such as 0.5 or 1e-3");
     }
+
+    // 1;2;0,5 splits at its comma into the cells 1;2;0 and 5, which would pass for two node ids.
+    private static bool HasDecimalCommas(string[] cells) =>
+        cells.Length > 1 && cells[0].Split(';') is { Length: > 2 } parts
+        && IsDigits(parts[^1]) && IsDigits(cells[1].Split(';')[0]);
+
+    private static bool IsDigits(string text) => text.Length > 0 && text.All(char.IsAsciiDigit);
 
     private void CheckCount(int count)
     {

@@ -18,8 +18,12 @@ namespace ScaleResist.Kernels;
 /// <param name="Share">Beside them.</param>
 internal readonly record struct FactorHalf(long[] Start, int[] Index, float[] Share);
 
-/// <summary>A node taken out of a system: neighbours in the panel's numbering (-1 where there are fewer than three), shares c_i / d, 1 / d.</summary>
-internal readonly record struct EliminationStep(int Node, int A, int B, int C, double ShareA, double ShareB, double ShareC, double Inverse);
+/// <summary>
+/// A node taken out of a system: neighbours in the panel's numbering (-1 where there are fewer than three), shares c_i / d,
+/// 1 / d.
+/// </summary>
+internal readonly record struct EliminationStep(
+    int Node, int A, int B, int C, double ShareA, double ShareB, double ShareC, double Inverse);
 
 /// <summary>Kernels of factors and eliminations.</summary>
 internal static unsafe class FactorKernels
@@ -54,7 +58,9 @@ internal static unsafe class FactorKernels
         }
     }
 
-    /// <summary>x_v = y_v inverse_v + sum over successors w of share x_w, in reverse order, x over y; returns r'x by column.</summary>
+    /// <summary>
+    /// x_v = y_v inverse_v + sum over successors w of share x_w, in reverse order, x over y; returns r'x by column.
+    /// </summary>
     public static LaneSums Back<T>(FactorHalf columns, float[] inverse, Panel<T> r, Panel<T> y, int n)
         where T : unmanaged, INumber<T>
     {

@@ -5,7 +5,9 @@ using System.Runtime.InteropServices;
 
 namespace ScaleResist.Kernels;
 
-/// <summary>n x W values, row-major, W = 64 bytes / size of T; column j of all rows is the j-th vector of a block of right-hand sides.</summary>
+/// <summary>
+/// n x W values, row-major, W = 64 bytes / size of T; column j of all rows is the j-th vector of a block of right-hand sides.
+/// </summary>
 /// <typeparam name="T"><see cref="float"/> or <see cref="double"/>.</typeparam>
 public sealed unsafe class Panel<T> : SafeHandle
     where T : unmanaged
@@ -52,7 +54,9 @@ public sealed unsafe class Panel<T> : SafeHandle
     }
 }
 
-/// <summary>Asks Linux for large pages, so that gathers miss the translation cache less. A hint: a refusal costs speed alone.</summary>
+/// <summary>
+/// Asks Linux for large pages, so that gathers miss the translation cache less. A hint: a refusal costs speed alone.
+/// </summary>
 internal static unsafe partial class LargePages
 {
     private const int Advice = 14; // MADV_HUGEPAGE

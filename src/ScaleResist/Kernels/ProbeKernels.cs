@@ -1,5 +1,6 @@
 // Probes: random signs on links, gathered into right-hand sides, and the squares that the estimators add up.
-// Invariant: the sign of a link in a probe depends on (seed, probe, labels of its ends) alone; scalar and vector forms give the same bits.
+// Invariant: the sign of a link in a probe depends on (seed, probe, labels of its ends) alone; scalar and vector forms give the
+// same bits.
 //
 //   FillRow      b_u = sum over links of u of +-sqrt(c): reads the adjacency and the neighbours' keys, writes one row
 //   LinkSquares  reads z and b at both ends (4 rows), writes nothing: two sums go back in registers
@@ -21,8 +22,9 @@ internal static unsafe class ProbeKernels
         1u << 8, 1u << 9, 1u << 10, 1u << 11, 1u << 12, 1u << 13, 1u << 14, 1u << 15);
 
     /// <summary>
-    /// The signs of a link in the 16 probes of a panel, as seen from its end u: bit j is set where q_e = -1 for a link that points away from u.
-    /// Links point from the smaller key to the larger. Philox counter: link key, block of 128 probes, 0; key: the seed.
+    /// The signs of a link in the 16 probes of a panel, as seen from its end u: bit j is set where q_e = -1 for a link that
+    /// points away from u. Links point from the smaller key to the larger. Philox counter: link key, block of 128 probes, 0;
+    /// key: the seed.
     /// </summary>
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
     public static uint Signs(ulong keyU, ulong keyV, ulong seed, int panel)
@@ -91,7 +93,8 @@ internal static unsafe class ProbeKernels
         (sum & used).Store(row);
     }
 
-    private static void FillRowScalar(Network network, ulong[] keys, ulong key, int u, ulong seed, int panel, uint lanes, float* row)
+    private static void FillRowScalar(
+        Network network, ulong[] keys, ulong key, int u, ulong seed, int panel, uint lanes, float* row)
     {
         new Span<float>(row, Width).Clear();
         for (long k = network.RowStart[u]; k < network.RowStart[u + 1]; k++)

@@ -1,5 +1,5 @@
 // The kernels of an iteration on panels, one 64-byte row a node and step. ScalarKernels holds the same arithmetic lane by lane.
-// Invariant: within a column, operations follow the scalar twin's order exactly (no fused multiply-add), so both give the same bits.
+// Invariant: within a column, operations follow the scalar twin's order exactly (no fused multiply-add): both give the same bits.
 //
 // Data movement, in panels of n rows (64 n bytes each), beside the adjacency (8 bytes a node, 4 an arc, 8 more with weights):
 //   Multiply   reads 1 (rows again for each neighbour: from cache where the node order is good), writes 1
@@ -73,7 +73,8 @@ internal static unsafe class VectorKernels
                         Vector512<T> neighbour = Vector512.Load(Row(x, neighbours[k]));
                         around += conductances == null ? neighbour : Broadcast<T>(conductances[k]) * neighbour;
                     }
-                    Vector512<T> residual = Vector512.Load(Row(b, u)) - ((Broadcast<T>(strengths[u]) * Vector512.Load(Row(x, u))) - around);
+                    Vector512<T> residual = Vector512.Load(Row(b, u))
+                        - ((Broadcast<T>(strengths[u]) * Vector512.Load(Row(x, u))) - around);
                     squares += residual * residual;
                 }
                 Add(ref sums, squares);

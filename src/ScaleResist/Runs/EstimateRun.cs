@@ -31,7 +31,8 @@ public static class EstimateRun
     /// <returns>What to tell of the run.</returns>
     /// <exception cref="SolveException">A solve did not reach its tolerance.</exception>
     public static EstimateSummary Execute(
-        Network network, EstimatePlan plan, EstimateInputs inputs, ITableSink sink, IRunObserver observer, CancellationToken cancel)
+        Network network, EstimatePlan plan, EstimateInputs inputs, ITableSink sink, IRunObserver observer,
+        CancellationToken cancel)
     {
         Phases phases = new(observer);
         Dictionary<string, long> rows = [];
@@ -46,9 +47,10 @@ public static class EstimateRun
         List<IndexEntry> index = [];
         if ((plan.Want & ~Want.Components) != 0)
         {
-            solver = phases.Do("preparing", network.LinkCount, "links", () => new LaplacianSolver(network, plan.Probes, plan.Seed, cancel));
-            probed = phases.Do(
-                "solving", plan.Probes, "probes", () => ProbedEstimates.Run(network, bridges, plan, inputs, solver, observer, cancel));
+            solver = phases.Do("preparing", network.LinkCount, "links",
+                () => new LaplacianSolver(network, plan.Probes, plan.Seed, cancel));
+            probed = phases.Do("solving", plan.Probes, "probes",
+                () => ProbedEstimates.Run(network, bridges, plan, inputs, solver, observer, cancel));
             links = WalkLinks(probed);
             if (!links.FosterSums.All(double.IsFinite))
                 throw new SolveException("an estimate is not a finite number");

@@ -18,7 +18,9 @@ public enum ColumnKind
     /// <summary><c>string[]</c>; never null.</summary>
     Text,
 
-    /// <summary><c>float[]</c>, row-major: as many values a row as the batch's array length divided by its count; never null.</summary>
+    /// <summary>
+    /// <c>float[]</c>, row-major: as many values a row as the batch's array length divided by its count; never null.
+    /// </summary>
     FloatList,
 }
 

@@ -29,7 +29,8 @@ internal sealed class LinkRows
 
     /// <summary>Estimates every link, adds up, and writes rows where a writer is given.</summary>
     public static LinkRows Walk(
-        Network network, LinkResistances resistances, ITableWriter? writer, int threads, IRunObserver observer, CancellationToken cancel)
+        Network network, LinkResistances resistances, ITableWriter? writer, int threads, IRunObserver observer,
+        CancellationToken cancel)
     {
         LinkRows rows = new(network);
         LinkResult[] results = new LinkResult[Math.Min(BatchRows, network.LinkCount)];

@@ -1,5 +1,6 @@
 // The nodes, components and coordinates tables.
-// Invariant: closeness ranks count within a component, 1 the closest; rank_lower..rank_upper holds every rank the intervals allow.
+// Invariant: closeness ranks count within a component, 1 the closest; rank_lower..rank_upper holds every rank the intervals
+// allow.
 
 using ScaleResist.Estimating;
 using ScaleResist.Graphs;
@@ -29,7 +30,8 @@ internal static class NodeRows
     }
 
     /// <summary>The nodes table.</summary>
-    public static void WriteNodes(Network network, NodeSums sums, double confidence, ITableWriter writer, CancellationToken cancel)
+    public static void WriteNodes(
+        Network network, NodeSums sums, double confidence, ITableWriter writer, CancellationToken cancel)
     {
         int[] componentOf = network.ComponentOfNodes();
         double[] trace = new double[network.Components.Count];
@@ -69,7 +71,8 @@ internal static class NodeRows
     }
 
     /// <summary>The coordinates table.</summary>
-    public static void WriteCoordinates(Network network, Coordinates coordinates, int probes, ITableWriter writer, CancellationToken cancel)
+    public static void WriteCoordinates(
+        Network network, Coordinates coordinates, int probes, ITableWriter writer, CancellationToken cancel)
     {
         int batch = Math.Max(1, BatchRows * 16 / probes); // about 64 MB of coordinates at a time
         InBatches(network.NodeCount, Math.Min(batch, BatchRows), cancel, (start, count) =>

@@ -33,7 +33,7 @@ internal sealed class ProbedEstimates
         ProbedEstimates sums = new()
         {
             Links = new LinkSums(network, bridges),
-            Nodes = plan.Want.HasFlag(Want.Index) || plan.Want.HasFlag(Want.Nodes) ? new NodeSums(network, inputs.NodeWeights) : null,
+            Nodes = (plan.Want & (Want.Index | Want.Nodes)) != 0 ? new NodeSums(network, inputs.NodeWeights) : null,
             Pairs = plan.Want.HasFlag(Want.Pairs) ? new PairSums(network, bridges, inputs.Pairs ?? []) : null,
             Coordinates = plan.Want.HasFlag(Want.Coordinates) ? new Coordinates(network, plan.Probes) : null,
         };

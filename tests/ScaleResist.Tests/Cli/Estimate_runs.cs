@@ -268,7 +268,7 @@ public sealed class Estimate_runs
     }
 
     [Fact]
-    public void A_lake_that_is_a_file_or_lies_under_one_is_exit_6()
+    public void A_lake_that_cannot_be_made_is_exit_6_before_anything_is_computed()
     {
         using Place place = new();
         foreach (string lake in (string[])[place.Network, Path.Combine(place.Network, "lake"), "/proc/scaleresist-lake"])

@@ -166,6 +166,17 @@ public sealed class EdgeListReaderTests : IDisposable
         Assert.Equal(["1-2", "2-3"], Links.Of(EdgeListReader.Read(path, new ReadOptions { Weights = WeightMeaning.None })));
     }
 
+    [Theory]
+    [InlineData(WeightMeaning.Conductance)]
+    [InlineData(WeightMeaning.Resistance)]
+    public void Weights_at_both_ends_of_the_range_are_read(WeightMeaning weights)
+    {
+        string path = folder.Write("net.csv", "1,2,1e-18\n2,3,1e18\n");
+        EdgeList read = EdgeListReader.Read(path, new ReadOptions { Weights = weights });
+        double[] expected = weights == WeightMeaning.Conductance ? [1e-18, 1e18] : [1e18, 1e-18];
+        Assert.All(expected, (c, i) => Assert.Equal(1, read.Conductances![i] / c, 1e-15));
+    }
+
     [Fact]
     public void Line_numbers_stay_true_over_many_blocks_and_kinds_of_lines()
     {

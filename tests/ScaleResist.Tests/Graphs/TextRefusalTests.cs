@@ -71,13 +71,26 @@ public sealed class TextRefusalTests : IDisposable
     }
 
     [Theory]
-    [InlineData("1e-320")]
-    [InlineData("1e-310")]
-    public void A_resistance_whose_conductance_overflows_is_refused(string value)
+    [InlineData("1e-320", "1E-320", "smaller unit")]
+    [InlineData("9.99e-19", "9.99E-19", "smaller unit")]
+    [InlineData("1.01e18", "1.01E+18", "larger unit")]
+    [InlineData("1e308", "1E+308", "larger unit")]
+    public void A_weight_beyond_1e18_or_its_reciprocal_is_refused(string value, string shown, string mend)
     {
         string path = folder.Write("net.csv", $"1,2,1\n3,4,{value}\n");
-        Check(Refusal(path, WeightMeaning.Resistance), 2, "has no finite positive conductance", "above zero");
-        Assert.Equal(2, EdgeListReader.Read(path, new ReadOptions { Weights = WeightMeaning.Conductance }).Links.Count);
+        Check(Refusal(path, WeightMeaning.Conductance), 2, $"the conductance {shown} is not within 1e-18 to 1e18", mend);
+        Check(Refusal(path, WeightMeaning.Resistance), 2, $"the resistance {shown} is not within 1e-18 to 1e18", mend);
+        Assert.Equal(2, EdgeListReader.Read(path, new ReadOptions { Weights = WeightMeaning.None }).Links.Count);
+    }
+
+    [Theory]
+    [InlineData("net.csv", "1;2;0,5\n2;3;1,5\n", WeightMeaning.Conductance)]
+    [InlineData("net.txt", "1;2;0,5\n2;3;1,5\n", WeightMeaning.Unsaid)]
+    [InlineData("net.txt", "# km\nNord;Süd;0,5;0,7\n", WeightMeaning.None)]
+    public void Decimal_commas_between_semicolons_are_not_taken_for_separators(string name, string text, WeightMeaning weights)
+    {
+        int line = text.StartsWith('#') ? 2 : 1;
+        Check(Refusal(folder.Write(name, text), weights), line, ";0,5", "points into numbers");
     }
 
     [Fact]

@@ -134,6 +134,9 @@ public sealed class ParquetInputTests : IDisposable
         Refused(path, Conductance, path, 1, "the column 'w' is null", "drop the row");
         path = Write("d.parquet", ("a", new[] { 1, 1, 1, 1 }), ("b", new[] { 2, 2, 2, 2 }), ("w", new[] { 1, 1, 1, double.NaN }));
         Refused(path, Conductance, path, 4, "NaN", "above zero");
+        double[] weights = [1, 1e18, 1e-18, 2e18];
+        path = Write("f.parquet", ("a", new[] { 1, 2, 3, 4 }), ("b", new[] { 2, 3, 4, 5 }), ("w", weights));
+        Refused(path, Conductance, path, 4, "the conductance 2E+18 is not within 1e-18 to 1e18", "larger unit");
         path = Write("e.parquet", ("a", new[] { "x", "" }), ("b", new[] { "y", "y" }));
         Refused(path, Plain, path, 2, "has 0 characters", "1 to 1000");
     }

@@ -41,15 +41,18 @@ public class EstimateRunTests
     {
         Network network = TestNetworks.Of(Family.SmallWorld, 300);
         foreach (Want want in new[] { Want.Index, Want.Components, Want.Nodes, Want.Links, Want.Coordinates })
-            Assert.Equal([want.ToString().ToLowerInvariant()], Run(network, new EstimatePlan { Want = want, Probes = 8 }).Tables.Keys);
+        {
+            Assert.Equal([want.ToString().ToLowerInvariant()],
+                Run(network, new EstimatePlan { Want = want, Probes = 8 }).Tables.Keys);
+        }
     }
 
     [Fact]
     public void Components_alone_need_no_solve()
     {
         EstimateSummary summary = EstimateRun.Execute(
-            TestNetworks.Of(Family.Grid, 400), new EstimatePlan { Want = Want.Components }, new EstimateInputs(), new MemorySink(),
-            new SilentObserver(), default);
+            TestNetworks.Of(Family.Grid, 400), new EstimatePlan { Want = Want.Components }, new EstimateInputs(),
+            new MemorySink(), new SilentObserver(), default);
         Assert.Null(summary.Solver);
         Assert.Null(summary.FosterSum);
     }
@@ -97,7 +100,9 @@ public class EstimateRunTests
         }
         for (int c = 0; c < sizes.Length; c++)
             Assert.Equal(kirchhoff[c], sums[c], (1e-6 * kirchhoff[c]) + 1e-12); // the sum over nodes of total resistance is 2 Kf
-        long[] rank = nodes.Column<long>("closeness_rank"), low = nodes.Column<long>("rank_lower"), high = nodes.Column<long>("rank_upper");
+        long[] rank = nodes.Column<long>("closeness_rank");
+        long[] low = nodes.Column<long>("rank_lower");
+        long[] high = nodes.Column<long>("rank_upper");
         for (int u = 0; u < rank.Length; u++)
             Assert.True(low[u] <= rank[u] && rank[u] <= high[u] && low[u] >= 1 && high[u] <= sizes[component[u]]);
         double[] foster = index.Column<double>("foster_sum");
@@ -112,7 +117,8 @@ public class EstimateRunTests
         using CancellationTokenSource cancel = new();
         cancel.Cancel();
         Assert.ThrowsAny<OperationCanceledException>(() => EstimateRun.Execute(
-            TestNetworks.Of(Family.Grid, 400), new EstimatePlan(), new EstimateInputs(), new MemorySink(), new SilentObserver(), cancel.Token));
+            TestNetworks.Of(Family.Grid, 400), new EstimatePlan(), new EstimateInputs(), new MemorySink(), new SilentObserver(),
+            cancel.Token));
     }
 
     private static MemorySink Run(Network network, EstimatePlan plan)
