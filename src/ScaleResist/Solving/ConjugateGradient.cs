@@ -25,6 +25,7 @@ public static class ConjugateGradient
     // The recurrence aims below the tolerance, so that the error recomputed from the true residual can meet it.
     private const double Aim = 0.64;
     private const double Safety = 0.5;
+    private const int MostRestarts = 3;
 
     /// <summary>
     /// Solves until |x - x*|_L &lt;= tolerance |x*|_L, as far as the preconditioner lets one tell, and checks by the true residual. Each column of b
@@ -55,117 +56,158 @@ public static class ConjugateGradient
         CancellationToken cancel)
         where T : unmanaged, INumber<T>
     {
-        Panel<T> r = workspace.R, p = workspace.P, q = workspace.Q;
-        LanczosMatrix lanczos = report.Lanczos;
-        lanczos.Clear();
         Clear(x, start, end);
-        Copy(b, r, start, end);
-        LaneSums rs = preconditioner.Apply(r, q, start, end);
-        Copy(q, p, start, end);
-
-        double least = preconditioner.LeastEigenvalue;
-        double factor = limits.Tolerance * limits.Tolerance * Aim * Safety;
-        LaneSums first = rs, energy = known;
-        int running = 0;
-        uint active = 0;
-        for (int lane = 0; lane < Panel<T>.Width; lane++)
+        Copy(b, workspace.R, start, end);
+        Run<T> run = new(laplacian, preconditioner, x, workspace, start, end, known, limits, report);
+        LaneSums size = PanelKernels.Squares(b, start, end);
+        run.Begin();
+        for (int restart = 0; ; restart++)
         {
-            report.Reasons[lane] = !(rs[lane] > 0)
-                ? StopReason.ZeroRightHandSide
-                : rs[lane] <= factor * least * energy[lane] ? StopReason.Converged : StopReason.IterationLimit;
-            if (report.Reasons[lane] == StopReason.IterationLimit)
-            {
-                active |= 1u << lane;
-                running++;
-            }
+            run.Iterate(cancel);
+            Verify(laplacian, b, x, workspace, start, end, size, report);
+            if (!run.Resume() || restart == MostRestarts)
+                break;
         }
-
-        int iteration = 0;
-        while (running > 0 && iteration < limits.MostIterations)
-        {
-            cancel.ThrowIfCancellationRequested();
-            iteration++;
-            LaneSums pq = PanelKernels.Multiply(laplacian, p, q, start, end);
-            LaneSums a = default;
-            for (int lane = 0; lane < Panel<T>.Width; lane++)
-            {
-                if ((active & (1u << lane)) == 0)
-                    continue;
-                a[lane] = rs[lane] / pq[lane];
-                if (!(pq[lane] > 0 && double.IsFinite(a[lane])))
-                    Stop(lane, StopReason.Breakdown, ref a);
-                energy[lane] += a[lane] * rs[lane];
-            }
-            lanczos.AddSteps(a);
-            PanelKernels.Step(x, r, p, q, a, start, end);
-            LaneSums newRs = preconditioner.Apply(r, q, start, end);
-            LaneSums beta = default;
-            for (int lane = 0; lane < Panel<T>.Width; lane++)
-            {
-                if ((active & (1u << lane)) == 0)
-                    continue;
-                beta[lane] = newRs[lane] / rs[lane];
-                rs[lane] = newRs[lane];
-                if (rs[lane] <= limits.Reduction * first[lane] || IsNear(lane))
-                    Stop(lane, StopReason.Converged, ref beta);
-                else if (!(beta[lane] > 0 && double.IsFinite(beta[lane])))
-                    Stop(lane, StopReason.Breakdown, ref beta);
-            }
-            lanczos.AddDirections(beta);
-            if (running > 0)
-                PanelKernels.Direction(p, q, beta, start, end);
-        }
-
-        report.Iterations = iteration;
-        report.LeastEigenvalue = least;
-        report.WorstReduction = 0;
-        for (int lane = 0; lane < Panel<T>.Width; lane++)
-            report.WorstReduction = Math.Max(report.WorstReduction, first[lane] > 0 ? rs[lane] / first[lane] : 0);
-        Verify(laplacian, preconditioner, b, x, workspace, start, end, energy, report);
-
-        bool IsNear(int lane)
-        {
-            if (rs[lane] > factor * least * energy[lane])
-                return false;
-            least = Math.Min(least, lanczos.LeastRitzValue(lane));
-            return rs[lane] <= factor * least * energy[lane];
-        }
-
-        void Stop(int lane, StopReason reason, ref LaneSums factors)
-        {
-            report.Reasons[lane] = reason;
-            factors[lane] = 0;
-            active &= ~(1u << lane);
-            running--;
-        }
+        report.LeastEigenvalue = run.Least;
     }
 
-    // r = b - L x from x itself: its energy error by M, and its size beside b.
+    // r = b - L x from x itself, and its size beside b.
     private static void Verify<T>(
-        Laplacian laplacian,
-        IPreconditioner<T> preconditioner,
-        Panel<T> b,
-        Panel<T> x,
-        GradientWorkspace<T> workspace,
-        int start,
-        int end,
-        in LaneSums energy,
-        SolveReport report)
+        Laplacian laplacian, Panel<T> b, Panel<T> x, GradientWorkspace<T> workspace, int start, int end, in LaneSums size, SolveReport report)
         where T : unmanaged, INumber<T>
     {
         LaneSums ones = default;
         for (int lane = 0; lane < Panel<T>.Width; lane++)
             ones[lane] = 1;
-        LaneSums size = PanelKernels.Squares(b, start, end);
         PanelKernels.Multiply(laplacian, x, workspace.Q, start, end);
         Copy(b, workspace.R, start, end);
         LaneSums rr = PanelKernels.Step(workspace.P, workspace.R, workspace.P, workspace.Q, ones, start, end); // p is free, and doubled in vain
-        LaneSums rs = preconditioner.Apply(workspace.R, workspace.Q, start, end);
         for (int lane = 0; lane < Panel<T>.Width; lane++)
-        {
             report.Residuals[lane] = size[lane] > 0 ? Math.Sqrt(rr[lane] / size[lane]) : 0;
-            report.EnergyErrors[lane] =
-                rs[lane] > 0 ? Math.Sqrt(rs[lane] / (Safety * report.LeastEigenvalue * energy[lane])) : rs[lane] == 0 ? 0 : double.NaN;
+    }
+
+    // The state of one solve. Where rounding has parted the recurrence from the truth, it begins again from the true residual, x as it is.
+    private sealed class Run<T>(
+        Laplacian laplacian,
+        IPreconditioner<T> preconditioner,
+        Panel<T> x,
+        GradientWorkspace<T> workspace,
+        int start,
+        int end,
+        LaneSums known,
+        SolveLimits limits,
+        SolveReport report)
+        where T : unmanaged, INumber<T>
+    {
+        private readonly double factor = limits.Tolerance * limits.Tolerance * Safety;
+        private LaneSums rs;
+        private LaneSums first;
+        private LaneSums energy = known;
+        private uint active;
+
+        public double Least { get; private set; } = preconditioner.LeastEigenvalue;
+
+        public void Begin()
+        {
+            report.Iterations = 0;
+            report.HalfReduction = 1;
+            rs = preconditioner.Apply(workspace.R, workspace.Q, start, end);
+            first = rs;
+            active = 0;
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                report.Reasons[lane] = rs[lane] > 0 ? StopReason.IterationLimit : StopReason.ZeroRightHandSide;
+                if (rs[lane] > 0 && rs[lane] > Aim * factor * Least * energy[lane])
+                    active |= 1u << lane;
+                else if (rs[lane] > 0)
+                    report.Reasons[lane] = StopReason.Converged;
+            }
+        }
+
+        public void Iterate(CancellationToken cancel)
+        {
+            Panel<T> r = workspace.R, p = workspace.P, q = workspace.Q;
+            report.Lanczos.Clear();
+            Copy(q, p, start, end);
+            while (active != 0 && report.Iterations < limits.MostIterations)
+            {
+                cancel.ThrowIfCancellationRequested();
+                report.Iterations++;
+                LaneSums pq = PanelKernels.Multiply(laplacian, p, q, start, end);
+                LaneSums a = default;
+                for (int lane = 0; lane < Panel<T>.Width; lane++)
+                {
+                    if (!IsActive(lane))
+                        continue;
+                    a[lane] = rs[lane] / pq[lane];
+                    if (!(pq[lane] > 0 && double.IsFinite(a[lane])))
+                        Stop(lane, StopReason.Breakdown, ref a);
+                    energy[lane] += a[lane] * rs[lane];
+                }
+                report.Lanczos.AddSteps(a);
+                PanelKernels.Step(x, r, p, q, a, start, end);
+                LaneSums newRs = preconditioner.Apply(r, q, start, end);
+                LaneSums beta = default;
+                for (int lane = 0; lane < Panel<T>.Width; lane++)
+                {
+                    if (!IsActive(lane))
+                        continue;
+                    beta[lane] = newRs[lane] / rs[lane];
+                    rs[lane] = newRs[lane];
+                    if (rs[lane] <= limits.Reduction * first[lane] || IsNear(lane, Aim))
+                        Stop(lane, StopReason.Converged, ref beta);
+                    else if (!(beta[lane] > 0 && double.IsFinite(beta[lane])))
+                        Stop(lane, StopReason.Breakdown, ref beta);
+                }
+                report.Lanczos.AddDirections(beta);
+                if (report.Iterations <= limits.MostIterations / 2)
+                    report.HalfReduction = WorstReduction();
+                if (active != 0)
+                    PanelKernels.Direction(p, q, beta, start, end);
+            }
+            report.WorstReduction = WorstReduction();
+        }
+
+        // After Verify: judges every column by its true residual; those that fall short go on from it.
+        public bool Resume()
+        {
+            LaneSums before = rs;
+            rs = preconditioner.Apply(workspace.R, workspace.Q, start, end);
+            active = 0;
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                report.EnergyErrors[lane] =
+                    rs[lane] > 0 ? Math.Sqrt(rs[lane] / (Safety * Least * energy[lane])) : rs[lane] == 0 ? 0 : double.NaN;
+                bool drifted = report.Reasons[lane] is StopReason.Converged or StopReason.Breakdown && rs[lane] > before[lane];
+                if (limits.Tolerance > 0 && report.EnergyErrors[lane] > limits.Tolerance && drifted)
+                    active |= 1u << lane;
+            }
+            return active != 0;
+        }
+
+        private bool IsActive(int lane) => (active & (1u << lane)) != 0;
+
+        private bool IsNear(int lane, double share)
+        {
+            if (rs[lane] > share * factor * Least * energy[lane])
+                return false;
+            Least = Math.Min(Least, report.Lanczos.LeastRitzValue(lane));
+            return rs[lane] <= share * factor * Least * energy[lane];
+        }
+
+        private double WorstReduction()
+        {
+            double worst = 0;
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+                worst = Math.Max(worst, first[lane] > 0 ? rs[lane] / first[lane] : 0);
+            return worst;
+        }
+
+        private void Stop(int lane, StopReason reason, ref LaneSums factors)
+        {
+            report.Reasons[lane] = reason;
+            factors[lane] = 0;
+            active &= ~(1u << lane);
         }
     }
 

@@ -42,6 +42,9 @@ public sealed class SolveReport
     /// <summary>The largest share of r'M r that a column has left when it stops.</summary>
     public double WorstReduction { get; internal set; }
 
+    /// <summary>The same after half of the iterations allowed, or at the end where fewer were needed.</summary>
+    public double HalfReduction { get; internal set; }
+
     internal LanczosMatrix Lanczos { get; } = new();
 }
 
