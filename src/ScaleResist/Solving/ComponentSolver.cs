@@ -120,9 +120,16 @@ internal sealed class ComponentSolver
         FactorKernels.Scatter(workspace.CoreX, coreRows, z);
         FactorKernels.Restore<T>(steps, z);
         PanelKernels.Centre(z, start, end);
-        LaneSums size = PanelKernels.Squares(b, start, end), residual = PanelKernels.Residual(laplacian, b, z, start, end);
+        // In exact arithmetic the whole residual is the core's. What is more than that, rounding did on the way through the eliminated nodes.
+        LaneSums size = PanelKernels.Squares(b, start, end), coreSize = PanelKernels.Squares(workspace.CoreB, 0, core.NodeCount);
+        LaneSums residual = PanelKernels.Residual(laplacian, b, z, start, end);
         for (int lane = 0; lane < Panel<T>.Width; lane++)
+        {
+            double ofCore = report.Residuals[lane] * report.Residuals[lane] * coreSize[lane];
+            if (residual[lane] > (4 * ofCore) + (1e-6 * size[lane]))
+                report.EnergyErrors[lane] = double.PositiveInfinity;
             report.Residuals[lane] = size[lane] > 0 ? Math.Sqrt(residual[lane] / size[lane]) : 0;
+        }
     }
 
     private static int[] Compose(int[]? rows, int[] order)

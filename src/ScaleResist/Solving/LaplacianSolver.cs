@@ -132,7 +132,7 @@ public sealed class LaplacianSolver
         List<int> failed = [];
         for (int column = 0; column < columns; column++)
         {
-            if (IsGood(report, column, tolerance))
+            if (report.EnergyErrors[column] <= tolerance)
                 Statistics.Add(1, 0, report.Iterations, report.Residuals[column], report.EnergyErrors[column]);
             else
                 failed.Add(column);
@@ -140,10 +140,6 @@ public sealed class LaplacianSolver
         if (failed.Count > 0)
             SolveAgainInDoubles(number, b, z, failed, tolerance, cancel);
     }
-
-    // The residual of the whole component is a second witness beside the energy error of its core.
-    private static bool IsGood(SolveReport report, int column, double tolerance) =>
-        report.EnergyErrors[column] <= tolerance && report.Residuals[column] <= Math.Max(1e-3, tolerance);
 
     private void ClearSingles<T>(Panel<T> z)
         where T : unmanaged
@@ -193,7 +189,7 @@ public sealed class LaplacianSolver
         SolveReport report = workspace.Report;
         for (int column = 0; column < columns; column++)
         {
-            if (!IsGood(report, column, tolerance))
+            if (!(report.EnergyErrors[column] <= tolerance))
             {
                 throw new SolveException(
                     $"a solve stopped at a relative error of {report.EnergyErrors[column]:0.0e+0} and a residual of {report.Residuals[column]:0.0e+0} "
