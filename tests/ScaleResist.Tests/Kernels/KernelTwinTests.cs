@@ -4,6 +4,7 @@ using System.Numerics;
 using ScaleResist.DataGen.Networks;
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
+using ScaleResist.Solving;
 
 namespace ScaleResist.Tests.Kernels;
 
@@ -65,6 +66,46 @@ public unsafe class KernelTwinTests
                     }
                 }
             }
+        }
+    }
+
+    [Theory]
+    [InlineData(Family.Grid, 400)]
+    [InlineData(Family.Road, 700)]
+    [InlineData(Family.SmallWorld, 300)]
+    public void Factor_and_elimination_kernels_equal_their_scalar_twins(Family family, int nodes)
+    {
+        Network network = TestNetworks.Of(family, nodes, decades: 2);
+        Sweep<float>(network);
+        Sweep<double>(network);
+    }
+
+    private static void Sweep<T>(Network network)
+        where T : unmanaged, INumber<T>
+    {
+        int n = network.NodeCount;
+        SampledFactor factor = SampledFactor.Of(network.Laplacian, 2, 1);
+        EliminationStep[] steps = [.. Elimination.Of(network.Laplacian, network.Components[0]).Steps];
+        using Panel<T> r = Filled<T>(n, 1), y = Filled<T>(n, 2), b = Filled<T>(n, 3);
+        using Panel<T> y2 = Filled<T>(n, 2), b2 = Filled<T>(n, 3);
+        List<LaneSums> vector = Run(y, b), scalar = [];
+        WithScalar(() => scalar = Run(y2, b2));
+        AssertSame(y, y2);
+        AssertSame(b, b2);
+        for (int i = 0; i < vector.Count; i++)
+        {
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+                Assert.Equal(scalar[i][lane], vector[i][lane]);
+        }
+
+        List<LaneSums> Run(Panel<T> y, Panel<T> b)
+        {
+            FactorKernels.Forward(new FactorHalf(factor.RowStart, factor.Predecessors, factor.RowShares), r, y, n);
+            LaneSums products = FactorKernels.Back(
+                new FactorHalf(factor.ColumnStart, factor.Successors, factor.ColumnShares), factor.Inverse, r, y, n);
+            LaneSums energy = FactorKernels.Eliminate<T>(steps, b);
+            FactorKernels.Restore<T>(steps, b);
+            return [products, energy, PanelKernels.Squares(b, 0, n)];
         }
     }
 
