@@ -104,6 +104,7 @@ public static class ConjugateGradient
         private LaneSums first;
         private LaneSums energy = known;
         private uint active;
+        private bool judged;
 
         public double Least { get; private set; } = preconditioner.LeastEigenvalue;
 
@@ -168,20 +169,20 @@ public static class ConjugateGradient
             report.WorstReduction = WorstReduction();
         }
 
-        // After Verify: judges every column by its true residual; those that fall short go on from it.
+        // After Verify: judges every column by its true residual. Those that fall short go on from it, as long as that halves the error.
         public bool Resume()
         {
-            LaneSums before = rs;
             rs = preconditioner.Apply(workspace.R, workspace.Q, start, end);
             active = 0;
             for (int lane = 0; lane < Panel<T>.Width; lane++)
             {
-                report.EnergyErrors[lane] =
-                    rs[lane] > 0 ? Math.Sqrt(rs[lane] / (Safety * Least * energy[lane])) : rs[lane] == 0 ? 0 : double.NaN;
-                bool drifted = report.Reasons[lane] is StopReason.Converged or StopReason.Breakdown && rs[lane] > before[lane];
-                if (limits.Tolerance > 0 && report.EnergyErrors[lane] > limits.Tolerance && drifted)
+                double error = rs[lane] > 0 ? Math.Sqrt(rs[lane] / (Safety * Least * energy[lane])) : rs[lane] == 0 ? 0 : double.NaN;
+                bool worthIt = !judged || error < 0.5 * report.EnergyErrors[lane];
+                report.EnergyErrors[lane] = error;
+                if (error > limits.Tolerance && worthIt && report.Reasons[lane] != StopReason.IterationLimit && limits.Tolerance > 0)
                     active |= 1u << lane;
             }
+            judged = true;
             return active != 0;
         }
 

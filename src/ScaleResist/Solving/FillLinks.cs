@@ -5,11 +5,12 @@ namespace ScaleResist.Solving;
 
 /// <summary>Added links of a changing graph.</summary>
 /// <param name="nodes">The number of nodes.</param>
-internal sealed class FillLinks(int nodes)
+/// <param name="links">Links to make room for at once.</param>
+internal sealed class FillLinks(int nodes, long links = 8)
 {
     private readonly int[] head = Heads(nodes);
     private readonly int[] length = new int[nodes];
-    private Entry[] entries = new Entry[16];
+    private Entry[] entries = new Entry[Math.Min(2 * links, Array.MaxLength)];
     private int count;
 
     /// <summary>The first entry of a node, or -1.</summary>
@@ -28,7 +29,7 @@ internal sealed class FillLinks(int nodes)
     public void Add(int u, int v, double c)
     {
         if (count + 2 > entries.Length)
-            Array.Resize(ref entries, checked(2 * entries.Length));
+            Array.Resize(ref entries, (int)Math.Min(2L * entries.Length, Array.MaxLength));
         Put(u, v, c);
         Put(v, u, c);
     }

@@ -113,7 +113,7 @@ internal sealed class SampledFactor
             this.samples = samples;
             n = laplacian.NodeCount;
             state = NodeKey.Of((long)seed) | 1;
-            fill = new FillLinks(n);
+            fill = new FillLinks(n, samples * (long)laplacian.Neighbours.Length); // what is sampled comes to about twice the links
             gone = new bool[n];
             order = new int[n];
             inverse = new float[n];
