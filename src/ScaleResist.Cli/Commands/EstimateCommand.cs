@@ -68,9 +68,13 @@ internal sealed class EstimateCommand(CliHost host)
     private void Follow(Action<IRunObserver> work)
     {
         if (host.LiveProgress)
+        {
             LiveProgress.Follow(host.Error, work);
-        else
-            work(new PlainProgress(host.Error, host.Time));
+            return;
+        }
+        using PlainProgress progress = new(host.Error, host.Time);
+        work(progress);
+        progress.Release();
     }
 
     private int AnswerFinished(RunFolder folder, EstimateRequest request, JsonObject plan, CancellationToken interrupted)

@@ -1,4 +1,5 @@
 // Progress for logs: one line when a phase first begins, then at most one every few seconds.
+// Invariant: nothing is written in the first second, so that a run refused at once says why in its first line.
 
 using ScaleResist.Cli.Report;
 using ScaleResist.Runs;
@@ -6,16 +7,47 @@ using ScaleResist.Runs;
 namespace ScaleResist.Cli.Progress;
 
 /// <summary>Writes timed lines.</summary>
-internal sealed class PlainProgress(TextWriter to, TimeProvider time) : IRunObserver
+internal sealed class PlainProgress : IRunObserver, IDisposable
 {
+    private static readonly TimeSpan Grace = TimeSpan.FromSeconds(1);
     private static readonly TimeSpan Pause = TimeSpan.FromSeconds(5);
+    private readonly TextWriter to;
+    private readonly TimeProvider time;
     private readonly Lock gate = new();
-    private readonly long started = time.GetTimestamp();
+    private readonly long started;
+    private readonly ITimer timer;
     private readonly HashSet<string> seen = [];
     private long lastLine;
     private string phase = "";
     private double? total;
     private string unit = "";
+    private List<string>? held = [];
+
+    public PlainProgress(TextWriter to, TimeProvider time)
+    {
+        this.to = to;
+        this.time = time;
+        started = time.GetTimestamp();
+        timer = time.CreateTimer(_ => Release(), null, Grace, Timeout.InfiniteTimeSpan);
+    }
+
+    /// <summary>Writes what was held back; called when the first second is over, or when the run has ended well before.</summary>
+    public void Release()
+    {
+        lock (gate)
+        {
+            foreach (string line in held ?? [])
+                to.WriteLine(line);
+            held = null;
+        }
+    }
+
+    public void Dispose()
+    {
+        lock (gate)
+            held = []; // what was still held back belongs to a run that was refused
+        timer.Dispose();
+    }
 
     public void Begin(string phase, double? total, string unit)
     {
@@ -47,6 +79,10 @@ internal sealed class PlainProgress(TextWriter to, TimeProvider time) : IRunObse
     private void Line(string text)
     {
         lastLine = time.GetTimestamp();
-        to.WriteLine(FormattableString.Invariant($"[{time.GetElapsedTime(started).TotalSeconds,8:0.0} s] {text}"));
+        string line = FormattableString.Invariant($"[{time.GetElapsedTime(started).TotalSeconds,8:0.0} s] {text}");
+        if (held is null)
+            to.WriteLine(line);
+        else
+            held.Add(line);
     }
 }
