@@ -1,5 +1,5 @@
-// The yardstick: conjugate gradient for one right-hand side, with the library's elimination, preconditioner and node order, in plain scalar
-// loops on one thread. Invariant: same steps as the library's panels take, so that what differs in time is the panel.
+// The yardstick: conjugate gradient for one right-hand side, with the library's elimination, preconditioner and node order, in plain
+// scalar loops on one thread. Invariant: the steps are those of the library's panels, so what differs in time is the panel.
 
 using System.Numerics;
 using ScaleResist.Graphs;
@@ -44,7 +44,9 @@ internal sealed class OneColumn<T>
 
     public int Iterations { get; private set; }
 
-    /// <summary>z = L+ b up to a constant, to |b - L z| &lt;= tolerance |b| by the recurrence; z is as long as the network has nodes.</summary>
+    /// <summary>
+    /// z = L+ b up to a constant, to |b - L z| &lt;= tolerance |b| by the recurrence; z is as long as the network has nodes.
+    /// </summary>
     public void Solve(T[] b, T[] z, double tolerance)
     {
         double target = tolerance * tolerance * Dot(b, b);

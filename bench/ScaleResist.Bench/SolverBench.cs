@@ -1,7 +1,7 @@
-// One table over network families: set-up apart, then milliseconds a right-hand side at one relative residual: 16 float columns at a time on one
-// thread and two, 8 double columns, and the same method one column at a time.
-// Invariant: every time stands beside the true residual that was reached, |b - L z| / |b| in doubles, the worst of the columns. Times are the
-// least of a few rounds, for every contender alike: other work on the machine only ever adds.
+// One table over network families: set-up apart, then milliseconds a right-hand side at one relative residual: 16 float columns at a
+// time on one thread and two, 8 double columns, and the same method one column at a time.
+// Invariant: every time stands beside the true residual that was reached, |b - L z| / |b| in doubles, the worst of the columns. Times
+// are the least of a few rounds, for every contender alike: other work on the machine only ever adds.
 
 using System.Diagnostics;
 using System.Numerics;
@@ -37,7 +37,8 @@ internal static class SolverBench
     public static void Run(string? only, int solves)
     {
         Console.WriteLine($"{RuntimeInformation.FrameworkDescription}, {Environment.ProcessorCount} cores, set up for {solves} solves. "
-            + $"Times in ms a right-hand side, the least of {Rounds} rounds, in brackets iterations and the true relative residual.\n");
+            + $"Times in ms a right-hand side, the least of {Rounds} rounds, "
+            + "in brackets iterations and the true relative residual.\n");
         Console.WriteLine("| network | nodes | links | core | set-up s | us a link | preconditioner | 16 floats | 2 threads | gain "
             + "| one at a time, float | gain of 16 | one at a time, double | gain of 16 | 8 doubles to 1e-6 |");
         Console.WriteLine(string.Concat(Enumerable.Repeat("| --- ", 15)) + "|");
@@ -67,7 +68,8 @@ internal static class SolverBench
                     builder.Add(u, laplacian.Neighbours[k], laplacian.Conductance(k));
             }
         }
-        return NetworkBuilder.Build(builder.Finish(new InputFacts { Path = "largest", Form = "memory", Sha256 = "", Columns = ["1", "2", "3"] }));
+        return NetworkBuilder.Build(
+            builder.Finish(new InputFacts { Path = "largest", Form = "memory", Sha256 = "", Columns = ["1", "2", "3"] }));
     }
 
     private static void Row(string name, Network network, int solves)
@@ -84,12 +86,14 @@ internal static class SolverBench
         (Timing floats, Timing doubles) = OneAtATime(network, solver, first.B);
         Timing twice = InDoubles(network, solver, first.B);
         Console.WriteLine(
-            $"| {name} | {network.NodeCount:N0} | {network.LinkCount:N0} | {network.NodeCount - solver.Eliminated:N0} | {setUp:0.00} "
-            + $"| {setUp / network.LinkCount * 1e6:0.00} | {solver.Preconditioner} | {one} | {two} | {one.Milliseconds / two.Milliseconds:0.00} "
-            + $"| {floats} | {floats.Milliseconds / one.Milliseconds:0.0} | {doubles} | {doubles.Milliseconds / one.Milliseconds:0.0} | {twice} |");
+            $"| {name} | {network.NodeCount:N0} | {network.LinkCount:N0} | {network.NodeCount - solver.Eliminated:N0} "
+            + $"| {setUp:0.00} | {setUp / network.LinkCount * 1e6:0.00} | {solver.Preconditioner} "
+            + $"| {one} | {two} | {one.Milliseconds / two.Milliseconds:0.00} "
+            + $"| {floats} | {floats.Milliseconds / one.Milliseconds:0.0} "
+            + $"| {doubles} | {doubles.Milliseconds / one.Milliseconds:0.0} | {twice} |");
     }
 
-    // The panels' solver stops by the error in the energy norm: the loosest such tolerance, within a tenth or so, whose residual is small enough.
+    // The panels' solver stops by the error in the energy norm: a tolerance for that whose residual is small enough, but not by much.
     private static double ToleranceFor(double residual, double guess, Func<double, double> reach)
     {
         double loosest = 0, tolerance = guess;
@@ -106,7 +110,8 @@ internal static class SolverBench
     }
 
     // Each panel on its own thread.
-    private static Timing Solve<T>(Network network, LaplacianSolver solver, Panel<T>[] b, Panel<T>[] z, double tolerance, bool check)
+    private static Timing Solve<T>(
+        Network network, LaplacianSolver solver, Panel<T>[] b, Panel<T>[] z, double tolerance, bool check)
         where T : unmanaged, INumber<T>
     {
         SolverWorkspace<T>[] workspaces = [.. b.Select(_ => solver.NewWorkspace<T>())];
@@ -114,11 +119,11 @@ internal static class SolverBench
         long begin = Stopwatch.GetTimestamp();
         Parallel.For(0, b.Length, new ParallelOptions { MaxDegreeOfParallelism = b.Length }, i =>
         {
-            if (b[i] is Panel<float> single)
-                solver.Solve(single, (Panel<float>)(object)z[i], width, tolerance, (SolverWorkspace<float>)(object)workspaces[i], default);
+            object right = b[i], left = z[i], workspace = workspaces[i];
+            if (right is Panel<float> single)
+                solver.Solve(single, (Panel<float>)left, width, tolerance, (SolverWorkspace<float>)workspace, default);
             else
-                solver.Solve(
-                    (Panel<double>)(object)b[i], (Panel<double>)(object)z[i], width, tolerance, (SolverWorkspace<double>)(object)workspaces[i], default);
+                solver.Solve((Panel<double>)right, (Panel<double>)left, width, tolerance, (SolverWorkspace<double>)workspace, default);
         });
         double time = Stopwatch.GetElapsedTime(begin).TotalMilliseconds / (b.Length * width);
         int iterations = workspaces.Max(workspace => workspace.Report.Iterations);
@@ -170,7 +175,8 @@ internal static class SolverBench
     private static Timing Least(Func<int, Timing> measure)
     {
         Timing[] rounds = [.. Enumerable.Range(0, Rounds).Select(measure)];
-        return new(rounds.Min(round => round.Milliseconds), rounds.Max(round => round.Residual), rounds.Max(round => round.Iterations));
+        return new(
+            rounds.Min(round => round.Milliseconds), rounds.Max(round => round.Residual), rounds.Max(round => round.Iterations));
     }
 
     private static TTo[] Column<T, TTo>(Panel<T> panel, int column)
