@@ -14,10 +14,16 @@ switch (args)
     case ["job", string file, string probes] when int.TryParse(probes, out int count):
         WholeJob.Run(file, count);
         return 0;
-    case ["solver", .. string[] rest]:
-        SolverBench.Run(1e-4, rest.FirstOrDefault());
+    case ["solver"]:
+        SolverBench.Run(null, 64);
+        return 0;
+    case ["solver", string family]:
+        SolverBench.Run(family == "all" ? null : family, 64);
+        return 0;
+    case ["solver", string family, string solves] when int.TryParse(solves, out int count):
+        SolverBench.Run(family == "all" ? null : family, count);
         return 0;
     default:
-        Console.Error.WriteLine("say: kernels [BenchmarkDotNet options] | job FILE [PROBES] | solver [FAMILY]");
+        Console.Error.WriteLine("say: kernels [BenchmarkDotNet options] | job FILE [PROBES] | solver [FAMILY | all [SOLVES]]");
         return 2;
 }
