@@ -14,12 +14,14 @@ internal sealed record PreconditionerChoice(string Name, string Reason, SampledF
 {
     private const int TrialSteps = 16;
 
-    // In steps of Jacobi on a panel of 16: what a sampled factor costs to make, and what a solve with it costs. Measured on networks from
-    // 10^5 to 10^7 links; the ratio moves little from one to the next.
+    // In steps of Jacobi on a panel of 16: what a sampled factor costs to make, and what a solve with it costs. Rough by nature: measured
+    // some 140 and 48 on a small world of 10^6 nodes, and some 250 for the factor of a thesaurus with hubs (1.8M links).
     private const double SetUpSteps = 300;
     private const double SolveSteps = 50;
-    private const int ManySolves = 256; // on grids and roads a second sample costs as much to set up as it saves in some 150 solves;
-    private const double PlanarDegree = 4.5; // on denser cores it fills in, and never pays
+    // On a grid of 10^6 nodes a second sample costs as much to set up as it saves in some 120 solves; on a cubic grid it costs 30 s and the
+    // solves become slower.
+    private const int ManySolves = 256;
+    private const double PlanarDegree = 4.5;
 
     /// <summary>For a core of one node, where nothing is left to solve.</summary>
     public static PreconditionerChoice None { get; } = new("elimination", "nothing is left to iterate on", null);
