@@ -14,12 +14,14 @@ public sealed class ProbePanel : IDisposable
 
     private readonly Network network;
     private readonly ulong seed;
+    private readonly List<(int Start, int End)> chunks;
 
     /// <summary>Memory for a panel of the network; <see cref="Draw"/> fills it.</summary>
     public ProbePanel(Network network, ulong seed)
     {
         this.network = network;
         this.seed = seed;
+        chunks = RowChunks.Of(network);
         B = new Panel<float>(network.NodeCount);
         Z = new Panel<float>(network.NodeCount);
     }
@@ -49,7 +51,6 @@ public sealed class ProbePanel : IDisposable
     {
         Number = number;
         Probes = Math.Min(Width, probes - (number * Width));
-        List<(int Start, int End)> chunks = RowChunks.Of(network);
         Parallel.For(0, chunks.Count, new ParallelOptions { MaxDegreeOfParallelism = threads }, i =>
             ProbeKernels.Fill(network, seed, number, Lanes, B, chunks[i].Start, chunks[i].End));
     }

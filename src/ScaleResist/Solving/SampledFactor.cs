@@ -180,7 +180,7 @@ internal sealed class SampledFactor
             return low;
         }
 
-        // Most rows are short: insertion beats the general sort there. Ties keep the order of gathering, so the factor is reproducible.
+        // Most rows are short, and insertion beats the general sort there. Both order ties the same way each time.
         private void SortByWeight(int count)
         {
             for (int i = 0; i < count; i++)
