@@ -1,8 +1,5 @@
-// The grammar of the command line. Values stay text here: what they mean, and every message about it, is ours.
-// System.CommandLine splits the line; unknown names get one line with a suggestion instead of its page of help.
+// From a command line to the verb it asks for. Values stay text here: what they mean, and every message about it, is the verb's affair.
 
-using System.CommandLine;
-using System.CommandLine.Parsing;
 using ScaleResist.Cli.Commands;
 using ScaleResist.Graphs;
 
@@ -12,9 +9,10 @@ namespace ScaleResist.Cli;
 internal static class CommandLine
 {
     private const string Start = "write scaleresist estimate NETWORK --lake DIR, or see scaleresist --help";
+    private static readonly string[] Verbs = ["estimate", "survey"];
 
     // Verbs of the contract that later versions bring.
-    private static readonly string[] LaterVerbs = ["survey", "tune", "impact", "distances", "lookup", "drift", "merge"];
+    private static readonly string[] LaterVerbs = ["tune", "impact", "distances", "lookup", "drift", "merge"];
 
     /// <summary>Runs a command line.</summary>
     /// <returns>The exit code.</returns>
@@ -33,17 +31,14 @@ internal static class CommandLine
             host.Out.Write(HelpText.Program);
             return ExitCode.Done;
         }
-        if (args[0] != "estimate")
+        if (!Verbs.Contains(args[0]))
             return Refuse(host, UnknownVerb(args[0]));
         if (args.Skip(1).Any(a => a is "--help" or "-h" or "-?"))
         {
-            host.Out.Write(HelpText.Estimate);
+            host.Out.Write(args[0] == "survey" ? HelpText.Survey : HelpText.Estimate);
             return ExitCode.Done;
         }
-        EstimateOptions? options = ParseEstimate(args, out string problem);
-        EstimateRequest? request = options is null ? null
-            : EstimateValidation.Validate(options, host.Time.GetUtcNow(), out problem);
-        return request is null ? Refuse(host, problem) : new EstimateCommand(host).Run(request, interrupted);
+        return args[0] == "survey" ? Survey(args[1..], host, interrupted) : Estimate(args[1..], host, interrupted);
     }
 
     /// <summary>Prints the one line of a refused command.</summary>
@@ -53,102 +48,29 @@ internal static class CommandLine
         return ExitCode.CommandLine;
     }
 
+    private static int Estimate(string[] words, CliHost host, CancellationToken interrupted)
+    {
+        EstimateRequest? request = EstimateOptions.Parse(words, out string problem) is EstimateOptions options
+            ? EstimateValidation.Validate(options, host.Time.GetUtcNow(), out problem)
+            : null;
+        return request is null ? Refuse(host, problem) : new EstimateCommand(host).Run(request, interrupted);
+    }
+
+    private static int Survey(string[] words, CliHost host, CancellationToken interrupted)
+    {
+        SurveyRequest? request = SurveyRequest.Parse(words, out string problem);
+        return request is null ? Refuse(host, problem) : new SurveyCommand(host).Run(request, interrupted);
+    }
+
     private static string UnknownVerb(string verb)
     {
         string shown = InputException.Show(verb);
         if (LaterVerbs.Contains(verb))
-            return $"'{shown}' is not in this version; it has: estimate";
+            return $"'{shown}' is not in this version; it has: {string.Join(", ", Verbs)}";
         if (verb.StartsWith('-'))
             return $"unknown option '{shown}' before the verb; {Start}";
-        return Suggestion.For(verb, [.. LaterVerbs, "estimate"]) is string near
+        return Suggestion.For(verb, [.. LaterVerbs, .. Verbs]) is string near
             ? $"unknown verb '{shown}'; did you mean {near}?"
             : $"unknown verb '{shown}'; {Start}";
     }
-
-    private static EstimateOptions? ParseEstimate(string[] args, out string problem)
-    {
-        Argument<string?> network = new("NETWORK") { Arity = ArgumentArity.ZeroOrOne };
-        Dictionary<string, Option<string?>> named = [];
-        Command verb = new("estimate") { network };
-        foreach (string name in (string[])["lake", "run-id", "want", "weights", "columns", "pairs", "node-weights", "terminals",
-            "route", "probes", "target-error", "confidence", "time-budget", "memory-budget", "seed", "threads", "shard"])
-        {
-            named[name] = new Option<string?>("--" + name);
-            verb.Add(named[name]);
-        }
-        Option<bool> restart = new("--restart") { Arity = ArgumentArity.Zero };
-        Option<bool> verbose = new("--verbose") { Arity = ArgumentArity.Zero };
-        verb.Add(restart);
-        verb.Add(verbose);
-
-        // No response files and no bundling: '@x' and '-5' are a file's name and a value.
-        ParseResult parsed = CommandLineParser.Parse(verb, args[1..],
-            new ParserConfiguration { ResponseFileTokenReplacer = null, EnablePosixBundling = false });
-
-        // An unknown option lands where the network or a stray word would.
-        List<string> words = [.. parsed.UnmatchedTokens];
-        if (parsed.GetValue(network) is string first)
-            words.Insert(0, first);
-        if (words.FirstOrDefault(w => w.StartsWith('-') && w.Length > 1) is string unknown)
-        {
-            string name = unknown.Split('=')[0];
-            string hint = Suggestion.For(name, [.. verb.Options.Select(o => o.Name), "--help"]) is string near
-                ? $"did you mean {near}?"
-                : "see scaleresist estimate --help";
-            problem = $"unknown option '{InputException.Show(name)}'; {hint}";
-            return null;
-        }
-        // System.CommandLine takes `--probes --seed` as the value "--seed".
-        if (named.Values.FirstOrDefault(o => parsed.GetResult(o)?.Tokens is [{ Value: string v }, ..]
-            && verb.Options.Any(other => other.Name == v)) is Option<string?> empty)
-        {
-            problem = NeedsValue(empty);
-            return null;
-        }
-        if (words.Count > 1)
-        {
-            problem = $"'{InputException.Show(words[1])}' is one word too many; "
-                + "an estimate takes one network (quote names with spaces)";
-            return null;
-        }
-        if (parsed.Errors.Count > 0)
-        {
-            problem = Problem(parsed.Errors[0]);
-            return null;
-        }
-        problem = "";
-        return new EstimateOptions
-        {
-            Network = parsed.GetValue(network),
-            Lake = Value("lake"),
-            RunId = Value("run-id"),
-            Want = Value("want"),
-            Weights = Value("weights"),
-            Columns = Value("columns"),
-            Pairs = Value("pairs"),
-            NodeWeights = Value("node-weights"),
-            Terminals = Value("terminals"),
-            Route = Value("route"),
-            Probes = Value("probes"),
-            TargetError = Value("target-error"),
-            Confidence = Value("confidence"),
-            TimeBudget = Value("time-budget"),
-            MemoryBudget = Value("memory-budget"),
-            Seed = Value("seed"),
-            Threads = Value("threads"),
-            Shard = Value("shard"),
-            Restart = parsed.GetValue(restart),
-        };
-
-        string? Value(string name) => parsed.GetValue(named[name]);
-    }
-
-    private static string NeedsValue(Option option) => $"{option.Name} needs a value; see scaleresist estimate --help";
-
-    private static string Problem(ParseError error) => error.SymbolResult switch
-    {
-        OptionResult { Tokens.Count: 0 } option => NeedsValue(option.Option),
-        OptionResult { Tokens.Count: > 1 } option => $"{option.Option.Name} is given more than once; give it one value",
-        _ => $"{error.Message.TrimEnd('.')}; see scaleresist estimate --help",
-    };
 }

@@ -9,8 +9,9 @@ internal static class HelpText
         scaleresist: resistance distances, spanning probabilities and the Kirchhoff
         index of large networks, with error bars, as Parquet tables in a data lake.
 
-        Usage: scaleresist estimate NETWORK --lake DIR [options]
-               scaleresist estimate --help
+        Usage: scaleresist estimate NETWORK --lake DIR [options]   the main job
+               scaleresist survey NETWORK [options]                what it would take
+               scaleresist estimate --help, scaleresist survey --help
                scaleresist --version
 
         Example: scaleresist estimate power.tsv --lake lake --probes 64
@@ -34,19 +35,41 @@ internal static class HelpText
           --columns SRC,DST[,W] columns by name or number
           --pairs FILE          pairs of nodes whose resistance is wanted
           --node-weights FILE   weights for the node-weighted Kirchhoff index
-          --route ROUTE         auto or probe
-          --probes K            4 to 4096 random probes (64 unless said); four times
-                                the probes halve the error and take four times as long
+          --route ROUTE         exact, probe, or auto (unless said): exact where a
+                                factor is affordable, else 64 probes
+          --probes K            probe with 4 to 4096 random probes; four times the
+                                probes halve the error and take four times as long
+          --time-budget T       4h, 90m, 30s: refuse a run foreseen to take longer
+          --memory-budget M     16GiB, 500MB: refuse a run foreseen to need more
           --confidence P        of the intervals (0.95 unless said)
           --seed S              of the random signs (1 unless said)
           --threads T           1 to 256 (all cores unless said); results are the same
           --restart             discard what an unfinished run of this id left
           --verbose             show the stack of a fault
-        Not in this version: --route exact, --target-error, --time-budget,
-        --memory-budget, --shard, --terminals.
+        Not in this version: --target-error, --shard, --terminals.
 
         Example: scaleresist estimate roads.csv --lake lake --columns from,to,km
                  --weights resistance --want index,links --probes 64
+
+        """;
+
+    public const string Survey = """
+        scaleresist survey NETWORK [options]
+
+        Reads the network and says what is in it, which route an estimate of
+        index, components, nodes and links would take, and the time and memory
+        it would need. It writes nothing.
+
+          --weights MEANING     none, conductance or resistance: what column 3 means
+          --columns SRC,DST[,W] columns by name or number
+          --probes K            foresee this many probes (64 unless said)
+          --time-budget T       4h, 90m, 30s: what the exact route may take
+          --memory-budget M     16GiB, 500MB: what it may need
+          --threads T           1 to 256 (all cores unless said)
+          --verbose             show the stack of a fault
+
+        Example: scaleresist survey roads.csv --columns from,to,km
+                 --weights resistance
 
         """;
 }

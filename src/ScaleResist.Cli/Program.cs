@@ -4,6 +4,7 @@
 using ScaleResist.Cli.Commands;
 using ScaleResist.Cli.Lake;
 using ScaleResist.Graphs;
+using ScaleResist.Runs;
 
 namespace ScaleResist.Cli;
 
@@ -38,7 +39,7 @@ internal static class Program
     private static Exception Cause(Exception error) => error is AggregateException many
         ? many.Flatten().InnerExceptions.MinBy(e => e switch
         {
-            InputException or LakeException => 0,
+            InputException or LakeException or BudgetException => 0,
             OperationCanceledException => 2,
             _ => 1,
         }) ?? error
@@ -50,6 +51,7 @@ internal static class Program
         {
             InputException => (ExitCode.Input, cause.Message),
             LakeException => (ExitCode.Writing, cause.Message),
+            BudgetException => (ExitCode.Budget, cause.Message),
             OperationCanceledException when interrupted.IsCancellationRequested =>
                 (ExitCode.Interrupted, "interrupted: nothing was published; the same command starts the run again"),
             OutOfMemoryException => (ExitCode.Budget,

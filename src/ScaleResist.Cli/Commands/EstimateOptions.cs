@@ -42,4 +42,38 @@ internal sealed record EstimateOptions
     public string? Shard { get; init; }
 
     public bool Restart { get; init; }
+
+    /// <summary>The options as typed, or null and the problem.</summary>
+    public static EstimateOptions? Parse(string[] words, out string problem)
+    {
+        VerbLine? line = VerbLine.Parse(
+            "estimate", "an estimate",
+            [
+                "lake", "run-id", "want", "weights", "columns", "pairs", "node-weights", "terminals", "route", "probes", "target-error",
+                "confidence", "time-budget", "memory-budget", "seed", "threads", "shard",
+            ],
+            ["restart", "verbose"], words, out problem);
+        return line is null ? null : new EstimateOptions
+        {
+            Network = line.Network,
+            Lake = line["lake"],
+            RunId = line["run-id"],
+            Want = line["want"],
+            Weights = line["weights"],
+            Columns = line["columns"],
+            Pairs = line["pairs"],
+            NodeWeights = line["node-weights"],
+            Terminals = line["terminals"],
+            Route = line["route"],
+            Probes = line["probes"],
+            TargetError = line["target-error"],
+            Confidence = line["confidence"],
+            TimeBudget = line["time-budget"],
+            MemoryBudget = line["memory-budget"],
+            Seed = line["seed"],
+            Threads = line["threads"],
+            Shard = line["shard"],
+            Restart = line.Has("restart"),
+        };
+    }
 }

@@ -53,12 +53,14 @@ internal static class EstimateValidation
         }
         if (WantProblem(options, out Want want) is string wantProblem)
             return wantProblem;
-        if (ColumnsProblem(options, out ReadOptions reading) is string columnsProblem)
+        if (ColumnsProblem(options.Weights, options.Columns, out ReadOptions reading) is string columnsProblem)
             return columnsProblem;
-        if (!TryWhole(options.Probes, EstimatePlan.DefaultProbes, FewestProbes, MostProbes, out int probes))
-            return $"--probes '{InputException.Show(options.Probes)}' is not a number from {FewestProbes} to {MostProbes}";
-        if (!TryWhole(options.Threads, Math.Min(Environment.ProcessorCount, MostThreads), 1, MostThreads, out int threads))
-            return $"--threads '{InputException.Show(options.Threads)}' is not a number from 1 to {MostThreads}";
+        if (RouteProblem(options.Route, options.Probes is not null, out Route route) is string routeProblem)
+            return routeProblem;
+        if (BudgetProblem(options.TimeBudget, options.MemoryBudget, out TimeSpan? time, out long? memory) is string budgetProblem)
+            return budgetProblem;
+        if (CountsProblem(options.Probes, options.Threads, out int probes, out int threads) is string countsProblem)
+            return countsProblem;
         if (!TryFraction(options.Confidence ?? "0.95", out double confidence))
             return $"--confidence '{InputException.Show(options.Confidence)}' is not a number between 0 and 1, such as 0.95";
         if (!ulong.TryParse(options.Seed ?? "1", NumberStyles.None, CultureInfo.InvariantCulture, out ulong seed))
@@ -70,7 +72,17 @@ internal static class EstimateValidation
             Reading = reading,
             Lake = options.Lake,
             RunId = runId,
-            Plan = new EstimatePlan { Want = want, Probes = probes, Confidence = confidence, Seed = seed, Threads = threads },
+            Plan = new EstimatePlan
+            {
+                Want = want,
+                Route = route,
+                Probes = probes,
+                Confidence = confidence,
+                Seed = seed,
+                Threads = threads,
+                TimeBudget = time,
+                MemoryBudget = memory,
+            },
             Pairs = options.Pairs,
             NodeWeights = options.NodeWeights,
             Restart = options.Restart,
@@ -80,15 +92,6 @@ internal static class EstimateValidation
 
     private static string? NotInThisVersion(EstimateOptions options)
     {
-        switch (options.Route)
-        {
-            case null or "auto" or "probe":
-                break;
-            case "exact":
-                return "--route exact is not in this version; use --route probe, with more --probes for smaller errors";
-            default:
-                return $"--route '{InputException.Show(options.Route)}' is unknown; choose auto, exact or probe";
-        }
         if (options.TargetError is string error)
         {
             return TryFraction(error, out _)
@@ -96,24 +99,56 @@ internal static class EstimateValidation
                 : $"--target-error '{InputException.Show(error)}' is not a number between 0 and 1, such as 0.01; "
                     + "and it is not in this version: choose --probes";
         }
-        if (options.TimeBudget is string time)
-        {
-            return Units.TryDuration(time, out _)
-                ? "--time-budget is not in this version; choose --probes (the time grows in proportion)"
-                : $"--time-budget '{InputException.Show(time)}' is not a duration such as 4h, 90m or 30s; "
-                    + "and it is not in this version: choose --probes";
-        }
-        if (options.MemoryBudget is string memory)
-        {
-            return Units.TrySize(memory, out _)
-                ? "--memory-budget is not in this version; leave it out (fewer --threads and tables in --want need less memory)"
-                : $"--memory-budget '{InputException.Show(memory)}' is not a size such as 16GiB or 500MB; "
-                    + "and it is not in this version: leave it out";
-        }
         if (options.Shard is not null)
             return "--shard is not in this version; run the whole estimate on one machine";
         if (options.Terminals is not null)
             return "--terminals is not in this version; leave it out";
+        return null;
+    }
+
+    /// <summary>
+    /// The route of a plan, or what is wrong with it. Who names a number of probes has chosen to probe.
+    /// </summary>
+    public static string? RouteProblem(string? text, bool probesNamed, out Route route)
+    {
+        route = text switch
+        {
+            "exact" => Route.Exact,
+            "probe" => Route.Probe,
+            _ => probesNamed ? Route.Probe : Route.Auto,
+        };
+        return text is null or "auto" or "exact" or "probe"
+            ? null
+            : $"--route '{InputException.Show(text)}' is unknown; choose auto, exact or probe";
+    }
+
+    /// <summary>The budgets of a plan, null where not given, or what is wrong with them.</summary>
+    public static string? BudgetProblem(string? timeText, string? memoryText, out TimeSpan? time, out long? memory)
+    {
+        (time, memory) = (null, null);
+        if (timeText is not null)
+        {
+            if (!Units.TryDuration(timeText, out TimeSpan duration))
+                return $"--time-budget '{InputException.Show(timeText)}' is not a duration such as 4h, 90m or 30s";
+            time = duration;
+        }
+        if (memoryText is not null)
+        {
+            if (!Units.TrySize(memoryText, out long bytes))
+                return $"--memory-budget '{InputException.Show(memoryText)}' is not a size such as 16GiB or 500MB";
+            memory = bytes;
+        }
+        return null;
+    }
+
+    /// <summary>The numbers of probes and threads, or what is wrong with them.</summary>
+    public static string? CountsProblem(string? probesText, string? threadsText, out int probes, out int threads)
+    {
+        threads = 0;
+        if (!TryWhole(probesText, EstimatePlan.DefaultProbes, FewestProbes, MostProbes, out probes))
+            return $"--probes '{InputException.Show(probesText)}' is not a number from {FewestProbes} to {MostProbes}";
+        if (!TryWhole(threadsText, Math.Min(Environment.ProcessorCount, MostThreads), 1, MostThreads, out threads))
+            return $"--threads '{InputException.Show(threadsText)}' is not a number from 1 to {MostThreads}";
         return null;
     }
 
@@ -140,11 +175,12 @@ internal static class EstimateValidation
         return null;
     }
 
-    private static string? ColumnsProblem(EstimateOptions options, out ReadOptions reading)
+    /// <summary>How the network's columns are read, or what is wrong with it.</summary>
+    public static string? ColumnsProblem(string? meaning, string? columnList, out ReadOptions reading)
     {
         reading = new ReadOptions();
         WeightMeaning weights;
-        switch (options.Weights)
+        switch (meaning)
         {
             case null:
                 weights = WeightMeaning.Unsaid;
@@ -159,11 +195,11 @@ internal static class EstimateValidation
                 weights = WeightMeaning.Resistance;
                 break;
             default:
-                return $"--weights '{InputException.Show(options.Weights)}' is unknown; choose none, conductance or resistance";
+                return $"--weights '{InputException.Show(meaning)}' is unknown; choose none, conductance or resistance";
         }
-        string[]? columns = options.Columns?.Split(',', StringSplitOptions.TrimEntries);
+        string[]? columns = columnList?.Split(',', StringSplitOptions.TrimEntries);
         if (columns is not null && (columns.Length is < 2 or > 3 || columns.Any(c => c.Length == 0)))
-            return $"--columns '{InputException.Show(options.Columns)}' is not two or three columns; write SRC,DST or SRC,DST,W";
+            return $"--columns '{InputException.Show(columnList)}' is not two or three columns; write SRC,DST or SRC,DST,W";
         bool weighted = weights is WeightMeaning.Conductance or WeightMeaning.Resistance;
         if (columns?.Length == 3 && !weighted)
         {
@@ -172,7 +208,7 @@ internal static class EstimateValidation
         }
         if (columns?.Length == 2 && weighted)
         {
-            return $"--weights {options.Weights} needs the weight's column too; "
+            return $"--weights {meaning} needs the weight's column too; "
                 + $"write --columns {InputException.Show(columns[0])},{InputException.Show(columns[1])},W";
         }
         reading = new ReadOptions { Weights = weights, Columns = columns };

@@ -18,10 +18,12 @@ internal static class RunPlan
     {
         ["verb"] = "estimate",
         ["want"] = string.Join(',', EstimateValidation.NamesOf(request.Plan.Want)),
-        ["route"] = "probe",
+        ["route"] = request.Plan.Route.ToString().ToLowerInvariant(),
         ["probes"] = request.Plan.Probes,
         ["confidence"] = request.Plan.Confidence,
         ["seed"] = request.Plan.Seed,
+        ["time_budget"] = request.Plan.TimeBudget?.TotalSeconds,
+        ["memory_budget"] = request.Plan.MemoryBudget,
         ["mode_error"] = request.Plan.EffectiveModeError,
         // Without --weights a third column is refused, so a run that finished had none.
         ["weights"] = request.Reading.Weights is WeightMeaning.Unsaid

@@ -1,4 +1,4 @@
-// From sums to rows: walks links in order and hands out each one's resistance, bridges exactly, the others by likelihood.
+// From sums to rows: walks links in order and hands out each one's resistance, by its conductance, a factor or likelihood.
 
 using ScaleResist.Graphs;
 
@@ -9,11 +9,13 @@ namespace ScaleResist.Estimating;
 /// <param name="Target">Internal node, the larger.</param>
 /// <param name="Conductance">c.</param>
 /// <param name="Resistance">R with its error.</param>
+/// <param name="Method">How R was found.</param>
 /// <param name="NodesCutOff">For a bridge, the nodes on the smaller side; else 0.</param>
-public readonly record struct LinkResult(int Source, int Target, double Conductance, Estimate Resistance, int NodesCutOff)
+public readonly record struct LinkResult(
+    int Source, int Target, double Conductance, Estimate Resistance, ResistanceMethod Method, int NodesCutOff)
 {
     /// <summary>Whether the link is a bridge; R = 1/c then, exactly.</summary>
-    public bool IsBridge => NodesCutOff > 0;
+    public bool IsBridge => Method == ResistanceMethod.Bridge;
 
     /// <summary>p = c R: the probability that a random spanning tree, drawn in proportion to its product of conductances, uses the link.</summary>
     public double SpanningProbability => Math.Min(1, Conductance * Resistance.Value);
@@ -24,12 +26,20 @@ public sealed class LinkResistances
 {
     private readonly Network network;
     private readonly Bridges bridges;
-    private readonly LinkSums sums;
+    private readonly LinkSums? sums;
+    private readonly ExactResults? exact;
     private readonly double quantile;
 
     /// <summary>The links of a network whose panels are all in.</summary>
     public LinkResistances(Network network, Bridges bridges, LinkSums sums, double confidence)
+        : this(network, bridges, sums, null, confidence)
     {
+    }
+
+    /// <summary>The links of a network, exact ones by their factor, the others by their panels.</summary>
+    internal LinkResistances(Network network, Bridges bridges, LinkSums? sums, ExactResults? exact, double confidence)
+    {
+        this.exact = exact;
         this.network = network;
         this.bridges = bridges;
         this.sums = sums;
@@ -49,19 +59,20 @@ public sealed class LinkResistances
             while (network.LinkStart[u + 1] <= link)
                 u++;
             long arc = network.FirstLaterArc(u) + (link - network.LinkStart[u]);
-            int cutOff = 0;
-            Estimate resistance;
+            int v = network.Neighbours[arc];
             double c = network.Conductance(arc);
             if (nextBridge < bridges.Count && bridges.Links[nextBridge] == link)
             {
-                cutOff = bridges.NodesCutOff[nextBridge++];
-                resistance = Estimating.Estimate.Exact(1 / c);
+                into[i] = new LinkResult(u, v, c, Estimate.Exact(1 / c), ResistanceMethod.Bridge, bridges.NodesCutOff[nextBridge++]);
+            }
+            else if (exact is not null && exact.Holds(u, v))
+            {
+                into[i] = new LinkResult(u, v, c, Estimate.Exact(exact.Resistance(u, v)), ResistanceMethod.Exact, 0);
             }
             else
             {
-                resistance = sums.Estimate(link, arc, u, quantile);
+                into[i] = new LinkResult(u, v, c, sums!.Estimate(link, arc, u, quantile), ResistanceMethod.Probe, 0);
             }
-            into[i] = new LinkResult(u, network.Neighbours[arc], c, resistance, cutOff);
         }
     }
 

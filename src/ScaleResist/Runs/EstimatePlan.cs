@@ -28,6 +28,19 @@ public enum Want
     Coordinates = 32,
 }
 
+/// <summary>How resistances are found.</summary>
+public enum Route
+{
+    /// <summary>Exactly where a factor is affordable, block by block, else by probes.</summary>
+    Auto,
+
+    /// <summary>Exactly, or not at all.</summary>
+    Exact,
+
+    /// <summary>By probes, but for bridges.</summary>
+    Probe,
+}
+
 /// <summary>What an estimate run computes.</summary>
 public sealed record EstimatePlan
 {
@@ -37,7 +50,10 @@ public sealed record EstimatePlan
     /// <summary>The tables wanted.</summary>
     public Want Want { get; init; } = Want.Index | Want.Components | Want.Nodes | Want.Links;
 
-    /// <summary>The number of probes K, at least 4.</summary>
+    /// <summary>How.</summary>
+    public Route Route { get; init; } = Route.Auto;
+
+    /// <summary>The number of probes K, at least 4, where anything is probed.</summary>
     public int Probes { get; init; } = DefaultProbes;
 
     /// <summary>The confidence of the intervals, in (0, 1).</summary>
@@ -48,6 +64,12 @@ public sealed record EstimatePlan
 
     /// <summary>Threads to use; results do not depend on it.</summary>
     public int Threads { get; init; } = Environment.ProcessorCount;
+
+    /// <summary>Time that the run may be foreseen to take; null: as long as it takes.</summary>
+    public TimeSpan? TimeBudget { get; init; }
+
+    /// <summary>Memory in bytes that the run may be foreseen to need; null: what the machine has.</summary>
+    public long? MemoryBudget { get; init; }
 
     /// <summary>
     /// The solver error allowed in any mode of z, relative to the mode's standard deviation; null: a twentieth of the relative statistical

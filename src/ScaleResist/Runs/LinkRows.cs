@@ -123,7 +123,7 @@ internal sealed class LinkRows
                 spanning[row] = link.SpanningProbability;
                 isBridge[row] = link.IsBridge;
                 cutOff[row] = link.IsBridge ? link.NodesCutOff : null;
-                method[row] = link.IsBridge ? "bridge" : "probe";
+                method[row] = link.Method.Name();
                 row++;
             }
         }

@@ -1,0 +1,127 @@
+// What a factor of the exact part says: resistances of its links, and what each of its blocks adds to indices and diagonals.
+//
+// A block B is grounded at its head, M is the inverse of its grounded Laplacian, w the weights that hang off its nodes, W their sum:
+//     R(u,v) = M_uu + M_vv - 2 M_uv
+//     Kf_w(B) = sum of w_u w_v R(u,v) over pairs = W sum w_u M_uu - w'M w
+//     sum_v w_v R(u,v) = W M_uu + sum w_v M_vv - 2 (M w)_u
+//     log of the number of spanning trees = log det (Kirchhoff 1847), a component's the sum over its blocks
+// The entries of M that this needs lie on the pattern of the factor (Takahashi, Fagan & Chin 1973); M w comes from one panel solve for all blocks.
+
+using ScaleResist.Graphs;
+using ScaleResist.Kernels;
+using ScaleResist.Solving;
+
+namespace ScaleResist.Estimating;
+
+/// <summary>Exact results on the blocks of an <see cref="ExactPart"/>.</summary>
+internal sealed class ExactResults
+{
+    private readonly ExactPart part;
+    private readonly Network network;
+    private readonly CholeskyFactor factor;
+    private readonly SelectedInverse inverse;
+
+    private ExactResults(ExactPart part, CholeskyFactor factor, SelectedInverse inverse)
+    {
+        this.part = part;
+        this.factor = factor;
+        this.inverse = inverse;
+        network = part.Blocks.Network;
+        ExactBlocks = new ExactBlocks(part.Blocks);
+        LogSpanningTrees = new double[network.Components.Count];
+    }
+
+    /// <summary>Indices and diagonals of the blocks.</summary>
+    public ExactBlocks ExactBlocks { get; }
+
+    /// <summary>By component, the log of the (weighted) number of spanning trees; NaN where a block is not exact.</summary>
+    public double[] LogSpanningTrees { get; }
+
+    /// <summary>Factorises, inverts and solves.</summary>
+    /// <param name="part">The exact blocks.</param>
+    /// <param name="symbolic">The analysis of the part's Laplacian.</param>
+    /// <param name="laplacian">The part's Laplacian.</param>
+    /// <param name="weights">Node weights of the network, or null.</param>
+    /// <param name="threads">Threads; the results do not depend on them.</param>
+    /// <param name="cancel">Ends the work.</param>
+    public static ExactResults Of(
+        ExactPart part, SymbolicCholesky symbolic, Laplacian laplacian, double[]? weights, int threads, CancellationToken cancel)
+    {
+        CholeskyFactor factor = CholeskyFactor.Of(symbolic, laplacian, threads, cancel);
+        SelectedInverse inverse = factor.Invert(threads, cancel);
+        ExactResults results = new(part, factor, inverse);
+        results.AddBlocks(weights);
+        results.AddLogarithms();
+        return results;
+    }
+
+    /// <summary>Whether a link is in the exact part.</summary>
+    public bool Holds(int u, int v) => !part.Probed[part.Blocks.BlockOf(u, v)];
+
+    /// <summary>R of a link of the part.</summary>
+    public double Resistance(int u, int v)
+    {
+        int block = part.Blocks.BlockOf(u, v);
+        int one = part.RowIn(block, u), other = part.RowIn(block, v);
+        double sum = inverse.Diagonal(one) + inverse.Diagonal(other);
+        return one == part.Ground || other == part.Ground ? sum : sum - (2 * inverse.Between(one, other));
+    }
+
+    private void AddBlocks(double[]? weights)
+    {
+        Blocks blocks = part.Blocks;
+        HangingWeights[] hanging =
+        [
+            HangingWeights.Of(blocks, null), HangingWeights.Of(blocks, network.Strengths),
+            .. weights is null ? Array.Empty<HangingWeights>() : [HangingWeights.Of(blocks, weights)],
+        ];
+        using Panel<double> z = new(part.Ground + 1);
+        for (int u = 0; u < network.NodeCount; u++)
+        {
+            for (int j = 0; j < hanging.Length && part.RowOf(u) >= 0; j++)
+                z.Row(part.RowOf(u))[j] = hanging[j].OfMember(u);
+        }
+        factor.Solve(z);
+        double[] index = new double[3], spread = new double[3];
+        List<double> diagonal = [];
+        for (int c = 0; c < network.Components.Count; c++)
+        {
+            (int first, int end) = blocks.OfComponent(c);
+            for (int b = first; b < end; b++)
+            {
+                if (part.Probed[b] || blocks.IsBridge(b))
+                    continue;
+                Array.Clear(index);
+                Array.Clear(spread);
+                foreach (int v in blocks.Members(b))
+                {
+                    int row = part.RowOf(v);
+                    for (int j = 0; j < hanging.Length; j++)
+                    {
+                        double w = hanging[j].OfMember(v);
+                        spread[j] += w * inverse.Diagonal(row);
+                        index[j] -= w * z.Row(row)[j];
+                    }
+                }
+                for (int j = 0; j < hanging.Length; j++)
+                    index[j] += hanging[j].Total(c) * spread[j];
+                double n = network.Components[c].Nodes, mean = index[0] / (n * n);
+                diagonal.Clear();
+                foreach (int v in blocks.Members(b))
+                    diagonal.Add((((n * inverse.Diagonal(part.RowOf(v))) + spread[0] - (2 * z.Row(part.RowOf(v))[0])) / n) - mean);
+                ExactBlocks.Set(b, (index[0], index[1], index[2]), diagonal.ToArray(), (spread[0] / n) - mean);
+            }
+        }
+    }
+
+    private void AddLogarithms()
+    {
+        for (int c = 0; c < network.Components.Count; c++)
+        {
+            double sum = part.HoldsComponent(c) ? 0 : double.NaN;
+            for (int u = network.Components[c].Start; u < network.Components[c].End && !double.IsNaN(sum); u++)
+                sum += part.RowOf(u) >= 0 ? factor.LogPivot(part.RowOf(u)) : 0;
+            LogSpanningTrees[c] = sum;
+        }
+    }
+}
