@@ -1,8 +1,14 @@
-// What all probes say of nodes and of whole components: squares by node, and one independent sample of each index a probe.
+// What all probes say of nodes and of whole components, block by block: one independent sample of each index a probe.
 //
-// With x_u = z_u - k b_u / d_u, k = 1 - 1/n (Cov(z_u, b_u) = k, Var b_u = d_u):   l_u = L+_uu = k^2 / d_u + E x_u^2.
-// So each probe gives an unbiased sample of the weighted traces
-//     tr L+ = k^2 sum 1/d_u + sum x_u^2,      sum w_u l_u = k^2 sum w_u / d_u + sum w_u x_u^2.
+// Resistances add up along the blocks between two nodes. With w_B(u) the weight that hangs off u when the links of block B are gone
+// (HangingWeights) and W the component's total,
+//     sum of w_u w_v R(u,v) over pairs of a component = sum over its blocks of Kf_w(B),   Kf_w(B) = the same sum over pairs of B, weights w_B.
+// A unit current between the ends of a link never leaves the link's block, so z on B is L_B+ b_B but for a constant. Take it as
+// y = z - sum w_B z / W: then Cov(y) = P L_B+ P', Cov(y, b_B) = P = I - 1 w_B'/W, and with d, b those of the block, k_u = 1 - w_B(u)/W,
+//     x_u = y_u - k_u b_u / d_u:     E y_u^2 = k_u^2 / d_u + E x_u^2,     Kf_w(B) = W sum w_B(u) E y_u^2.
+// On a bridge x = 0: its part s (W - s) / c needs no probe, and the noise of weak bridges stays out of every sample.
+// With w = 1 the diagonal of L+ is l_u = sum over blocks of E y^2 at the node of the block nearest to u, for n l_u + Kf/n is the sum
+// of all resistances from u.
 
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
@@ -31,31 +37,43 @@ internal struct RunningMoments
     }
 }
 
-/// <summary>Squares by node and traces by component, panel by panel.</summary>
-public sealed class NodeSums
+/// <summary>Diagonals by node and indices by component, panel by panel.</summary>
+public sealed unsafe class NodeSums
 {
-    private const int RowsPerChunk = 1 << 13;
+    private const int MembersPerChunk = 1 << 12;
+    private readonly Blocks blocks;
     private readonly Network network;
-    private readonly double[]? weights;
-    private readonly double[] squares;
-    private readonly RunningMoments[] plain;
-    private readonly RunningMoments[] byStrength;
-    private readonly RunningMoments[] byWeight;
-    private readonly int largeComponents;
+    private readonly ExactBlocks? exact;
+    private readonly BlockRows rows;
+    private readonly Samples plain;
+    private readonly Samples byStrength;
+    private readonly Samples? byWeight;
+    private readonly double[] squares; // of members, summed over probes
+    private readonly double[] headSquares; // of heads, by block
+    private readonly List<Chunk>[] chunks; // of the components that several threads share; of the others together
+    private readonly int sharedComponents;
 
     /// <summary>Empty sums.</summary>
-    /// <param name="network">The network.</param>
+    /// <param name="blocks">Of the network.</param>
     /// <param name="weights">Node weights in internal order, or null.</param>
-    public NodeSums(Network network, double[]? weights)
+    /// <param name="exact">Blocks that need no probes, or null.</param>
+    public NodeSums(Blocks blocks, double[]? weights, ExactBlocks? exact = null)
     {
-        this.network = network;
-        this.weights = weights;
+        this.blocks = blocks;
+        this.exact = exact;
+        network = blocks.Network;
+        rows = new BlockRows(blocks);
+        plain = NewSamples(HangingWeights.Of(blocks, null), known => known.Plain);
+        byStrength = NewSamples(HangingWeights.Of(blocks, network.Strengths), known => known.ByStrength);
+        byWeight = weights is null ? null : NewSamples(HangingWeights.Of(blocks, weights), known => known.ByWeight);
         squares = new double[network.NodeCount];
-        plain = new RunningMoments[network.Components.Count];
-        byStrength = new RunningMoments[network.Components.Count];
-        byWeight = new RunningMoments[network.Components.Count];
-        while (largeComponents < network.Components.Count && network.Components[largeComponents].Nodes > RowsPerChunk)
-            largeComponents++;
+        headSquares = new double[blocks.Count];
+        while (sharedComponents < network.Components.Count && network.Components[sharedComponents].Nodes > MembersPerChunk)
+            sharedComponents++;
+        chunks = new List<Chunk>[sharedComponents + 1];
+        for (int c = 0; c < sharedComponents; c++)
+            chunks[c] = ChunksOf(c);
+        chunks[sharedComponents] = ChunksOfSmallComponents();
     }
 
     /// <summary>Probes added so far.</summary>
@@ -65,82 +83,313 @@ public sealed class NodeSums
     public void Add(ProbePanel panel, int threads)
     {
         ParallelOptions options = new() { MaxDegreeOfParallelism = threads };
-        for (int c = 0; c < largeComponents; c++)
+        for (int c = 0; c < sharedComponents; c++)
         {
-            Component component = network.Components[c];
-            NodeSquareSums[] parts = new NodeSquareSums[(component.Nodes + RowsPerChunk - 1) / RowsPerChunk];
-            Parallel.For(0, parts.Length, options, i =>
+            List<Chunk> parts = chunks[c];
+            NodeSquareSums[] sums = new NodeSquareSums[parts.Count];
+            // A block cut in pieces is centred before its squares are taken; whole blocks come after, in one step.
+            for (int i = 0; i < parts.Count; i += parts[i].Pieces)
             {
-                int start = component.Start + (i * RowsPerChunk);
-                parts[i] = Squares(panel, component, start, Math.Min(component.End, start + RowsPerChunk));
+                if (parts[i].Pieces > 1)
+                    AddInPieces(panel, c, parts, i, sums, options);
+            }
+            Parallel.For(0, parts.Count, options, i =>
+            {
+                if (parts[i].Pieces == 1)
+                    AddBlocks(panel, c, parts[i].First, parts[i].End, new Scratch(), ref sums[i]);
             });
             NodeSquareSums total = default;
-            foreach (NodeSquareSums part in parts)
-            {
-                for (int lane = 0; lane < ProbePanel.Width; lane++)
-                {
-                    total.Plain[lane] += part.Plain[lane];
-                    total.ByStrength[lane] += part.ByStrength[lane];
-                    total.ByWeight[lane] += part.ByWeight[lane];
-                }
-            }
+            foreach (ref readonly NodeSquareSums sum in sums.AsSpan())
+                total.Add(sum);
             AddSamples(c, panel.Probes, total);
         }
-        for (int c = largeComponents; c < network.Components.Count && network.Components[c].Nodes > 1; c++)
-            AddSamples(c, panel.Probes, Squares(panel, network.Components[c], network.Components[c].Start, network.Components[c].End));
+        List<Chunk> small = chunks[sharedComponents];
+        Parallel.For(0, small.Count, options, i =>
+        {
+            Scratch scratch = new();
+            for (int c = small[i].First; c < small[i].End; c++)
+            {
+                NodeSquareSums total = default;
+                (int first, int end) = blocks.OfComponent(c);
+                AddBlocks(panel, c, first, end, scratch, ref total);
+                AddSamples(c, panel.Probes, total);
+            }
+        });
         Probes += panel.Probes;
     }
 
-    private NodeSquareSums Squares(ProbePanel panel, Component component, int start, int end) =>
-        NodeKernels.Squares(panel.Z, panel.B, 1 - (1.0 / component.Nodes), network.Strengths, weights, squares, start, end);
+    /// <summary>Whether nothing of a component was left to the probes.</summary>
+    public bool IsExact(int component)
+    {
+        (int first, int end) = blocks.OfComponent(component);
+        for (int b = first; b < end; b++)
+        {
+            if (IsProbed(b))
+                return false;
+        }
+        return true;
+    }
+
+    /// <summary>Kf of a component, the sum of R over its pairs: Student t interval over the probes.</summary>
+    public Estimate KirchhoffIndex(int component, double confidence) => plain.Estimate(component, confidence);
+
+    /// <summary>The sum of d_u d_v R over pairs.</summary>
+    public Estimate DegreeKirchhoffIndex(int component, double confidence) => byStrength.Estimate(component, confidence);
+
+    /// <summary>The sum of w_u w_v R over pairs; null without node weights.</summary>
+    public Estimate? WeightedKirchhoffIndex(int component, double confidence) => byWeight?.Estimate(component, confidence);
+
+    /// <summary>
+    /// l_u of every node; 0 for a single node. The parts of the blocks are independent, with standard errors sqrt(2/K) E x^2 each; the
+    /// interval is symmetric in the log of the probed part.
+    /// </summary>
+    /// <param name="quantile">Of the standard normal.</param>
+    public Estimate[] Diagonals(double quantile)
+    {
+        int n = network.NodeCount;
+        double[] ofMembers = new double[n], ofHeads = new double[blocks.Count];
+        double[] known = Around((share, strength, _) => share * share / strength, value => value);
+        double[] probed = Around((_, _, sum) => sum / Probes, _ => 0);
+        double[] variance = Around((_, _, sum) => sum / Probes * (sum / Probes) * 2 / Probes, _ => 0);
+        Estimate[] diagonals = new Estimate[n];
+        for (int u = 0; u < n; u++)
+        {
+            double error = Math.Sqrt(variance[u]);
+            double stretch = probed[u] > 0 ? Math.Exp(quantile * error / probed[u]) : 1;
+            diagonals[u] = new Estimate(
+                known[u] + probed[u], error, known[u] + (probed[u] / stretch), known[u] + (probed[u] * stretch));
+        }
+        return diagonals;
+
+        // The part of a block from k, d and the sum of x^2, or from the exact value.
+        double[] Around(Func<double, double, double, double> part, Func<double, double> ofExact)
+        {
+            for (int c = 0; c < network.Components.Count; c++)
+            {
+                (int first, int end) = blocks.OfComponent(c);
+                for (int b = first; b < end; b++)
+                {
+                    bool known = exact?.Has(b) == true;
+                    ofHeads[b] = known ? ofExact(exact!.OfHead(b)) : part(plain.HeadShare(b, c), rows.OfHead(b), headSquares[b]);
+                    foreach (int v in blocks.Members(b))
+                        ofMembers[v] = known ? ofExact(exact!.OfMember(v)) : part(plain.MemberShare(v, c), rows.OfMember(v), squares[v]);
+                }
+            }
+            return BlockTree.Around(blocks, ofMembers, ofHeads);
+        }
+    }
+
+    private bool IsProbed(int block) => !blocks.IsBridge(block) && exact?.Has(block) != true;
+
+    private Samples NewSamples(HangingWeights hanging, Func<(double Plain, double ByStrength, double ByWeight), double> choose)
+    {
+        double[] known = new double[network.Components.Count];
+        Samples samples = new(hanging, known);
+        for (int c = 0; c < known.Length; c++)
+        {
+            (int first, int end) = blocks.OfComponent(c);
+            for (int b = first; b < end; b++)
+            {
+                if (exact?.Has(b) == true)
+                {
+                    known[c] += choose(exact.Index(b));
+                    continue;
+                }
+                double sum = hanging.OfHead(b) * Square(samples.HeadShare(b, c)) / rows.OfHead(b);
+                foreach (int v in blocks.Members(b))
+                    sum += hanging.OfMember(v) * Square(samples.MemberShare(v, c)) / rows.OfMember(v);
+                known[c] += hanging.Total(c) * sum;
+            }
+        }
+        return samples;
+
+        static double Square(double k) => k * k;
+    }
+
+    private List<Chunk> ChunksOf(int component)
+    {
+        (int first, int end) = blocks.OfComponent(component);
+        List<Chunk> list = [];
+        for (int b = first; b < end;)
+        {
+            int size = blocks.NodesOf(b) - 1, start = b++;
+            if (size > MembersPerChunk)
+            {
+                int pieces = (size + MembersPerChunk - 1) / MembersPerChunk;
+                for (int i = 0; i < pieces; i++)
+                    list.Add(new Chunk(start, b, pieces, i * MembersPerChunk, Math.Min(size, (i + 1) * MembersPerChunk)));
+                continue;
+            }
+            while (b < end && size + blocks.NodesOf(b) - 1 <= MembersPerChunk)
+                size += blocks.NodesOf(b++) - 1;
+            list.Add(new Chunk(start, b, 1, 0, 0));
+        }
+        return list;
+    }
+
+    // Chunks of whole components, numbered by component.
+    private List<Chunk> ChunksOfSmallComponents()
+    {
+        List<Chunk> list = [];
+        for (int c = sharedComponents; c < network.Components.Count && network.Components[c].Nodes > 1;)
+        {
+            int start = c, size = 0;
+            while (c < network.Components.Count && network.Components[c].Nodes > 1 && size < MembersPerChunk)
+                size += network.Components[c++].Nodes;
+            list.Add(new Chunk(start, c, 1, 0, 0));
+        }
+        return list;
+    }
+
+    private void AddInPieces(
+        ProbePanel panel, int component, List<Chunk> parts, int first, NodeSquareSums[] sums, ParallelOptions options)
+    {
+        int block = parts[first].First, pieces = parts[first].Pieces;
+        if (!IsProbed(block))
+            return;
+        NodeSquareSums[] offsets = new NodeSquareSums[pieces];
+        Parallel.For(0, pieces, options, i => AddOffsets(panel, block, parts[first + i].From, parts[first + i].To, ref offsets[i]));
+        NodeSquareSums offset = default;
+        foreach (ref readonly NodeSquareSums piece in offsets.AsSpan())
+            offset.Add(piece);
+        float[] centres = Centres(panel, component, block, offset, new float[3 * ProbePanel.Width]);
+        Parallel.For(0, pieces, options, i =>
+            AddSquares(panel, component, block, parts[first + i].From, parts[first + i].To, centres, new Scratch(), ref sums[first + i]));
+    }
+
+    private void AddBlocks(ProbePanel panel, int component, int first, int end, Scratch scratch, ref NodeSquareSums sums)
+    {
+        for (int b = first; b < end; b++)
+        {
+            if (!IsProbed(b))
+                continue;
+            int count = blocks.NodesOf(b) - 1;
+            NodeSquareSums offset = default;
+            AddOffsets(panel, b, 0, count, ref offset);
+            AddSquares(panel, component, b, 0, count, Centres(panel, component, b, offset, scratch.Centres), scratch, ref sums);
+        }
+    }
+
+    // Sums of w (z - z of the head).
+    private void AddOffsets(ProbePanel panel, int block, int from, int to, ref NodeSquareSums sums)
+    {
+        float* origin = Row(panel.Z, blocks.Head(block));
+        foreach (int v in blocks.Members(block)[from..to])
+        {
+            float* z = Row(panel.Z, v);
+            NodeKernels.AddOffsets(z, origin, plain.Hanging.OfMember(v), ref sums.Plain);
+            NodeKernels.AddOffsets(z, origin, byStrength.Hanging.OfMember(v), ref sums.ByStrength);
+            if (byWeight is not null)
+                NodeKernels.AddOffsets(z, origin, byWeight.Hanging.OfMember(v), ref sums.ByWeight);
+        }
+    }
+
+    // sum w_B z / W, for each of the weights.
+    private float[] Centres(ProbePanel panel, int component, int block, in NodeSquareSums offsets, float[] centres)
+    {
+        ReadOnlySpan<float> origin = panel.Z.Row(blocks.Head(block));
+        double n = plain.Hanging.Total(component), strength = byStrength.Hanging.Total(component);
+        double weight = byWeight?.Hanging.Total(component) ?? 0;
+        for (int lane = 0; lane < ProbePanel.Width; lane++)
+        {
+            centres[lane] = (float)(origin[lane] + (offsets.Plain[lane] / n));
+            centres[16 + lane] = (float)(origin[lane] + (offsets.ByStrength[lane] / strength));
+            centres[32 + lane] = weight > 0 ? (float)(origin[lane] + (offsets.ByWeight[lane] / weight)) : 0;
+        }
+        return centres;
+    }
+
+    private void AddSquares(
+        ProbePanel panel, int component, int block, int from, int to, float[] centres, Scratch scratch, ref NodeSquareSums sums)
+    {
+        fixed (float* centre = centres, own = scratch.Row)
+        {
+            if (from == 0)
+            {
+                int u = blocks.Head(block);
+                float* z = Row(panel.Z, u), b = RowOfB(u, own);
+                double d = rows.OfHead(block);
+                headSquares[block] += NodeKernels.AddSquares(
+                    z, centre, b, (float)(plain.HeadShare(block, component) / d), plain.Hanging.OfHead(block), ref sums.Plain);
+                NodeKernels.AddSquares(
+                    z, centre + 16, b, (float)(byStrength.HeadShare(block, component) / d), byStrength.Hanging.OfHead(block), ref sums.ByStrength);
+                if (byWeight is not null)
+                {
+                    NodeKernels.AddSquares(
+                        z, centre + 32, b, (float)(byWeight.HeadShare(block, component) / d), byWeight.Hanging.OfHead(block), ref sums.ByWeight);
+                }
+            }
+            foreach (int u in blocks.Members(block)[from..to])
+            {
+                float* z = Row(panel.Z, u), b = RowOfB(u, own);
+                double d = rows.OfMember(u);
+                squares[u] += NodeKernels.AddSquares(
+                    z, centre, b, (float)(plain.MemberShare(u, component) / d), plain.Hanging.OfMember(u), ref sums.Plain);
+                NodeKernels.AddSquares(
+                    z, centre + 16, b, (float)(byStrength.MemberShare(u, component) / d), byStrength.Hanging.OfMember(u), ref sums.ByStrength);
+                if (byWeight is not null)
+                {
+                    NodeKernels.AddSquares(
+                        z, centre + 32, b, (float)(byWeight.MemberShare(u, component) / d), byWeight.Hanging.OfMember(u), ref sums.ByWeight);
+                }
+            }
+        }
+
+        float* RowOfB(int u, float* own)
+        {
+            if (!blocks.IsCutNode(u))
+                return Row(panel.B, u);
+            rows.Gather(panel, block, u, own, scratch.Links);
+            return own;
+        }
+    }
 
     private void AddSamples(int component, int probes, in NodeSquareSums sums)
     {
         for (int lane = 0; lane < probes; lane++)
         {
-            plain[component].Add(sums.Plain[lane]);
-            byStrength[component].Add(sums.ByStrength[lane]);
-            byWeight[component].Add(sums.ByWeight[lane]);
+            plain.Add(component, sums.Plain[lane]);
+            byStrength.Add(component, sums.ByStrength[lane]);
+            byWeight?.Add(component, sums.ByWeight[lane]);
         }
     }
 
-    /// <summary>l_u with one standard error sqrt(2/K) E x^2; exactly 0 for a single node.</summary>
-    /// <param name="node">Internal node.</param>
-    /// <param name="nodes">n of its component.</param>
-    /// <param name="quantile">Of the standard normal; the interval is symmetric in the log of the probed part.</param>
-    public Estimate Diagonal(int node, int nodes, double quantile)
+    private static float* Row(Panel<float> panel, int node) => panel.Pointer + ((long)node * ProbePanel.Width);
+
+    // A run of whole blocks (or small components), or one of the pieces of a block's members.
+    private readonly record struct Chunk(int First, int End, int Pieces, int From, int To);
+
+    private sealed class Scratch
     {
-        if (nodes == 1)
-            return Estimate.Exact(0);
-        double share = 1 - (1.0 / nodes);
-        double known = share * share / network.Strengths[node];
-        double probed = squares[node] / Probes;
-        double root = Math.Sqrt(2.0 / Probes);
-        double stretch = Math.Exp(quantile * root);
-        return new Estimate(known + probed, probed * root, known + (probed / stretch), known + (probed * stretch));
+        public readonly float[] Centres = new float[3 * ProbePanel.Width];
+        public readonly float[] Row = new float[ProbePanel.Width];
+        public readonly List<(int To, double C)> Links = [];
     }
 
-    /// <summary>tr L+ of a component: Student t interval over the probes.</summary>
-    public Estimate Trace(int component, double confidence) => Weighted(component, plain, confidence, static (_, _) => 1);
-
-    /// <summary>The sum of d_u l_u over a component.</summary>
-    public double TraceByStrength(int component) => Weighted(component, byStrength, 0.5, static (sums, u) => sums.network.Strengths[u]).Value;
-
-    /// <summary>The sum of w_u l_u over a component.</summary>
-    public double TraceByWeight(int component) => Weighted(component, byWeight, 0.5, static (sums, u) => sums.weights![u]).Value;
-
-    private Estimate Weighted(int component, RunningMoments[] moments, double confidence, Func<NodeSums, int, double> weight)
+    // One index: its weights, and by component its samples W sum w x^2 beside what is known.
+    private sealed class Samples(HangingWeights hanging, double[] known)
     {
-        Component range = network.Components[component];
-        if (range.Nodes == 1)
-            return Estimate.Exact(0);
-        double share = 1 - (1.0 / range.Nodes);
-        double known = 0;
-        for (int u = range.Start; u < range.End; u++)
-            known += weight(this, u) / network.Strengths[u];
-        RunningMoments probed = moments[component];
-        double value = (share * share * known) + probed.Mean;
-        double half = Quantiles.Student(confidence, Probes - 1) * probed.StandardError;
-        return new Estimate(value, probed.StandardError, value - half, value + half);
+        private readonly RunningMoments[] moments = new RunningMoments[known.Length];
+
+        public HangingWeights Hanging => hanging;
+
+        // k = 1 - w_B / W
+        public double MemberShare(int node, int component) => Share(hanging.OfMember(node), hanging.Total(component));
+
+        public double HeadShare(int block, int component) => Share(hanging.OfHead(block), hanging.Total(component));
+
+        public void Add(int component, double sum) => moments[component].Add(hanging.Total(component) * sum);
+
+        public Estimate Estimate(int component, double confidence)
+        {
+            RunningMoments probed = moments[component];
+            if (probed.Count == 0 || probed.Mean == 0)
+                return Estimating.Estimate.Exact(known[component]);
+            double value = known[component] + probed.Mean;
+            double half = Quantiles.Student(confidence, probed.Count - 1) * probed.StandardError;
+            return new Estimate(value, probed.StandardError, value - half, value + half);
+        }
+
+        private static double Share(double weight, double total) => total > 0 ? Math.Max(0, 1 - (weight / total)) : 1;
     }
 }

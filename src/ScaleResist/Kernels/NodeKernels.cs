@@ -1,107 +1,96 @@
-// What a probe says of nodes: x_u = z_u - k b_u / d_u, its squares by node and their weighted sums by probe.
-// Reads z and b (2 panels) and writes 8 bytes a node; sums by probe go through doubles row by row.
+// What a probe says of nodes: x_u = z_u - centre - k b_u / d_u, its squares by node and their weighted sums by probe.
+// Reads a row of z and one of b, writes nothing; sums by probe go through doubles row by row.
 
 using System.Runtime.Intrinsics;
 
 namespace ScaleResist.Kernels;
 
-/// <summary>Sums by probe over some nodes: of x^2, of d x^2 and of w x^2.</summary>
+/// <summary>Sums by probe over some nodes, for weights 1, strengths and node weights, each with what hangs off a node added.</summary>
 internal struct NodeSquareSums
 {
-    /// <summary>Sum of x_u^2.</summary>
+    /// <summary>Sum over nodes with weight 1 each.</summary>
     public LaneSums Plain;
 
-    /// <summary>Sum of d_u x_u^2.</summary>
+    /// <summary>Sum with weights d.</summary>
     public LaneSums ByStrength;
 
-    /// <summary>Sum of w_u x_u^2; 0 without node weights.</summary>
+    /// <summary>Sum with node weights w; 0 without.</summary>
     public LaneSums ByWeight;
+
+    /// <summary>Adds the sums of other nodes.</summary>
+    public void Add(in NodeSquareSums other)
+    {
+        for (int lane = 0; lane < 16; lane++)
+        {
+            Plain[lane] += other.Plain[lane];
+            ByStrength[lane] += other.ByStrength[lane];
+            ByWeight[lane] += other.ByWeight[lane];
+        }
+    }
 }
 
-/// <summary>Kernels on the rows of a panel of 16 probes.</summary>
+/// <summary>Kernels on single rows of panels of 16 probes.</summary>
 internal static unsafe class NodeKernels
 {
-    /// <summary>Adds x_u^2 summed over the probes to <paramref name="squares"/>, and returns the sums by probe.</summary>
-    /// <param name="z">L+ b, n x 16.</param>
-    /// <param name="b">Right-hand sides, n x 16; lanes not in use are 0 in both.</param>
-    /// <param name="share">k = 1 - 1/n of the component.</param>
-    /// <param name="strengths">d, n values, positive in the range.</param>
-    /// <param name="weights">w, n values, or null.</param>
-    /// <param name="squares">n values; the range is added to.</param>
-    /// <param name="start">First node.</param>
-    /// <param name="end">One past the last node.</param>
-    public static NodeSquareSums Squares(
-        Panel<float> z, Panel<float> b, double share, double[] strengths, double[]? weights, double[] squares, int start, int end)
+    /// <summary>sums += w (z - origin), lane by lane.</summary>
+    public static void AddOffsets(float* z, float* origin, double weight, ref LaneSums sums)
     {
         if (PanelKernels.Scalar)
-            return SquaresScalar(z, b, share, strengths, weights, squares, start, end);
-        NodeSquareSums sums = default;
-        Vector512<double> plainLow = default, plainHigh = default, strengthLow = default, strengthHigh = default;
-        Vector512<double> weightLow = default, weightHigh = default;
-        for (int u = start; u < end; u++)
-        {
-            float* zRow = z.Pointer + ((long)u * 16);
-            float* bRow = b.Pointer + ((long)u * 16);
-            Vector512<float> x = Vector512.Load(zRow) - (Vector512.Create((float)(share / strengths[u])) * Vector512.Load(bRow));
-            x *= x;
-            (Vector512<double> low, Vector512<double> high) = Vector512.Widen(x);
-            squares[u] += Total(low + high);
-            plainLow += low;
-            plainHigh += high;
-            strengthLow += strengths[u] * low;
-            strengthHigh += strengths[u] * high;
-            if (weights is not null)
-            {
-                weightLow += weights[u] * low;
-                weightHigh += weights[u] * high;
-            }
-        }
-        Spread(plainLow, plainHigh, ref sums.Plain);
-        Spread(strengthLow, strengthHigh, ref sums.ByStrength);
-        Spread(weightLow, weightHigh, ref sums.ByWeight);
-        return sums;
-    }
-
-    private static NodeSquareSums SquaresScalar(
-        Panel<float> z, Panel<float> b, double share, double[] strengths, double[]? weights, double[] squares, int start, int end)
-    {
-        NodeSquareSums sums = default;
-        Span<double> halves = stackalloc double[8];
-        for (int u = start; u < end; u++)
         {
             for (int lane = 0; lane < 16; lane++)
-            {
-                float x = z.Row(u)[lane] - ((float)(share / strengths[u]) * b.Row(u)[lane]);
-                double square = x * x;
-                sums.Plain[lane] += square;
-                sums.ByStrength[lane] += strengths[u] * square;
-                sums.ByWeight[lane] += weights is null ? 0 : weights[u] * square;
-                halves[lane & 7] = lane < 8 ? square : halves[lane & 7] + square;
-            }
-            for (int half = 4; half > 0; half /= 2)
-            {
-                for (int lane = 0; lane < half; lane++)
-                    halves[lane] += halves[lane + half];
-            }
-            squares[u] += halves[0];
+                sums[lane] += weight * (z[lane] - origin[lane]);
+            return;
         }
-        return sums;
+        AddTo(ref sums, weight, Vector512.Load(z) - Vector512.Load(origin));
     }
 
-    // Halves are added to halves, so that the scalar twin can follow the same tree.
-    private static double Total(Vector512<double> lanes)
+    /// <summary>sums += w x^2 lane by lane, x = z - centre - factor b; returns the sum of x^2 over the lanes.</summary>
+    /// <param name="z">Row of z.</param>
+    /// <param name="centre">What to take off z in each lane.</param>
+    /// <param name="b">Row of the right-hand side; lanes not in use are 0 in all three.</param>
+    /// <param name="factor">k / d.</param>
+    /// <param name="weight">w.</param>
+    /// <param name="sums">Added to.</param>
+    public static double AddSquares(float* z, float* centre, float* b, float factor, double weight, ref LaneSums sums)
     {
-        Vector256<double> four = lanes.GetLower() + lanes.GetUpper();
+        if (PanelKernels.Scalar)
+            return AddSquaresScalar(z, centre, b, factor, weight, ref sums);
+        Vector512<float> x = Vector512.Load(z) - Vector512.Load(centre) - (Vector512.Create(factor) * Vector512.Load(b));
+        x *= x;
+        AddTo(ref sums, weight, x);
+        (Vector512<double> low, Vector512<double> high) = Vector512.Widen(x);
+        Vector512<double> eight = low + high;
+        Vector256<double> four = eight.GetLower() + eight.GetUpper();
         Vector128<double> two = four.GetLower() + four.GetUpper();
         return two[0] + two[1];
     }
 
-    private static void Spread(Vector512<double> low, Vector512<double> high, ref LaneSums to)
+    private static double AddSquaresScalar(float* z, float* centre, float* b, float factor, double weight, ref LaneSums sums)
     {
-        for (int lane = 0; lane < 8; lane++)
+        double* halves = stackalloc double[8];
+        for (int lane = 0; lane < 16; lane++)
         {
-            to[lane] = low[lane];
-            to[lane + 8] = high[lane];
+            float x = z[lane] - centre[lane] - (factor * b[lane]);
+            double square = x * x;
+            sums[lane] += weight * square;
+            halves[lane & 7] = lane < 8 ? square : halves[lane & 7] + square;
+        }
+        // Halves are added to halves, as the vector form does.
+        for (int half = 4; half > 0; half /= 2)
+        {
+            for (int lane = 0; lane < half; lane++)
+                halves[lane] += halves[lane + half];
+        }
+        return halves[0];
+    }
+
+    private static void AddTo(ref LaneSums sums, double weight, Vector512<float> values)
+    {
+        (Vector512<double> low, Vector512<double> high) = Vector512.Widen(values);
+        fixed (double* to = &sums[0])
+        {
+            (Vector512.Load(to) + (weight * low)).Store(to);
+            (Vector512.Load(to + 8) + (weight * high)).Store(to + 8);
         }
     }
 }

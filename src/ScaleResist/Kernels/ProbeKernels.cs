@@ -3,6 +3,7 @@
 // same bits.
 //
 //   FillRow      b_u = sum over links of u of +-sqrt(c): reads the adjacency and the neighbours' keys, writes one row
+//   AddLink      one link's part of such a row
 //   LinkSquares  reads z and b at both ends (4 rows), writes nothing: two sums go back in registers
 
 using System.Runtime.CompilerServices;
@@ -79,6 +80,18 @@ internal static unsafe class ProbeKernels
             difference - ((Vector512.Create(wu) * Vector512.Load(bu)) - (Vector512.Create(wv) * Vector512.Load(bv)));
         Vector512<float> single = (difference - Signed(unit, signs)) & Mask(lanes);
         return (Total(shorted * shorted), Total(single * single));
+    }
+
+    /// <summary>Adds +-size to the lanes in use of a row, - where a sign is set.</summary>
+    public static void AddLink(float* row, float size, uint signs, uint lanes)
+    {
+        if (PanelKernels.Scalar)
+        {
+            for (int lane = 0; lane < Width; lane++)
+                row[lane] += (lanes >> lane & 1) == 0 ? 0 : (signs >> lane & 1) != 0 ? -size : size;
+            return;
+        }
+        (Vector512.Load(row) + (Signed(size, signs) & Mask(lanes))).Store(row);
     }
 
     private static void FillRow(

@@ -37,7 +37,7 @@ public static class EstimateRun
         Phases phases = new(observer);
         Dictionary<string, long> rows = [];
         ColumnKind label = LabelColumns.KindOf(network.Labels);
-        Bridges bridges = phases.Do("finding bridges", network.LinkCount, "links", () => Bridges.Find(network));
+        Blocks blocks = phases.Do("finding bridges", network.LinkCount, "links", () => Blocks.Find(network));
         if (plan.Want.HasFlag(Want.Components))
             Write("components", Tables.Components(label), network.NodeCount, w => NodeRows.WriteComponents(network, w, cancel));
 
@@ -50,14 +50,14 @@ public static class EstimateRun
             solver = phases.Do("preparing", network.LinkCount, "links",
                 () => new LaplacianSolver(network, plan.Probes, plan.Seed, cancel));
             probed = phases.Do("solving", plan.Probes, "probes",
-                () => ProbedEstimates.Run(network, bridges, plan, inputs, solver, observer, cancel));
+                () => ProbedEstimates.Run(network, blocks, plan, inputs, solver, observer, cancel));
             links = WalkLinks(probed);
             if (!links.FosterSums.All(double.IsFinite))
                 throw new SolveException("an estimate is not a finite number");
         }
         if (plan.Want.HasFlag(Want.Index))
         {
-            index = IndexRows.Of(network, probed!.Nodes!, probed.Forms!, inputs.NodeWeights, links!.FosterSums, plan.Confidence);
+            index = IndexRows.Of(network, probed!.Nodes!, links!.FosterSums, plan.Confidence);
             Write("index", Tables.Index, index.Count, w => IndexRows.Write(index, w));
         }
         if (plan.Want.HasFlag(Want.Nodes))
@@ -81,7 +81,7 @@ public static class EstimateRun
             Nodes = network.NodeCount,
             Links = network.LinkCount,
             Components = network.Components.Count,
-            Bridges = bridges.Count,
+            Bridges = blocks.Bridges.Count,
             Index = index,
             CriticalLinks = plan.Want.HasFlag(Want.Links) ? links!.Critical : [],
             FosterSum = links?.FosterSums.Sum(),
@@ -102,7 +102,7 @@ public static class EstimateRun
 
         LinkRows WalkLinks(ProbedEstimates sums)
         {
-            LinkResistances resistances = new(network, bridges, sums.Links, plan.Confidence);
+            LinkResistances resistances = new(network, blocks.Bridges, sums.Links, plan.Confidence);
             if (!plan.Want.HasFlag(Want.Links))
             {
                 return phases.Do("checking", network.LinkCount, "links",

@@ -8,9 +8,8 @@ namespace ScaleResist.Runs;
 /// <summary>Global measures of every component.</summary>
 internal static class IndexRows
 {
-    /// <summary>Computes the entries; a single node has Kirchhoff index 0, exactly.</summary>
-    public static List<IndexEntry> Of(
-        Network network, NodeSums sums, StrengthForms forms, double[]? weights, double[] fosterSums, double confidence)
+    /// <summary>Computes the entries; trees are exact, a single node with Kirchhoff index 0.</summary>
+    public static List<IndexEntry> Of(Network network, NodeSums sums, double[] fosterSums, double confidence)
     {
         List<IndexEntry> entries = new(network.Components.Count);
         for (int c = 0; c < network.Components.Count; c++)
@@ -18,23 +17,23 @@ internal static class IndexRows
             Component component = network.Components[c];
             double n = component.Nodes;
             double volume = Sum(network.Strengths, component);
-            Estimate trace = sums.Trace(c, confidence);
-            double degreeIndex = (volume * sums.TraceByStrength(c)) - forms.ByStrength[c];
+            bool exact = sums.IsExact(c);
+            Estimate index = sums.KirchhoffIndex(c, confidence);
+            double degreeIndex = sums.DegreeKirchhoffIndex(c, confidence).Value;
             entries.Add(new IndexEntry
             {
                 ComponentId = c,
                 Nodes = component.Nodes,
                 Links = network.LinksOf(component),
                 TotalConductance = volume / 2,
-                KirchhoffIndex = new Estimate(n * trace.Value, n * trace.StandardError, n * trace.Lower, n * trace.Upper),
-                MeanResistance = n == 1 ? 0 : trace.Value * 2 / (n - 1),
+                KirchhoffIndex = index,
+                MeanResistance = n == 1 ? 0 : index.Value * 2 / (n * (n - 1)),
                 DegreeKirchhoffIndex = degreeIndex,
                 KemenyConstant = n == 1 ? 0 : degreeIndex / volume,
-                NodeWeightedKirchhoffIndex =
-                    weights is null ? null : (Sum(weights, component) * sums.TraceByWeight(c)) - forms.ByWeight[c],
+                NodeWeightedKirchhoffIndex = sums.WeightedKirchhoffIndex(c, confidence)?.Value,
                 FosterSum = fosterSums[c],
-                Method = n == 1 ? "exact" : "probe",
-                Probes = n == 1 ? 0 : sums.Probes,
+                Method = exact ? "exact" : "probe",
+                Probes = exact ? 0 : sums.Probes,
             });
         }
         return entries;

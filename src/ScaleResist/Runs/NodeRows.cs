@@ -36,8 +36,9 @@ internal static class NodeRows
         int[] componentOf = network.ComponentOfNodes();
         double[] trace = new double[network.Components.Count];
         for (int c = 0; c < trace.Length; c++)
-            trace[c] = sums.Trace(c, confidence).Value;
-        Estimate[] diagonal = Diagonals(network, sums, confidence);
+            trace[c] = sums.KirchhoffIndex(c, confidence).Value / network.Components[c].Nodes;
+        bool[] exact = [.. Enumerable.Range(0, trace.Length).Select(sums.IsExact)];
+        Estimate[] diagonal = sums.Diagonals(Quantiles.Normal(confidence));
         Ranks ranks = Ranks.Of(network, diagonal);
         InBatches(network.NodeCount, BatchRows, cancel, (start, count) =>
         {
@@ -63,7 +64,7 @@ internal static class NodeRows
                 rank[i] = ranks.Rank[u];
                 rankLower[i] = ranks.Lower[u];
                 rankUpper[i] = ranks.Upper[u];
-                method[i] = n == 1 ? "exact" : "probe";
+                method[i] = exact[c] ? "exact" : "probe";
             }
             writer.Write(new RowBatch(
                 count, [node, component, degree, strength, value, error, total, closeness, rank, rankLower, rankUpper, method]));
@@ -86,18 +87,6 @@ internal static class NodeRows
             }
             writer.Write(new RowBatch(count, [node, network.Strengths.AsSpan(start, count).ToArray(), r]));
         });
-    }
-
-    private static Estimate[] Diagonals(Network network, NodeSums sums, double confidence)
-    {
-        double quantile = Quantiles.Normal(confidence);
-        Estimate[] diagonal = new Estimate[network.NodeCount];
-        foreach (Component component in network.Components)
-        {
-            for (int u = component.Start; u < component.End; u++)
-                diagonal[u] = sums.Diagonal(u, component.Nodes, quantile);
-        }
-        return diagonal;
     }
 
     private static void InBatches(int rows, int batch, CancellationToken cancel, Action<int, int> write)

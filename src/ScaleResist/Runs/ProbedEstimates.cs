@@ -18,12 +18,10 @@ internal sealed class ProbedEstimates
 
     public Coordinates? Coordinates { get; init; }
 
-    public StrengthForms? Forms { get; private set; }
-
     /// <summary>Draws, solves and adds all panels of a plan.</summary>
     public static ProbedEstimates Run(
         Network network,
-        Bridges bridges,
+        Blocks blocks,
         EstimatePlan plan,
         EstimateInputs inputs,
         LaplacianSolver solver,
@@ -32,13 +30,12 @@ internal sealed class ProbedEstimates
     {
         ProbedEstimates sums = new()
         {
-            Links = new LinkSums(network, bridges),
-            Nodes = (plan.Want & (Want.Index | Want.Nodes)) != 0 ? new NodeSums(network, inputs.NodeWeights) : null,
-            Pairs = plan.Want.HasFlag(Want.Pairs) ? new PairSums(network, bridges, inputs.Pairs ?? []) : null,
+            Links = new LinkSums(network, blocks.Bridges),
+            Nodes = (plan.Want & (Want.Index | Want.Nodes)) != 0 ? new NodeSums(blocks, inputs.NodeWeights) : null,
+            Pairs = plan.Want.HasFlag(Want.Pairs) ? new PairSums(network, blocks.Bridges, inputs.Pairs ?? []) : null,
             Coordinates = plan.Want.HasFlag(Want.Coordinates) ? new Coordinates(network, plan.Probes) : null,
         };
         int panels = ProbePanel.CountFor(plan.Probes);
-        bool forms = plan.Want.HasFlag(Want.Index);
         Slot[] slots = new Slot[Math.Min(plan.Threads, panels)];
         try
         {
@@ -55,9 +52,6 @@ internal sealed class ProbedEstimates
                     work.Add(() => solver.SolveProbes(
                         slot.Panel.B, slot.Panel.Z, slot.Panel.Probes, plan.EffectiveModeError, slot.Workspace, cancel));
                 }
-                // The forms ride along with the last batch, which may have a thread to spare.
-                if (forms && first + count == panels)
-                    work.Add(() => sums.Forms = StrengthForms.Solve(network, inputs.NodeWeights, solver, cancel));
                 Together(work, plan.Threads);
                 for (int i = 0; i < count; i++)
                     sums.Add(slots[i].Panel, plan.Threads);

@@ -14,9 +14,10 @@ internal sealed class Probing
     public Probing(Network network, int probes, ulong seed, double modeError = 1e-3, double[]? weights = null)
     {
         Network = network;
-        Bridges = Bridges.Find(network);
+        Blocks blocks = Blocks.Find(network);
+        Bridges = blocks.Bridges;
         sums = new LinkSums(network, Bridges);
-        Nodes = new NodeSums(network, weights);
+        Nodes = new NodeSums(blocks, weights);
         plain = new double[network.LinkCount];
         LaplacianSolver solver = new(network);
         using ProbePanel panel = new(network, seed);

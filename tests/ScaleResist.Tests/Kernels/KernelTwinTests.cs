@@ -34,22 +34,32 @@ public unsafe class KernelTwinTests
             float[] scalar = new float[2 * network.Neighbours.Length];
             double[] squares = new double[300], squaresTwin = new double[300];
             Squares(vector);
-            NodeSquareSums sums = NodeKernels.Squares(z, b, 0.99, network.Strengths, network.Strengths, squares, 0, 300);
-            NodeSquareSums sumsTwin = default;
+            LaneSums sumsTwin = default;
             WithScalar(() =>
             {
                 ProbeKernels.Fill(network, 11, panel, lanes, twin, 0, 300);
                 Squares(scalar);
-                sumsTwin = NodeKernels.Squares(z, b, 0.99, network.Strengths, network.Strengths, squaresTwin, 0, 300);
+                sumsTwin = NodeRows(squaresTwin, twin);
             });
+            LaneSums sums = NodeRows(squares, b);
             AssertSame(b, twin);
             Assert.Equal(vector, scalar);
             Assert.Equal(squares, squaresTwin);
             for (int lane = 0; lane < 16; lane++)
+                Assert.Equal(sums[lane], sumsTwin[lane]);
+
+            // Changes the rows of b as well: links are added to them again.
+            LaneSums NodeRows(double[] into, Panel<float> b)
             {
-                Assert.Equal(sums.Plain[lane], sumsTwin.Plain[lane]);
-                Assert.Equal(sums.ByStrength[lane], sumsTwin.ByStrength[lane]);
-                Assert.Equal(sums.ByWeight[lane], sumsTwin.ByWeight[lane]);
+                LaneSums sums = default;
+                for (int u = 0; u < 300; u++)
+                {
+                    float* row = b.Pointer + (16 * u), next = z.Pointer + (16 * ((u + 1) % 300));
+                    NodeKernels.AddOffsets(z.Pointer + (16 * u), next, network.Strengths[u], ref sums);
+                    into[u] = NodeKernels.AddSquares(z.Pointer + (16 * u), next, row, 0.3f, network.Strengths[u], ref sums);
+                    ProbeKernels.AddLink(row, (float)network.Strengths[u], (uint)(u * 7919) & 0xFFFF, lanes);
+                }
+                return sums;
             }
 
             void Squares(float[] into)
