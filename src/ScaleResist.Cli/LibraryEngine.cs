@@ -14,7 +14,7 @@ internal sealed class LibraryEngine : IEstimateEngine
     public EstimateOutcome Run(EstimateRequest request, Func<InputFacts, ITableSink> openSink, IRunObserver observer,
         CancellationToken interrupted)
     {
-        Network network = Load(request, observer, interrupted);
+        Network network = Load(request.Network, request.Reading, observer, interrupted);
         EstimateInputs inputs = new()
         {
             Pairs = request.Pairs is string pairs ? NetworkInput.ReadPairs(pairs, network.Labels, ct: interrupted) : null,
@@ -36,11 +36,17 @@ internal sealed class LibraryEngine : IEstimateEngine
         }
     }
 
-    private static Network Load(EstimateRequest request, IRunObserver observer, CancellationToken interrupted)
+    public SurveyOutcome Survey(SurveyRequest request, IRunObserver observer, CancellationToken interrupted)
     {
-        FileInfo file = new(request.Network);
+        Network network = Load(request.Network, request.Reading, observer, interrupted);
+        return new SurveyOutcome(network, NetworkSurvey.Of(network, request.Plan, observer, interrupted));
+    }
+
+    private static Network Load(string path, ReadOptions reading, IRunObserver observer, CancellationToken interrupted)
+    {
+        FileInfo file = new(path);
         observer.Begin("reading", file.Exists ? file.Length : null, "bytes");
-        EdgeList rows = NetworkInput.Read(request.Network, request.Reading, bytes => observer.Report(bytes), interrupted);
+        EdgeList rows = NetworkInput.Read(path, reading, bytes => observer.Report(bytes), interrupted);
         observer.End();
         interrupted.ThrowIfCancellationRequested();
         observer.Begin("building", rows.Links.Count, "rows");

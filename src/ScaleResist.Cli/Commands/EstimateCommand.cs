@@ -34,7 +34,7 @@ internal sealed class EstimateCommand(CliHost host)
         PhaseClock? clock = null;
         try
         {
-            Follow(view =>
+            ProgressView.Follow(host, view =>
             {
                 clock = new PhaseClock(view, host.Time);
                 outcome = host.Engine.Run(request, facts => sink = OpenSink(staged.Path, request, facts), clock, interrupted);
@@ -64,18 +64,6 @@ internal sealed class EstimateCommand(CliHost host)
             ["scaleresist.seed"] = request.Plan.Seed.ToString(CultureInfo.InvariantCulture),
         },
         request.Plan.Threads);
-
-    private void Follow(Action<IRunObserver> work)
-    {
-        if (host.LiveProgress)
-        {
-            LiveProgress.Follow(host.Error, work);
-            return;
-        }
-        using PlainProgress progress = new(host.Error, host.Time);
-        work(progress);
-        progress.Release();
-    }
 
     private int AnswerFinished(RunFolder folder, EstimateRequest request, JsonObject plan, CancellationToken interrupted)
     {

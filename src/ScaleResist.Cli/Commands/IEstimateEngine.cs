@@ -8,7 +8,10 @@ namespace ScaleResist.Cli.Commands;
 /// <summary>What a finished estimate leaves beside its tables.</summary>
 internal sealed record EstimateOutcome(InputFacts Input, CleaningFacts Cleaning, EstimateSummary Summary);
 
-/// <summary>Runs estimates.</summary>
+/// <summary>What a survey found.</summary>
+internal sealed record SurveyOutcome(Network Network, NetworkSurvey Survey);
+
+/// <summary>Runs estimates and surveys.</summary>
 internal interface IEstimateEngine
 {
     /// <summary>Reads the network and estimates what the plan wants.</summary>
@@ -18,4 +21,10 @@ internal interface IEstimateEngine
     /// <param name="interrupted">Ends the run with an <see cref="OperationCanceledException"/>.</param>
     EstimateOutcome Run(EstimateRequest request, Func<InputFacts, ITableSink> openSink, IRunObserver observer,
         CancellationToken interrupted);
+
+    /// <summary>Reads the network and foresees an estimate.</summary>
+    /// <param name="request">The validated command.</param>
+    /// <param name="observer">Follows the phases, reading included.</param>
+    /// <param name="interrupted">Ends the survey with an <see cref="OperationCanceledException"/>.</param>
+    SurveyOutcome Survey(SurveyRequest request, IRunObserver observer, CancellationToken interrupted);
 }

@@ -15,12 +15,8 @@ internal static class SummaryText
     public static IEnumerable<string> Of(RunRecord record, string published)
     {
         InputFacts input = record.Input;
-        yield return Entry("network", $"{input.Path} ({input.Form}, {Numbers.Bytes(input.Bytes)}): "
-            + $"{Numbers.Many(record.Network.Nodes, "node")}, {Numbers.Many(record.Network.Links, "link")}");
-        yield return Entry("cleaning", $"{Numbers.Many(record.Cleaning.SelfLoops, "self-loop")} dropped, "
-            + $"{Numbers.Many(record.Cleaning.ParallelLinks, "parallel link")} merged; {Numbers.Many(input.Rows, "row")}, "
-            + $"{Numbers.Many(input.CommentLines, "comment line")}, {(input.Header is null ? "no header" : "a header")}, "
-            + $"columns {string.Join(',', input.Columns)}");
+        foreach (string line in OfInput(input, record.Cleaning, record.Network.Nodes, record.Network.Links))
+            yield return line;
         IndexEntry? largest = record.Index.Count > 0 ? record.Index[0] : null;
         yield return Entry("components", Numbers.Count(record.Network.Components)
             + (largest is null
@@ -70,6 +66,20 @@ internal static class SummaryText
         yield return Entry("query", Query(published, record.Rows.Keys));
     }
 
+    /// <summary>What was read and cleaned.</summary>
+    public static IEnumerable<string> OfInput(InputFacts input, CleaningFacts cleaning, long nodes, long links)
+    {
+        yield return Entry("network", $"{input.Path} ({input.Form}, {Numbers.Bytes(input.Bytes)}): "
+            + $"{Numbers.Many(nodes, "node")}, {Numbers.Many(links, "link")}");
+        yield return Entry("cleaning", $"{Numbers.Many(cleaning.SelfLoops, "self-loop")} dropped, "
+            + $"{Numbers.Many(cleaning.ParallelLinks, "parallel link")} merged; {Numbers.Many(input.Rows, "row")}, "
+            + $"{Numbers.Many(input.CommentLines, "comment line")}, {(input.Header is null ? "no header" : "a header")}, "
+            + $"columns {string.Join(',', input.Columns)}");
+    }
+
+    /// <summary>One line: a name and what it says.</summary>
+    public static string Entry(string name, string text) => $"{name,-11}{text}";
+
     /// <summary>A query to paste into DuckDB.</summary>
     public static string Query(string published, IEnumerable<string> tables)
     {
@@ -85,8 +95,6 @@ internal static class SummaryText
     private static IEnumerable<PhaseTime> ShortPhases(IEnumerable<PhaseTime> phases) => phases
         .GroupBy(p => p.Name.StartsWith("writing ", StringComparison.Ordinal) ? "writing" : p.Name)
         .Select(g => new PhaseTime(g.Key, g.Sum(p => p.Seconds)));
-
-    private static string Entry(string name, string text) => $"{name,-11}{text}";
 
     private static string Signed(double percent) =>
         percent.ToString("+0.000;-0.000;0", System.Globalization.CultureInfo.InvariantCulture);

@@ -149,8 +149,9 @@ public sealed unsafe class NodeSums
         int n = network.NodeCount;
         double[] ofMembers = new double[n], ofHeads = new double[blocks.Count];
         double[] known = Around((share, strength, _) => share * share / strength, value => value);
-        double[] probed = Around((_, _, sum) => sum / Probes, _ => 0);
-        double[] variance = Around((_, _, sum) => sum / Probes * (sum / Probes) * 2 / Probes, _ => 0);
+        double count = Math.Max(1, Probes); // without probes all sums are 0
+        double[] probed = Around((_, _, sum) => sum / count, _ => 0);
+        double[] variance = Around((_, _, sum) => sum / count * (sum / count) * 2 / count, _ => 0);
         Estimate[] diagonals = new Estimate[n];
         for (int u = 0; u < n; u++)
         {

@@ -41,29 +41,43 @@ public static class EstimateRun
         if (plan.Want.HasFlag(Want.Components))
             Write("components", Tables.Components(label), network.NodeCount, w => NodeRows.WriteComponents(network, w, cancel));
 
+        RouteChoice? route = null;
+        ExactResults? exact = null;
         LaplacianSolver? solver = null;
         ProbedEstimates? probed = null;
+        NodeSums? nodes = null;
         LinkRows? links = null;
         List<IndexEntry> index = [];
         if ((plan.Want & ~Want.Components) != 0)
         {
-            solver = phases.Do("preparing", network.LinkCount, "links",
-                () => new LaplacianSolver(network, plan.Probes, plan.Seed, cancel));
-            probed = phases.Do("solving", plan.Probes, "probes",
-                () => ProbedEstimates.Run(network, blocks, plan, inputs, solver, observer, cancel));
-            links = WalkLinks(probed);
+            route = phases.Do("choosing a route", network.LinkCount, "links", () => RouteChoice.Of(blocks, plan, cancel));
+            if (route.Part is not null && (plan.Want & ~(Want.Components | Want.Coordinates)) != 0)
+            {
+                exact = phases.Do("factorising", route.Forecast!.Entries, "entries",
+                    () => ExactResults.Of(route.Part, route.Symbolic!, route.Laplacian!, inputs.NodeWeights, plan.Threads, cancel));
+            }
+            if (!route.AllExact || plan.Want.HasFlag(Want.Coordinates))
+            {
+                solver = phases.Do("preparing", network.LinkCount, "links",
+                    () => new LaplacianSolver(network, plan.Probes, plan.Seed, cancel));
+                probed = phases.Do("solving", plan.Probes, "probes",
+                    () => ProbedEstimates.Run(blocks, plan, inputs, exact?.ExactBlocks, route.AllExact, solver, observer, cancel));
+            }
+            if ((plan.Want & (Want.Index | Want.Nodes)) != 0)
+                nodes = probed?.Nodes ?? new NodeSums(blocks, inputs.NodeWeights, exact?.ExactBlocks);
+            links = WalkLinks();
             if (!links.FosterSums.All(double.IsFinite))
                 throw new SolveException("an estimate is not a finite number");
         }
         if (plan.Want.HasFlag(Want.Index))
         {
-            index = IndexRows.Of(network, probed!.Nodes!, links!.FosterSums, plan.Confidence);
+            index = IndexRows.Of(network, nodes!, links!.FosterSums, exact?.LogSpanningTrees, plan.Confidence);
             Write("index", Tables.Index, index.Count, w => IndexRows.Write(index, w));
         }
         if (plan.Want.HasFlag(Want.Nodes))
         {
             Write("nodes", Tables.Nodes(label), network.NodeCount,
-                w => NodeRows.WriteNodes(network, probed!.Nodes!, plan.Confidence, w, cancel));
+                w => NodeRows.WriteNodes(network, nodes!, plan.Confidence, w, cancel));
         }
         if (plan.Want.HasFlag(Want.Pairs))
         {
@@ -100,9 +114,9 @@ public static class EstimateRun
             Rows = rows,
         };
 
-        LinkRows WalkLinks(ProbedEstimates sums)
+        LinkRows WalkLinks()
         {
-            LinkResistances resistances = new(network, blocks.Bridges, sums.Links, plan.Confidence);
+            LinkResistances resistances = new(network, blocks.Bridges, probed?.Links, exact, plan.Confidence);
             if (!plan.Want.HasFlag(Want.Links))
             {
                 return phases.Do("checking", network.LinkCount, "links",

@@ -1,6 +1,7 @@
 // What the exact route will take, from the counts of the symbolic analysis, and what it may take.
 // The rates are those of one processor (bench/results/exact.md); a forecast within a factor of two is what they are for.
 
+using System.Globalization;
 using ScaleResist.Graphs;
 using ScaleResist.Solving;
 
@@ -15,20 +16,15 @@ public sealed record ExactForecast(long Entries, double Operations, double Secon
 {
     internal const double SecondsPerOperation = 1 / 6e9;
     internal const double SecondsPerEntry = 60e-9;
-    internal const double SecondsPerRow = 1e-6; // written
-    internal const double BaseBytes = 150e6;
+    internal const double BaseBytes = 200e6;
 
     internal static ExactForecast Of(Network network, SymbolicCholesky symbolic, EstimatePlan plan)
     {
         double operations = (double)symbolic.Operations + symbolic.InversionOperations;
-        double rows = (plan.Want.HasFlag(Want.Links) ? network.LinkCount : 0) + (plan.Want.HasFlag(Want.Nodes) ? network.NodeCount : 0);
-        double seconds = (operations * SecondsPerOperation) + (symbolic.StoredEntries * SecondsPerEntry) + (rows * SecondsPerRow);
-        double bytes = BaseBytes + NetworkBytes(network) + symbolic.PeakBytes;
+        double seconds = (operations * SecondsPerOperation) + (symbolic.StoredEntries * SecondsPerEntry) + RunCost.WritingSeconds(network, plan);
+        double bytes = BaseBytes + RunCost.NetworkBytes(network) + symbolic.PeakBytes;
         return new ExactForecast(symbolic.Entries, operations, seconds, (long)bytes);
     }
-
-    internal static double NetworkBytes(Network network) =>
-        (2.0 * network.LinkCount * (network.Conductances is null ? 4 : 12)) + (80.0 * network.NodeCount);
 }
 
 /// <summary>Bounds of the exact route.</summary>
@@ -47,7 +43,7 @@ internal sealed record ExactBudget(double Seconds, double Bytes)
     {
         double seconds = plan.TimeBudget?.TotalSeconds ?? (plan.Route == Route.Exact ? double.PositiveInfinity : AffordableSeconds);
         double bytes = plan.MemoryBudget ?? (ShareOfMemory * GC.GetGCMemoryInfo().TotalAvailableMemoryBytes);
-        double room = Math.Max(0, bytes - ExactForecast.NetworkBytes(network));
+        double room = Math.Max(0, bytes - RunCost.NetworkBytes(network));
         return new ExactBudget(seconds, bytes)
         {
             // A factor of so many entries takes 8 bytes each; 2 of its operations count as one squared length.
@@ -58,5 +54,17 @@ internal sealed record ExactBudget(double Seconds, double Bytes)
 
     public bool Holds(ExactForecast forecast) => forecast.Seconds <= Seconds && forecast.Bytes <= Bytes;
 
-    public BudgetException Refusal(ExactForecast? forecast) => throw new NotImplementedException();
+    /// <summary>Says why the exact route is refused, with the figures.</summary>
+    public BudgetException Refusal(ExactForecast? forecast)
+    {
+        CultureInfo plain = CultureInfo.InvariantCulture;
+        string wants = forecast is null
+            ? string.Create(plain, $"a factor of more than {Limits.Entries:N0} entries or {Limits.Operations * 2 / 1e9:N0} Gflop")
+            : string.Create(plain, $"about {forecast.Seconds:N0} s and {forecast.Bytes / 1e9:0.0} GB ({forecast.Entries:N0} entries)");
+        string has = double.IsInfinity(Seconds)
+            ? string.Create(plain, $"{Bytes / 1e9:0.0} GB")
+            : string.Create(plain, $"{Seconds:N0} s and {Bytes / 1e9:0.0} GB");
+        return new BudgetException(
+            $"the exact route would take {wants}, and the budget is {has}; use --route probe, or a larger --time-budget or --memory-budget");
+    }
 }

@@ -9,7 +9,7 @@ namespace ScaleResist.Runs;
 internal static class IndexRows
 {
     /// <summary>Computes the entries; trees are exact, a single node with Kirchhoff index 0.</summary>
-    public static List<IndexEntry> Of(Network network, NodeSums sums, double[] fosterSums, double confidence)
+    public static List<IndexEntry> Of(Network network, NodeSums sums, double[] fosterSums, double[]? logSpanningTrees, double confidence)
     {
         List<IndexEntry> entries = new(network.Components.Count);
         for (int c = 0; c < network.Components.Count; c++)
@@ -32,6 +32,7 @@ internal static class IndexRows
                 KemenyConstant = n == 1 ? 0 : degreeIndex / volume,
                 NodeWeightedKirchhoffIndex = sums.WeightedKirchhoffIndex(c, confidence)?.Value,
                 FosterSum = fosterSums[c],
+                LogSpanningTrees = logSpanningTrees is not null && double.IsFinite(logSpanningTrees[c]) ? logSpanningTrees[c] : null,
                 Method = exact ? "exact" : "probe",
                 Probes = exact ? 0 : sums.Probes,
             });

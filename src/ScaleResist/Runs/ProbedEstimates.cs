@@ -10,7 +10,7 @@ namespace ScaleResist.Runs;
 /// <summary>What a finished set of panels has left behind.</summary>
 internal sealed class ProbedEstimates
 {
-    public required LinkSums Links { get; init; }
+    public LinkSums? Links { get; init; }
 
     public NodeSums? Nodes { get; init; }
 
@@ -19,21 +19,32 @@ internal sealed class ProbedEstimates
     public Coordinates? Coordinates { get; init; }
 
     /// <summary>Draws, solves and adds all panels of a plan.</summary>
+    /// <param name="blocks">Of the network.</param>
+    /// <param name="plan">What is wanted.</param>
+    /// <param name="inputs">Pairs and node weights.</param>
+    /// <param name="exact">Blocks that need no probes, or null.</param>
+    /// <param name="allExact">Whether that is all of them, so that coordinates are all that is left.</param>
+    /// <param name="solver">Prepared for the network.</param>
+    /// <param name="observer">Hears of every batch.</param>
+    /// <param name="cancel">Ends the run.</param>
     public static ProbedEstimates Run(
-        Network network,
         Blocks blocks,
         EstimatePlan plan,
         EstimateInputs inputs,
+        ExactBlocks? exact,
+        bool allExact,
         LaplacianSolver solver,
         IRunObserver observer,
         CancellationToken cancel)
     {
+        Network network = blocks.Network;
+        Want want = allExact ? plan.Want & Want.Coordinates : plan.Want;
         ProbedEstimates sums = new()
         {
-            Links = new LinkSums(network, blocks.Bridges),
-            Nodes = (plan.Want & (Want.Index | Want.Nodes)) != 0 ? new NodeSums(blocks, inputs.NodeWeights) : null,
-            Pairs = plan.Want.HasFlag(Want.Pairs) ? new PairSums(network, blocks.Bridges, inputs.Pairs ?? []) : null,
-            Coordinates = plan.Want.HasFlag(Want.Coordinates) ? new Coordinates(network, plan.Probes) : null,
+            Links = allExact ? null : new LinkSums(network, blocks.Bridges),
+            Nodes = (want & (Want.Index | Want.Nodes)) != 0 ? new NodeSums(blocks, inputs.NodeWeights, exact) : null,
+            Pairs = want.HasFlag(Want.Pairs) ? new PairSums(network, blocks.Bridges, inputs.Pairs ?? []) : null,
+            Coordinates = want.HasFlag(Want.Coordinates) ? new Coordinates(network, plan.Probes) : null,
         };
         int panels = ProbePanel.CountFor(plan.Probes);
         Slot[] slots = new Slot[Math.Min(plan.Threads, panels)];
@@ -55,7 +66,7 @@ internal sealed class ProbedEstimates
                 Together(work, plan.Threads);
                 for (int i = 0; i < count; i++)
                     sums.Add(slots[i].Panel, plan.Threads);
-                observer.Report(sums.Links.Probes);
+                observer.Report(Math.Min(plan.Probes, (first + count) * ProbePanel.Width));
             }
         }
         finally
@@ -68,7 +79,7 @@ internal sealed class ProbedEstimates
 
     private void Add(ProbePanel panel, int threads)
     {
-        Links.Add(panel, threads);
+        Links?.Add(panel, threads);
         Nodes?.Add(panel, threads);
         Pairs?.Add(panel);
         Coordinates?.Add(panel);

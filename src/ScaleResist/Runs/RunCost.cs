@@ -1,0 +1,36 @@
+// Rough prices of a run beside its solves: memory and writing. The rates are those of one processor; a factor of two is what they are for.
+
+using ScaleResist.Estimating;
+using ScaleResist.Graphs;
+using ScaleResist.Kernels;
+
+namespace ScaleResist.Runs;
+
+/// <summary>What a run costs, foreseen.</summary>
+internal static class RunCost
+{
+    private const double SecondsPerLinkRow = 0.55e-6;
+    private const double SecondsPerNodeRow = 1e-6;
+    private const double BaseBytes = 200e6;
+    private const int PanelsPerThread = 6; // right-hand sides, solutions, and those of an iteration
+
+    /// <summary>Seconds that writing the wanted tables takes.</summary>
+    public static double WritingSeconds(Network network, EstimatePlan plan)
+    {
+        double nodeTables = (plan.Want.HasFlag(Want.Nodes) ? 1 : 0) + (plan.Want.HasFlag(Want.Components) ? 0.3 : 0);
+        return (plan.Want.HasFlag(Want.Links) ? network.LinkCount * SecondsPerLinkRow : 0) + (nodeTables * network.NodeCount * SecondsPerNodeRow);
+    }
+
+    /// <summary>Bytes of a network in memory, with what building it leaves and what is kept by node.</summary>
+    public static double NetworkBytes(Network network) =>
+        (2.0 * network.LinkCount * (network.Conductances is null ? 12 : 20)) + (120.0 * network.NodeCount);
+
+    /// <summary>Peak resident memory of the probed route.</summary>
+    public static long ProbedBytes(Network network, EstimatePlan plan)
+    {
+        int slots = Math.Min(plan.Threads, ProbePanel.CountFor(plan.Probes));
+        double panels = (double)slots * PanelsPerThread * network.NodeCount * Panel<float>.Width * sizeof(float);
+        double coordinates = plan.Want.HasFlag(Want.Coordinates) ? (double)network.NodeCount * plan.Probes * sizeof(float) : 0;
+        return (long)(BaseBytes + NetworkBytes(network) + (16.0 * network.LinkCount) + panels + coordinates);
+    }
+}
