@@ -14,7 +14,7 @@ using ScaleResist.Solving;
 namespace ScaleResist.Estimating;
 
 /// <summary>Exact results on the blocks of an <see cref="ExactPart"/>.</summary>
-internal sealed class ExactResults
+internal sealed class ExactResults : IDisposable
 {
     private readonly ExactPart part;
     private readonly Network network;
@@ -30,6 +30,12 @@ internal sealed class ExactResults
         ExactBlocks = new ExactBlocks(part.Blocks);
         LogSpanningTrees = new double[network.Components.Count];
     }
+
+    /// <summary>The exact blocks.</summary>
+    public ExactPart Part => part;
+
+    /// <summary>Their factor.</summary>
+    public CholeskyFactor Factor => factor;
 
     /// <summary>Indices and diagonals of the blocks.</summary>
     public ExactBlocks ExactBlocks { get; }
@@ -67,6 +73,12 @@ internal sealed class ExactResults
         return one == part.Ground || other == part.Ground ? sum : sum - (2 * inverse.Between(one, other));
     }
 
+    /// <summary>R between a member of an exact block and the block's head.</summary>
+    public double ToHead(int member) => inverse.Diagonal(part.RowOf(member));
+
+    /// <inheritdoc/>
+    public void Dispose() => factor.Dispose();
+
     private void AddBlocks(double[]? weights)
     {
         Blocks blocks = part.Blocks;
@@ -81,7 +93,8 @@ internal sealed class ExactResults
             for (int j = 0; j < hanging.Length && part.RowOf(u) >= 0; j++)
                 z.Row(part.RowOf(u))[j] = hanging[j].OfMember(u);
         }
-        factor.Solve(z);
+        using (SubstitutionWorkspace workspace = factor.NewWorkspace(Panel<double>.Width))
+            factor.Solve(z, z, workspace);
         double[] index = new double[3], spread = new double[3];
         List<double> diagonal = [];
         for (int c = 0; c < network.Components.Count; c++)
@@ -114,14 +127,25 @@ internal sealed class ExactResults
         }
     }
 
+    // A front lies within one block: blocks meet at the ground alone.
     private void AddLogarithms()
     {
+        int[] componentOf = new int[part.Ground];
         for (int c = 0; c < network.Components.Count; c++)
         {
-            double sum = part.HoldsComponent(c) ? 0 : double.NaN;
-            for (int u = network.Components[c].Start; u < network.Components[c].End && !double.IsNaN(sum); u++)
-                sum += part.RowOf(u) >= 0 ? factor.LogPivot(part.RowOf(u)) : 0;
-            LogSpanningTrees[c] = sum;
+            for (int u = network.Components[c].Start; u < network.Components[c].End; u++)
+            {
+                if (part.RowOf(u) >= 0)
+                    componentOf[part.RowOf(u)] = c;
+            }
+        }
+        SymbolicCholesky symbolic = factor.Symbolic;
+        for (int f = 0; f < symbolic.Count; f++)
+            LogSpanningTrees[componentOf[symbolic.Nodes[symbolic.First[f]]]] += factor.LogPivots[f];
+        for (int c = 0; c < network.Components.Count; c++)
+        {
+            if (!part.HoldsComponent(c))
+                LogSpanningTrees[c] = double.NaN;
         }
     }
 }

@@ -17,12 +17,12 @@ internal sealed unsafe class CholeskyFactor : IDisposable
     private const int Panel = DenseKernels.Tile;
     private readonly NativeDoubles values;
 
-    private CholeskyFactor(SymbolicCholesky symbolic, Laplacian laplacian, NativeDoubles values, double logDeterminant)
+    private CholeskyFactor(SymbolicCholesky symbolic, Laplacian laplacian, NativeDoubles values, double[] logs)
     {
         Symbolic = symbolic;
         Laplacian = laplacian;
         this.values = values;
-        LogDeterminant = logDeterminant;
+        LogPivots = logs;
     }
 
     /// <summary>The structure.</summary>
@@ -32,7 +32,10 @@ internal sealed unsafe class CholeskyFactor : IDisposable
     public Laplacian Laplacian { get; }
 
     /// <summary>log det of the grounded Laplacian: the logarithm of the number of spanning trees, each weighted by its conductances' product.</summary>
-    public double LogDeterminant { get; }
+    public double LogDeterminant => LogPivots.Sum();
+
+    /// <summary>By front, its part of <see cref="LogDeterminant"/>; a front lies within one component of what is left without the ground.</summary>
+    public double[] LogPivots { get; }
 
     internal double* Values => values.Pointer;
 
@@ -45,11 +48,8 @@ internal sealed unsafe class CholeskyFactor : IDisposable
         {
             double[] logs = new double[symbolic.Count];
             Factorise(symbolic, laplacian, values.Pointer, logs, threads, cancel);
-            double log = 0;
-            foreach (double of in logs)
-                log += of;
             new Span<double>(values.Pointer + symbolic.StoredEntries, Panel).Clear();
-            return new CholeskyFactor(symbolic, laplacian, values, log);
+            return new CholeskyFactor(symbolic, laplacian, values, logs);
         }
         catch
         {

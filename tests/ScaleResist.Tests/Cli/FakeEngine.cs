@@ -28,6 +28,9 @@ internal sealed class FakeEngine : IEstimateEngine
 
     public static string Label(long node) => $"Müller-{node} \"ö\"";
 
+    public SurveyOutcome Survey(SurveyRequest request, IRunObserver observer, CancellationToken interrupted) =>
+        throw new NotSupportedException("this engine surveys nothing");
+
     public EstimateOutcome Run(EstimateRequest request, Func<InputFacts, ITableSink> openSink, IRunObserver observer,
         CancellationToken interrupted)
     {
