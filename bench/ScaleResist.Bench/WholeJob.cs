@@ -12,7 +12,7 @@ internal static class WholeJob
     {
         EdgeList list = Timed("reading", () => EdgeListReader.Read(file, new ReadOptions { Weights = WeightMeaning.None }));
         Network network = Timed("building", () => NetworkBuilder.Build(list));
-        EstimatePlan plan = new() { Probes = probes, Want = Want.Index | Want.Nodes | Want.Links };
+        EstimatePlan plan = new() { Route = Route.Probe, Probes = probes, Want = Want.Index | Want.Nodes | Want.Links };
         EstimateSummary summary = EstimateRun.Execute(network, plan, new EstimateInputs(), new NoSink(), new NoObserver(), default);
         foreach (PhaseTime phase in summary.Phases)
             Console.WriteLine($"{phase.Name,-16} {phase.Seconds,8:0.00} s");

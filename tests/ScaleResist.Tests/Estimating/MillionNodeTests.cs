@@ -22,7 +22,7 @@ public class MillionNodeTests(ITestOutputHelper output)
         Network network = TestNetworks.Of(family, 1_000_000);
         MemorySink sink = new();
         EstimateSummary summary = EstimateRun.Execute(
-            network, new EstimatePlan { Probes = 32, Want = Want.Index | Want.Links }, new EstimateInputs(), sink, new SilentObserver(), default);
+            network, new EstimatePlan { Route = Route.Probe, Probes = 32, Want = Want.Index | Want.Links }, new EstimateInputs(), sink, new SilentObserver(), default);
         double[] value = sink["links"].Column<double>("resistance");
         double[] lower = sink["links"].Column<double>("resistance_lower"), upper = sink["links"].Column<double>("resistance_upper");
         double mean = value.Average(), covered = lower.Zip(upper).Count(ends => ends.First <= link && link <= ends.Second) / (double)value.Length;

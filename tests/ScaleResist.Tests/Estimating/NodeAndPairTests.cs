@@ -53,7 +53,7 @@ public class NodeAndPairTests
         int covered = 0, counted = 0;
         for (ulong seed = 1; seed <= 25; seed++)
         {
-            MemorySink sink = Run(network, new EstimatePlan { Want = Want.Pairs, Probes = 32, Seed = seed, ModeError = 1e-3 }, pairs);
+            MemorySink sink = Run(network, new EstimatePlan { Want = Want.Pairs, Route = Route.Probe, Probes = 32, Seed = seed, ModeError = 1e-3 }, pairs);
             double[] lower = sink["pairs"].Column<double>("resistance_lower"), upper = sink["pairs"].Column<double>("resistance_upper");
             for (int i = 0; i < pairs.Length; i++)
             {
@@ -74,7 +74,7 @@ public class NodeAndPairTests
         Network network = TestNetworks.Of(Family.SmallWorld, 200, decades: 1);
         Matrix<double> exact = network.DensePseudoInverse();
         const int probes = 400;
-        MemorySink sink = Run(network, new EstimatePlan { Want = Want.Coordinates, Probes = probes, ModeError = 1e-3 }, null);
+        MemorySink sink = Run(network, new EstimatePlan { Want = Want.Coordinates, Route = Route.Probe, Probes = probes, ModeError = 1e-3 }, null);
         float[] r = sink["coordinates"].Column<float>("r");
         double squares = 0;
         int count = 0;
@@ -119,7 +119,7 @@ public class NodeAndPairTests
             .MapIndexed((u, v, value) => value / Math.Sqrt(network.Strengths[u] * network.Strengths[v]));
         double kemeny = normalised.Evd(Symmetricity.Symmetric).EigenValues.Select(x => x.Real).Order().Skip(1).Sum(x => 1 / x);
         EstimateSummary summary = EstimateRun.Execute(
-            network, new EstimatePlan { Want = Want.Index, Probes = 512 }, new EstimateInputs { NodeWeights = w },
+            network, new EstimatePlan { Want = Want.Index, Route = Route.Probe, Probes = 512 }, new EstimateInputs { NodeWeights = w },
             new MemorySink(), new SilentObserver(), default);
         IndexEntry index = summary.Index[0];
         Assert.InRange(index.DegreeKirchhoffIndex / degree, 0.99, 1.01);
@@ -133,7 +133,7 @@ public class NodeAndPairTests
     {
         Network network = TestNetworks.Of((1, 2, 1), (2, 3, 0.1), (3, 4, 1), (10, 11, 2), (11, 12, 2), (12, 10, 2));
         (int, int)[] pairs = [(network.Node(1), network.Node(10)), (network.Node(2), network.Node(2)), (network.Node(2), network.Node(3))];
-        MemoryTable table = Run(network, new EstimatePlan { Want = Want.Pairs, Probes = 8 }, pairs)["pairs"];
+        MemoryTable table = Run(network, new EstimatePlan { Want = Want.Pairs, Route = Route.Probe, Probes = 8 }, pairs)["pairs"];
         Assert.Equal([double.PositiveInfinity, 0, 10], table.Column<double>("resistance"));
         Assert.Equal(["exact", "exact", "bridge"], table.Column<string>("method"));
     }

@@ -15,10 +15,10 @@ public class EstimateRunTests
     public void Results_are_the_same_to_the_bit_with_1_2_and_3_threads(Family family, int probes)
     {
         Network network = TestNetworks.Of(family, 12_000);
-        MemorySink one = Run(network, new EstimatePlan { Probes = probes, Threads = 1 });
+        MemorySink one = Run(network, new EstimatePlan { Route = Route.Probe, Probes = probes, Threads = 1 });
         foreach (int threads in new[] { 2, 3 })
         {
-            MemorySink more = Run(network, new EstimatePlan { Probes = probes, Threads = threads });
+            MemorySink more = Run(network, new EstimatePlan { Route = Route.Probe, Probes = probes, Threads = threads });
             Assert.Equal(one["links"].Column<double>("resistance"), more["links"].Column<double>("resistance"));
             Assert.Equal(one["links"].Column<double>("resistance_upper"), more["links"].Column<double>("resistance_upper"));
             Assert.Equal(one["nodes"].Column<double>("resistance_diagonal"), more["nodes"].Column<double>("resistance_diagonal"));
@@ -32,8 +32,8 @@ public class EstimateRunTests
     {
         Network network = TestNetworks.Of(Family.SmallWorld, 300);
         Assert.NotEqual(
-            Run(network, new EstimatePlan { Seed = 1 })["links"].Column<double>("resistance"),
-            Run(network, new EstimatePlan { Seed = 2 })["links"].Column<double>("resistance"));
+            Run(network, new EstimatePlan { Route = Route.Probe, Seed = 1 })["links"].Column<double>("resistance"),
+            Run(network, new EstimatePlan { Route = Route.Probe, Seed = 2 })["links"].Column<double>("resistance"));
     }
 
     [Fact]
@@ -43,7 +43,7 @@ public class EstimateRunTests
         foreach (Want want in new[] { Want.Index, Want.Components, Want.Nodes, Want.Links, Want.Coordinates })
         {
             Assert.Equal([want.ToString().ToLowerInvariant()],
-                Run(network, new EstimatePlan { Want = want, Probes = 8 }).Tables.Keys);
+                Run(network, new EstimatePlan { Want = want, Route = Route.Probe, Probes = 8 }).Tables.Keys);
         }
     }
 
@@ -61,7 +61,7 @@ public class EstimateRunTests
     public void Every_link_of_a_tree_is_an_exact_bridge_and_cuts_off_the_smaller_side()
     {
         Network network = TestNetworks.Of((1, 2, 1), (2, 3, 0.1), (3, 4, 1), (3, 5, 4));
-        MemorySink sink = Run(network, new EstimatePlan { Probes = 8 });
+        MemorySink sink = Run(network, new EstimatePlan { Route = Route.Probe, Probes = 8 });
         Dictionary<(long, long), (double R, long? Cut)> rows = sink["links"].Column<long>("source")
             .Zip(sink["links"].Column<long>("target"))
             .Zip(sink["links"].Column<double>("resistance").Zip(sink["links"].Column<long?>("nodes_cut_off")))
@@ -78,7 +78,7 @@ public class EstimateRunTests
     public void Tables_agree_with_each_other_and_with_the_contract()
     {
         Network network = TestNetworks.Open("netscience.tsv", WeightMeaning.Conductance);
-        MemorySink sink = Run(network, new EstimatePlan { Probes = 64, Want = (Want)63 });
+        MemorySink sink = Run(network, new EstimatePlan { Route = Route.Probe, Probes = 64, Want = (Want)63 });
         MemoryTable nodes = sink["nodes"], index = sink["index"], links = sink["links"];
         Assert.Equal(1461, nodes.Complete()); // 1,589 in the source, of which 128 have no link and so do not stand in the file
         Assert.Equal(2742, links.Complete());
@@ -117,7 +117,7 @@ public class EstimateRunTests
         using CancellationTokenSource cancel = new();
         cancel.Cancel();
         Assert.ThrowsAny<OperationCanceledException>(() => EstimateRun.Execute(
-            TestNetworks.Of(Family.Grid, 400), new EstimatePlan(), new EstimateInputs(), new MemorySink(), new SilentObserver(),
+            TestNetworks.Of(Family.Grid, 400), new EstimatePlan { Route = Route.Probe }, new EstimateInputs(), new MemorySink(), new SilentObserver(),
             cancel.Token));
     }
 
