@@ -176,7 +176,8 @@ public sealed unsafe class NodeSums
                         ofMembers[v] = known ? ofExact(exact!.OfMember(v)) : part(plain.MemberShare(v, c), rows.OfMember(v), squares[v]);
                 }
             }
-            return BlockTree.Around(blocks, ofMembers, ofHeads);
+            BlockTree sums = BlockTree.Of(blocks, null, ofMembers, ofHeads);
+            return [.. sums.Below.Zip(sums.Above, (below, above) => below + above)];
         }
     }
 

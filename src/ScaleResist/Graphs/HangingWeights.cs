@@ -12,43 +12,27 @@ public sealed class HangingWeights
 {
     private readonly double[] ofMembers;
     private readonly double[] ofHeads;
-    private readonly double[] totals;
+    private readonly IReadOnlyList<Component> components;
 
-    private HangingWeights(double[] ofMembers, double[] ofHeads, double[] totals)
+    private HangingWeights(double[] ofMembers, double[] ofHeads, IReadOnlyList<Component> components)
     {
         this.ofMembers = ofMembers;
         this.ofHeads = ofHeads;
-        this.totals = totals;
+        this.components = components;
     }
 
-    /// <summary>One pass up the blocks: O(n), 8 bytes a node and a block.</summary>
+    /// <summary>One pass up the tree of blocks and one down: O(n), 8 bytes a node and a block.</summary>
     /// <param name="blocks">Of the network.</param>
     /// <param name="weights">n values, finite and not negative; null: 1 each.</param>
     public static HangingWeights Of(Blocks blocks, double[]? weights)
     {
-        Network network = blocks.Network;
-        double[] hanging = new double[network.NodeCount];
         if (weights is null)
-            Array.Fill(hanging, 1);
-        else
-            weights.CopyTo(hanging, 0);
-        double[] heads = new double[blocks.Count], totals = new double[network.Components.Count];
-        for (int b = 0; b < blocks.Count; b++)
         {
-            double below = 0;
-            foreach (int v in blocks.Members(b))
-                below += hanging[v];
-            heads[b] = below;
-            hanging[blocks.Head(b)] += below;
+            weights = new double[blocks.Network.NodeCount];
+            Array.Fill(weights, 1);
         }
-        for (int c = 0; c < totals.Length; c++)
-        {
-            (int first, int end) = blocks.OfComponent(c);
-            totals[c] = hanging[network.Components[c].Start]; // the root
-            for (int b = first; b < end; b++)
-                heads[b] = Math.Max(weights is null ? 1 : weights[blocks.Head(b)], totals[c] - heads[b]);
-        }
-        return new HangingWeights(hanging, heads, totals);
+        BlockTree sums = BlockTree.Of(blocks, weights, null, null);
+        return new HangingWeights(sums.Below, sums.Rest, blocks.Network.Components);
     }
 
     /// <summary>w_B(u) of a node in the block of which it is a member; the total for the root of a component.</summary>
@@ -58,5 +42,5 @@ public sealed class HangingWeights
     public double OfHead(int block) => ofHeads[block];
 
     /// <summary>W: the sum of w over a component.</summary>
-    public double Total(int component) => totals[component];
+    public double Total(int component) => ofMembers[components[component].Start]; // the root has all
 }

@@ -19,6 +19,17 @@ internal sealed class Probing
         sums = new LinkSums(network, Bridges);
         Nodes = new NodeSums(blocks, weights);
         plain = new double[network.LinkCount];
+        Panels(network, probes, seed, modeError, panel =>
+        {
+            sums.Add(panel, 1);
+            Nodes.Add(panel, 1);
+            AddPlain(panel, probes);
+        });
+    }
+
+    /// <summary>Draws and solves panels one by one.</summary>
+    public static void Panels(Network network, int probes, ulong seed, double modeError, Action<ProbePanel> add)
+    {
         LaplacianSolver solver = new(network);
         using ProbePanel panel = new(network, seed);
         using SolverWorkspace<float> workspace = solver.NewWorkspace<float>();
@@ -26,9 +37,7 @@ internal sealed class Probing
         {
             panel.Draw(i, probes, 1);
             solver.SolveProbes(panel.B, panel.Z, panel.Probes, modeError, workspace, default);
-            sums.Add(panel, 1);
-            Nodes.Add(panel, 1);
-            AddPlain(panel, probes);
+            add(panel);
         }
     }
 
