@@ -34,6 +34,7 @@ internal sealed class MinimumDegree
     private int least;
     private int remaining;
     private ColumnCosts costs;
+    private long work; // list entries read
 
     private MinimumDegree(OrderGraph graph, int free)
     {
@@ -73,8 +74,8 @@ internal sealed class MinimumDegree
     }
 
     /// <summary>
-    /// The first <paramref name="free"/> nodes in the order of elimination, or null where the factor is sure to exceed the limits. The
-    /// others stay, and count in degrees and costs; links among them do not matter.
+    /// The first <paramref name="free"/> nodes in the order of elimination, or null where the factor is sure to exceed the limits, or
+    /// the search reads more than a factor within them would be worth. The others stay, and count in degrees and costs; links among them do not matter.
     /// </summary>
     /// <param name="graph">n nodes.</param>
     /// <param name="free">Nodes to eliminate.</param>
@@ -93,6 +94,7 @@ internal sealed class MinimumDegree
     {
         int[] order = new int[free];
         int ordered = 0;
+        long mostWork = limits.Entries == long.MaxValue ? long.MaxValue : limits.Entries + (16L * list.Length);
         for (int pivots = 0; ordered < free; pivots++)
         {
             if ((pivots & 4095) == 0)
@@ -100,7 +102,7 @@ internal sealed class MinimumDegree
             int p = TakeLeast();
             int taken = Eliminate(p);
             costs.Add(taken, degree[p]);
-            if (costs.Exceed(limits, degree[p]))
+            if (costs.Exceed(limits, remaining, degree[p]) || work > mostWork)
                 return null;
             for (int member = p; member >= 0; member = nextMember[member])
                 order[ordered++] = member;
@@ -234,6 +236,7 @@ internal sealed class MinimumDegree
             int i = list[k];
             int first = start[i], write = first, outside = 0;
             uint sum = 0;
+            work += length[i];
             int variables = first + elements[i], end = first + length[i];
             for (int at = first; at < variables; at++)
             {

@@ -26,11 +26,16 @@ internal struct ColumnCosts
         Operations += (w * d * d) + (d * w * (w + 1)) + (w * (w + 1) * ((2 * w) + 1) / 6);
     }
 
-    /// <summary>Whether these and a clique of so many nodes that is still to come are over the limits.</summary>
-    public readonly bool Exceed(OrderLimits limits, int clique)
+    /// <summary>
+    /// Whether what is still to come must exceed the limits: a clique, and <paramref name="nodes"/> nodes in all that have at least as many
+    /// neighbours by now. Their links, nodes x clique / 2 at least, are entries all, and the squares of N column lengths come to (their sum)^2 / N or more.
+    /// </summary>
+    public readonly bool Exceed(OrderLimits limits, int nodes, int clique)
     {
-        ColumnCosts bound = this;
-        bound.Add(clique, 0);
-        return bound.Entries > limits.Entries || bound.Operations > limits.Operations;
+        ColumnCosts all = this;
+        all.Add(clique, 0);
+        double links = 0.5 * nodes * clique;
+        return all.Entries > limits.Entries || Entries + links > limits.Entries
+            || all.Operations > limits.Operations || Operations + (links * clique / 2) > limits.Operations;
     }
 }
