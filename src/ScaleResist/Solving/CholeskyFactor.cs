@@ -63,7 +63,7 @@ internal sealed unsafe class CholeskyFactor : IDisposable
     {
         FrontSchedule schedule = symbolic.Schedule;
         nint[] updates = new nint[symbolic.Count];
-        using NativeDoubles held = new(schedule.Held.Sum(f => FrontSize.Update(symbolic.RowCount(f))));
+        using NativeDoubles held = new(schedule.HeldUpdates);
         double* next = held.Pointer;
         foreach (int f in schedule.Held)
         {

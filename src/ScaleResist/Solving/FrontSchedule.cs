@@ -43,6 +43,11 @@ internal sealed class FrontSchedule
         EliminationOfTop = Elimination(top);
         InversionOfTop = Inversion(top.Length - 1, top.Length, i => top[^(i + 1)]);
         Held = [.. Enumerable.Range(0, symbolic.Count).Where(IsHeld)];
+        foreach (int f in Held)
+        {
+            HeldUpdates += FrontSize.Update(symbolic.RowCount(f));
+            HeldInverses += InverseOf(f);
+        }
     }
 
     /// <summary>Runs, dearest first.</summary>
@@ -53,6 +58,12 @@ internal sealed class FrontSchedule
 
     /// <summary>Fronts of runs whose parent is above, ascending.</summary>
     public int[] Held { get; }
+
+    /// <summary>Doubles of the held fronts' updates.</summary>
+    public long HeldUpdates { get; }
+
+    /// <summary>Doubles of the held fronts' inverses.</summary>
+    public long HeldInverses { get; }
 
     /// <summary>What one thread needs for any run of the factorisation.</summary>
     public FrontSpace EliminationOfRuns { get; }
@@ -65,6 +76,17 @@ internal sealed class FrontSchedule
 
     /// <summary>What the fronts above need in the inversion.</summary>
     public FrontSpace InversionOfTop { get; }
+
+    /// <summary>Bytes of all blocks of the factorisation at their peak.</summary>
+    public long EliminationBytes(int threads) => sizeof(double) * (HeldUpdates + Shared(threads, EliminationOfRuns, EliminationOfTop));
+
+    /// <summary>Bytes of all blocks of the inversion at their peak.</summary>
+    public long InversionBytes(int threads) => sizeof(double) * (HeldInverses + Shared(threads, InversionOfRuns, InversionOfTop));
+
+    // Beside the blocks, 4 bytes a node and thread for local numbers and 8 or 16 a front for addresses and logarithms.
+    private long Shared(int threads, FrontSpace runs, FrontSpace top) =>
+        Math.Max(Math.Min(threads, Runs.Length) * (runs.Doubles + (symbolic.Nodes.Length / 2)), top.Doubles + (symbolic.Nodes.Length / 2))
+        + (2L * symbolic.Count);
 
     /// <summary>Whether a front's block is held apart from the stacks.</summary>
     public bool IsHeld(int front) => !above[front] && symbolic.Parent[front] >= 0 && above[symbolic.Parent[front]];

@@ -1,6 +1,7 @@
 // Threads on one front or on many runs. Invariant: whoever computes an entry computes the same chain of operations, so bits do not depend on
 // the number of threads.
 
+using System.Runtime.ExceptionServices;
 using ScaleResist.Kernels;
 
 namespace ScaleResist.Solving;
@@ -55,7 +56,16 @@ internal sealed unsafe class FrontTeam(int threads)
     {
         int next = -1;
         ParallelOptions options = new() { MaxDegreeOfParallelism = threads, CancellationToken = cancel };
-        Parallel.For(0, Math.Min(threads, runs.Length), options, _ =>
+        try
+        {
+            Parallel.For(0, Math.Min(threads, runs.Length), options, _ => TakeRuns());
+        }
+        catch (AggregateException failures)
+        {
+            ExceptionDispatchInfo.Throw(failures.Flatten().InnerExceptions[0]);
+        }
+
+        void TakeRuns()
         {
             TWorker? worker = null;
             try
@@ -71,6 +81,6 @@ internal sealed unsafe class FrontTeam(int threads)
             {
                 worker?.Dispose();
             }
-        });
+        }
     }
 }

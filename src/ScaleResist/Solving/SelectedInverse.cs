@@ -46,7 +46,7 @@ internal sealed unsafe class SelectedInverse
         FrontSchedule schedule = symbolic.Schedule;
         SelectedInverse inverse = new(factor);
         nint[] fronts = new nint[symbolic.Count];
-        using NativeDoubles held = new(schedule.Held.Sum(f => FrontSize.Inverse(symbolic.Own(f), symbolic.RowCount(f))));
+        using NativeDoubles held = new(schedule.HeldInverses);
         double* next = held.Pointer;
         foreach (int f in schedule.Held)
         {

@@ -3,6 +3,7 @@
 // every row of a front is among its parent's own places and rows.
 
 using ScaleResist.Graphs;
+using ScaleResist.Kernels;
 
 namespace ScaleResist.Solving;
 
@@ -12,9 +13,13 @@ namespace ScaleResist.Solving;
 /// </summary>
 internal sealed class SymbolicCholesky
 {
+    private const int TreeBytes = 60; // a node: parents, counts, orders and what finds them
+    private readonly long arcs;
+
     private SymbolicCholesky(Laplacian laplacian, int[] order, Supernodes supernodes, long entries)
     {
         int n = laplacian.NodeCount;
+        arcs = laplacian.Neighbours.Length;
         Count = supernodes.Count;
         Entries = entries;
         First = supernodes.Start;
@@ -103,6 +108,18 @@ internal sealed class SymbolicCholesky
 
     /// <summary>Floating-point operations of the selected inversion.</summary>
     public long InversionOperations { get; }
+
+    /// <summary>
+    /// Bytes that structure, factor and selected inverse take at their peak, beside the Laplacian: exact but for the runtime's own.
+    /// </summary>
+    public long PeakBytes(int threads)
+    {
+        long n = Nodes.Length, structure = (12 * n) + (33L * Count) + (8 * RowStart[Count]);
+        long factor = sizeof(double) * (StoredEntries + DenseKernels.Tile);
+        long elimination = Schedule.EliminationBytes(threads), inversion = (8 * n) + (8 * arcs) + Schedule.InversionBytes(threads);
+        long finding = TreeBytes * n; // while the tree is found and before the factor is there
+        return structure + Math.Max(finding, factor + Math.Max(elimination, inversion));
+    }
 
     /// <summary>Own places of a front.</summary>
     public int Own(int front) => First[front + 1] - First[front];
