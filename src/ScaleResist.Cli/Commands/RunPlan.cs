@@ -18,8 +18,8 @@ internal static class RunPlan
     {
         ["verb"] = "estimate",
         ["want"] = string.Join(',', EstimateValidation.NamesOf(request.Plan.Want)),
-        ["route"] = request.Plan.Route.ToString().ToLowerInvariant(),
         ["probes"] = request.Plan.Probes,
+        ["route"] = request.Plan.Route.ToString().ToLowerInvariant(),
         ["confidence"] = request.Plan.Confidence,
         ["seed"] = request.Plan.Seed,
         ["time_budget"] = request.Plan.TimeBudget?.TotalSeconds,

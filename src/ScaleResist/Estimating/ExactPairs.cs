@@ -9,12 +9,13 @@ using ScaleResist.Solving;
 
 namespace ScaleResist.Estimating;
 
-/// <summary>Exact pairs; for one thread at a time.</summary>
-internal sealed class ExactPairs
+/// <summary>Exact pairs; safe from several threads.</summary>
+internal sealed class ExactPairs : IDisposable
 {
     private readonly Blocks blocks;
     private readonly ExactPart part;
-    private readonly PathResistance paths;
+    private readonly ThreadLocal<PathResistance> paths;
+    private readonly int[] componentOf;
     private readonly double[] toRoot;
     private readonly int[] depth; // blocks between a node and the root
 
@@ -23,7 +24,8 @@ internal sealed class ExactPairs
     {
         part = exact.Part;
         blocks = part.Blocks;
-        paths = new PathResistance(exact.Factor);
+        paths = new ThreadLocal<PathResistance>(() => new PathResistance(exact.Factor));
+        componentOf = blocks.Network.ComponentOfNodes();
         toRoot = new double[blocks.Network.NodeCount];
         depth = new int[blocks.Network.NodeCount];
         for (int b = blocks.Count - 1; b >= 0; b--)
@@ -39,6 +41,9 @@ internal sealed class ExactPairs
         }
     }
 
+    /// <summary>Whether a pair's resistance is exact here: it lies in one component, and no block of that is probed.</summary>
+    public bool Holds(int u, int v) => componentOf[u] == componentOf[v] && part.HoldsComponent(componentOf[u]);
+
     /// <summary>R(u,v) of two nodes of one component that the exact part holds as a whole. O(depth of the block tree) and two paths of the factor.</summary>
     public double Between(int u, int v)
     {
@@ -51,7 +56,10 @@ internal sealed class ExactPairs
             b = blocks.Head(blocks.BlockOf(b));
         while (a != b && blocks.BlockOf(a) != blocks.BlockOf(b))
             (a, b) = (blocks.Head(blocks.BlockOf(a)), blocks.Head(blocks.BlockOf(b)));
-        double within = a == b ? 0 : paths.Between(part.RowOf(a), part.RowOf(b));
+        double within = a == b ? 0 : paths.Value!.Between(part.RowOf(a), part.RowOf(b));
         return toRoot[u] - toRoot[a] + (toRoot[v] - toRoot[b]) + within;
     }
+
+    /// <inheritdoc/>
+    public void Dispose() => paths.Dispose();
 }

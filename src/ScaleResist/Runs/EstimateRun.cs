@@ -56,12 +56,14 @@ public static class EstimateRun
                 exact = phases.Do("factorising", route.Forecast!.Entries, "entries",
                     () => ExactResults.Of(route.Part, route.Symbolic!, route.Laplacian!, inputs.NodeWeights, plan.Threads, cancel));
             }
-            if (!route.AllExact || plan.Want.HasFlag(Want.Coordinates))
+            // On the probed route a tree has exact links, nodes and index; its pairs are left.
+            Want left = route.AllExact ? plan.Want & (exact is null ? Want.Pairs | Want.Coordinates : Want.Coordinates) : plan.Want;
+            if (left != Want.None)
             {
                 solver = phases.Do("preparing", network.LinkCount, "links",
                     () => new LaplacianSolver(network, plan.Probes, plan.Seed, cancel));
                 probed = phases.Do("solving", plan.Probes, "probes",
-                    () => ProbedEstimates.Run(blocks, plan, inputs, exact?.ExactBlocks, route.AllExact, solver, observer, cancel));
+                    () => ProbedEstimates.Run(blocks, plan with { Want = left }, inputs, exact?.ExactBlocks, !route.AllExact, solver, observer, cancel));
             }
             if ((plan.Want & (Want.Index | Want.Nodes)) != 0)
                 nodes = probed?.Nodes ?? new NodeSums(blocks, inputs.NodeWeights, exact?.ExactBlocks);
@@ -82,8 +84,10 @@ public static class EstimateRun
         if (plan.Want.HasFlag(Want.Pairs))
         {
             IReadOnlyList<(int U, int V)> pairs = inputs.Pairs ?? [];
+            using ExactPairs? exactPairs = exact is null ? null : new ExactPairs(exact);
+            PairSums sums = probed?.Pairs ?? new PairSums(network, blocks.Bridges, pairs);
             Write("pairs", Tables.Pairs(label), pairs.Count,
-                w => PairRows.Write(network, pairs, probed!.Pairs!, plan.Confidence, w));
+                w => PairRows.Write(network, pairs, sums, exactPairs, plan.Confidence, plan.Threads, w));
         }
         if (plan.Want.HasFlag(Want.Coordinates))
         {

@@ -22,7 +22,7 @@ public sealed record ExactForecast(long Entries, double Operations, double Secon
     {
         double operations = (double)symbolic.Operations + symbolic.InversionOperations;
         double seconds = (operations * SecondsPerOperation) + (symbolic.StoredEntries * SecondsPerEntry) + RunCost.WritingSeconds(network, plan);
-        double bytes = BaseBytes + RunCost.NetworkBytes(network) + (16.0 * symbolic.StoredEntries);
+        double bytes = BaseBytes + RunCost.NetworkBytes(network) + symbolic.PeakBytes(plan.Threads);
         return new ExactForecast(symbolic.Entries, operations, seconds, (long)bytes);
     }
 }

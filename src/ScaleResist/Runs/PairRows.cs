@@ -10,7 +10,7 @@ internal static class PairRows
 {
     /// <summary>Writes all pairs, ends as the user gave them.</summary>
     public static void Write(
-        Network network, IReadOnlyList<(int U, int V)> pairs, PairSums sums, double confidence, ITableWriter writer)
+        Network network, IReadOnlyList<(int U, int V)> pairs, PairSums sums, ExactPairs? exact, double confidence, int threads, ITableWriter writer)
     {
         const int BatchRows = 1 << 20;
         double quantile = Quantiles.Normal(confidence);
@@ -20,13 +20,16 @@ internal static class PairRows
             Array source = LabelColumns.New(network.Labels, count), target = LabelColumns.New(network.Labels, count);
             double[] value = new double[count], error = new double[count], lower = new double[count], upper = new double[count];
             string[] method = new string[count];
-            for (int i = 0; i < count; i++)
+            Parallel.For(0, count, new ParallelOptions { MaxDegreeOfParallelism = threads }, i =>
             {
-                LabelColumns.Put(network.Labels, source, i, pairs[first + i].U);
-                LabelColumns.Put(network.Labels, target, i, pairs[first + i].V);
+                (int u, int v) = pairs[first + i];
+                LabelColumns.Put(network.Labels, source, i, u);
+                LabelColumns.Put(network.Labels, target, i, v);
                 (Estimate resistance, method[i]) = sums.Estimate(first + i, quantile);
+                if (method[i] == "probe" && exact?.Holds(u, v) == true)
+                    (resistance, method[i]) = (Estimate.Exact(exact.Between(u, v)), "exact");
                 (value[i], error[i], lower[i], upper[i]) = resistance;
-            }
+            });
             writer.Write(new RowBatch(count, [source, target, value, error, lower, upper, method]));
         }
     }

@@ -20,10 +20,10 @@ internal sealed class ProbedEstimates
 
     /// <summary>Draws, solves and adds all panels of a plan.</summary>
     /// <param name="blocks">Of the network.</param>
-    /// <param name="plan">What is wanted.</param>
+    /// <param name="plan">What is wanted of the probes.</param>
     /// <param name="inputs">Pairs and node weights.</param>
     /// <param name="exact">Blocks that need no probes, or null.</param>
-    /// <param name="allExact">Whether that is all of them, so that coordinates are all that is left.</param>
+    /// <param name="links">Whether links are probed.</param>
     /// <param name="solver">Prepared for the network.</param>
     /// <param name="observer">Hears of every batch.</param>
     /// <param name="cancel">Ends the run.</param>
@@ -32,19 +32,18 @@ internal sealed class ProbedEstimates
         EstimatePlan plan,
         EstimateInputs inputs,
         ExactBlocks? exact,
-        bool allExact,
+        bool links,
         LaplacianSolver solver,
         IRunObserver observer,
         CancellationToken cancel)
     {
         Network network = blocks.Network;
-        Want want = allExact ? plan.Want & Want.Coordinates : plan.Want;
         ProbedEstimates sums = new()
         {
-            Links = allExact ? null : new LinkSums(network, blocks.Bridges),
-            Nodes = (want & (Want.Index | Want.Nodes)) != 0 ? new NodeSums(blocks, inputs.NodeWeights, exact) : null,
-            Pairs = want.HasFlag(Want.Pairs) ? new PairSums(network, blocks.Bridges, inputs.Pairs ?? []) : null,
-            Coordinates = want.HasFlag(Want.Coordinates) ? new Coordinates(network, plan.Probes) : null,
+            Links = links ? new LinkSums(network, blocks.Bridges) : null,
+            Nodes = (plan.Want & (Want.Index | Want.Nodes)) != 0 ? new NodeSums(blocks, inputs.NodeWeights, exact) : null,
+            Pairs = plan.Want.HasFlag(Want.Pairs) ? new PairSums(network, blocks.Bridges, inputs.Pairs ?? []) : null,
+            Coordinates = plan.Want.HasFlag(Want.Coordinates) ? new Coordinates(network, plan.Probes) : null,
         };
         int panels = ProbePanel.CountFor(plan.Probes);
         Slot[] slots = new Slot[Math.Min(plan.Threads, panels)];

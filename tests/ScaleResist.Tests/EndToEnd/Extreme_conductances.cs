@@ -22,7 +22,7 @@ public sealed class Extreme_conductances
     {
         using Place place = new();
         File.WriteAllText(place.Network, Halves(m) + Link(0, m, c));
-        Command.Succeed(place.Network, place.Lake, "--weights", "conductance", "--want", "index");
+        Command.Succeed(place.Network, place.Lake, "--route", "probe", "--weights", "conductance", "--want", "index");
         object?[] row = Assert.Single(DuckLake.Query($"""
             SELECT kirchhoff_index, kirchhoff_index_se FROM {DuckLake.Table(place.Lake, "index")}
             """));
@@ -41,7 +41,7 @@ public sealed class Extreme_conductances
         using Place place = new();
         File.WriteAllText(place.Network, Halves(m) + Link(0, m, c) + Link(1, m + 1, c));
         File.WriteAllText(Path.Combine(place.Folder, "pairs.csv"), $"2,{m + 2}\n");
-        Command.Succeed(place.Network, place.Lake, "--weights", "conductance", "--want", "links",
+        Command.Succeed(place.Network, place.Lake, "--route", "probe", "--weights", "conductance", "--want", "links",
             "--pairs", Path.Combine(place.Folder, "pairs.csv"));
         List<object?[]> links = DuckLake.Query($"""
             SELECT resistance, resistance_se FROM {DuckLake.Table(place.Lake, "links")} WHERE source < {m} AND target >= {m}
@@ -73,7 +73,7 @@ public sealed class Extreme_conductances
         }
         using Place place = new();
         File.WriteAllText(place.Network, text + Link(5, Half + 7, 1) + Link(Half / 2, Half + (Half / 3), 1));
-        Command.Succeed(place.Network, place.Lake, "--weights", "conductance", "--want", "index,links");
+        Command.Succeed(place.Network, place.Lake, "--route", "probe", "--weights", "conductance", "--want", "index,links");
         object?[] index = Assert.Single(DuckLake.Query($"""
             SELECT kirchhoff_index_upper FROM {DuckLake.Table(place.Lake, "index")}
             """));
@@ -97,7 +97,7 @@ public sealed class Extreme_conductances
     {
         using Place place = new();
         File.WriteAllText(place.Network, network);
-        CliResult result = Command.Estimate(place.Network, place.Lake, "--weights", "conductance");
+        CliResult result = Command.Estimate(place.Network, place.Lake, "--route", "probe", "--weights", "conductance");
         if (result.Exit != 0)
         {
             Command.Refused(result, 3);

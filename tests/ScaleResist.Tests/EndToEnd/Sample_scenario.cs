@@ -16,7 +16,7 @@ public sealed class TwoNights : IDisposable
         for (int night = 1; night <= 2; night++)
         {
             Command.Succeed(Command.Sample("links.csv"), Lake, "--run-id", $"night-{night}", "--seed", $"{night}",
-                "--weights", "conductance", "--pairs", Command.Sample("pairs.csv"), "--node-weights", Command.Sample("sites.csv"),
+                "--route", "probe", "--weights", "conductance", "--pairs", Command.Sample("pairs.csv"), "--node-weights", Command.Sample("sites.csv"),
                 "--want", "index,components,nodes,links,pairs,coordinates");
         }
     }

@@ -81,13 +81,13 @@ public sealed class Traps
         Command.Succeed(place.Network, place.Lake, "--weights", "none");
     }
 
-    private static void Run(Place place, string network, string meaning, int seed, string pairs = Pairs)
+    private static void Run(Place place, string network, string meaning, int seed, string pairs = Pairs, string route = "probe")
     {
         string file = Path.Combine(place.Folder, "pairs.csv");
         File.WriteAllText(file, pairs);
         File.WriteAllText(place.Network, network);
         Command.Succeed(place.Network, place.Lake, "--run-id", "a", "--weights", meaning, "--pairs", file, "--want", "links",
-            "--seed", $"{seed}");
+            "--route", route, "--seed", $"{seed}");
     }
 
     private static List<object?[]> OfPairs(Place place) => DuckLake.Query($"""
