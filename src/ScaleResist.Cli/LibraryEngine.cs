@@ -1,5 +1,6 @@
 // Joins the command to the library: read, build, estimate. The rows as read are given up before the estimate begins.
 
+using System.Diagnostics;
 using ScaleResist.Cli.Commands;
 using ScaleResist.Cli.Lake;
 using ScaleResist.Graphs;
@@ -14,6 +15,7 @@ internal sealed class LibraryEngine : IEstimateEngine
     public EstimateOutcome Run(EstimateRequest request, Func<InputFacts, ITableSink> openSink, IRunObserver observer,
         CancellationToken interrupted)
     {
+        long begin = Stopwatch.GetTimestamp();
         Network network = Load(request.Network, request.Reading, observer, interrupted);
         EstimateInputs inputs = new()
         {
@@ -25,7 +27,7 @@ internal sealed class LibraryEngine : IEstimateEngine
         try
         {
             EstimateSummary summary =
-                EstimateRun.Execute(network, request.Plan, inputs, openSink(network.Input), observer, interrupted);
+                EstimateRun.Execute(network, Left(request.Plan, begin), inputs, openSink(network.Input), observer, interrupted);
             return new EstimateOutcome(network.Input, network.Cleaning, summary);
         }
         catch (SolveException unsolved)
@@ -35,6 +37,10 @@ internal sealed class LibraryEngine : IEstimateEngine
                 "its conductances lie too far apart: merge nodes that nothing parts, or drop links that carry nothing", unsolved);
         }
     }
+
+    // Of a time budget, what reading and building have left.
+    private static EstimatePlan Left(EstimatePlan plan, long begin) => plan.TimeBudget is not TimeSpan budget ? plan
+        : plan with { TimeBudget = TimeSpan.FromSeconds(Math.Max(0, (budget - Stopwatch.GetElapsedTime(begin)).TotalSeconds)) };
 
     public SurveyOutcome Survey(SurveyRequest request, IRunObserver observer, CancellationToken interrupted)
     {

@@ -53,6 +53,8 @@ internal sealed record RunRecord
 
     public required IReadOnlyList<PhaseTime> Phases { get; init; }
 
+    public required ExactFacts? Exact { get; init; }
+
     public required SolverFacts? Solver { get; init; }
 
     /// <summary>Foster's theorem as a check, or null where nothing was probed.</summary>
@@ -85,6 +87,7 @@ internal sealed record RunRecord
                 outcome.Summary.Bridges),
             Machine = Machine.Here(),
             Phases = phases,
+            Exact = outcome.Summary.Exact,
             Solver = outcome.Summary.Solver,
             Foster = FosterCheck.Of(outcome.Summary),
             Index = [.. outcome.Summary.Index.Take(MostIndexRows)],

@@ -28,8 +28,10 @@ internal static class SummaryText
             Estimate index = largest.KirchhoffIndex;
             double confidence = record.Plan["confidence"]?.GetValue<double>() ?? double.NaN;
             yield return Entry("Kirchhoff",
-                $"index {Numbers.Value(index.Value)}, {Numbers.Value(100 * confidence, 4)} % interval "
-                + $"{Numbers.Value(index.Lower)} to {Numbers.Value(index.Upper)}"
+                (index.StandardError == 0
+                    ? $"index {Numbers.Value(index.Value, 12)}, exact"
+                    : $"index {Numbers.Value(index.Value)}, {Numbers.Value(100 * confidence, 4)} % interval "
+                        + $"{Numbers.Value(index.Lower)} to {Numbers.Value(index.Upper)}")
                 + (record.Network.Components > 1 ? " (largest component)" : "")
                 + $"; mean resistance {Numbers.Value(largest.MeanResistance, 5)}");
         }
@@ -49,6 +51,12 @@ internal static class SummaryText
                 + $"{Numbers.Value(link.Resistance.Value, 5)}"
                 + (link.Resistance.StandardError > 0 ? $" +- {Numbers.Value(link.Resistance.StandardError, 2)}" : ""));
             heading = "";
+        }
+        if (record.Exact is ExactFacts exact)
+        {
+            yield return Entry("exact", $"{Numbers.Count(exact.Entries)} entries, {Numbers.Value(exact.Operations / 1e9, 3)} Gflop; foreseen "
+                + $"{Numbers.Duration(exact.ForecastSeconds)} and {Numbers.Bytes(exact.ForecastBytes)}, took {Numbers.Duration(exact.Seconds)}"
+                + (exact.ProbedBlocks > 0 ? $"; {Numbers.Many(exact.ProbedBlocks, "block")} left to the probes" : ""));
         }
         if (record.Solver is SolverFacts solver)
         {

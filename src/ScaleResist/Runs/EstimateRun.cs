@@ -30,10 +30,12 @@ public static class EstimateRun
     /// <param name="cancel">Ends the run early with <see cref="OperationCanceledException"/>.</param>
     /// <returns>What to tell of the run.</returns>
     /// <exception cref="SolveException">A solve did not reach its tolerance.</exception>
+    /// <exception cref="BudgetException">The plan does not fit its budgets.</exception>
     public static EstimateSummary Execute(
         Network network, EstimatePlan plan, EstimateInputs inputs, ITableSink sink, IRunObserver observer,
         CancellationToken cancel)
     {
+        long begin = Stopwatch.GetTimestamp();
         Phases phases = new(observer);
         Dictionary<string, long> rows = [];
         ColumnKind label = LabelColumns.KindOf(network.Labels);
@@ -48,6 +50,7 @@ public static class EstimateRun
         NodeSums? nodes = null;
         LinkRows? links = null;
         List<IndexEntry> index = [];
+        Want left = Want.None; // to the probes
         if ((plan.Want & ~Want.Components) != 0)
         {
             route = phases.Do("choosing a route", network.LinkCount, "links", () => RouteChoice.Of(blocks, plan, cancel));
@@ -57,13 +60,14 @@ public static class EstimateRun
                     () => ExactResults.Of(route.Part, route.Symbolic!, route.Laplacian!, inputs.NodeWeights, plan.Threads, cancel));
             }
             // On the probed route a tree has exact links, nodes and index; its pairs are left.
-            Want left = route.AllExact ? plan.Want & (exact is null ? Want.Pairs | Want.Coordinates : Want.Coordinates) : plan.Want;
+            left = route.AllExact ? plan.Want & (exact is null ? Want.Pairs | Want.Coordinates : Want.Coordinates) : plan.Want;
             if (left != Want.None)
             {
+                RunCost.CheckMemory(network, plan with { Want = left });
                 solver = phases.Do("preparing", network.LinkCount, "links",
                     () => new LaplacianSolver(network, plan.Probes, plan.Seed, cancel));
                 probed = phases.Do("solving", plan.Probes, "probes",
-                    () => ProbedEstimates.Run(blocks, plan with { Want = left }, inputs, exact?.ExactBlocks, !route.AllExact, solver, observer, cancel));
+                    () => ProbedEstimates.Run(blocks, Left(), inputs, exact?.ExactBlocks, !route.AllExact, solver, observer, cancel));
             }
             if ((plan.Want & (Want.Index | Want.Nodes)) != 0)
                 nodes = probed?.Nodes ?? new NodeSums(blocks, inputs.NodeWeights, exact?.ExactBlocks);
@@ -103,6 +107,16 @@ public static class EstimateRun
             Index = index,
             CriticalLinks = plan.Want.HasFlag(Want.Links) ? links!.Critical : [],
             FosterSum = links?.FosterSums.Sum(),
+            Exact = exact is null ? null : new ExactFacts
+            {
+                ProbedBlocks = route!.Probed.Count(left => left),
+                Entries = route.Forecast!.Entries,
+                Operations = route.Forecast.Operations,
+                ForecastSeconds = route.Forecast.Seconds,
+                Seconds = phases.Times.Where(phase => phase.Name == "factorising" || phase.Name.StartsWith("writing ", StringComparison.Ordinal))
+                    .Sum(phase => phase.Seconds),
+                ForecastBytes = route.Forecast.Bytes,
+            },
             Solver = solver is null ? null : new SolverFacts
             {
                 Preconditioner = solver.Preconditioner,
@@ -117,6 +131,8 @@ public static class EstimateRun
             Phases = phases.Times,
             Rows = rows,
         };
+
+        EstimatePlan Left() => plan with { Want = left, TimeBudget = plan.TimeBudget - Stopwatch.GetElapsedTime(begin) };
 
         LinkRows WalkLinks()
         {

@@ -97,6 +97,28 @@ public sealed record SolverFacts
     public required long Retried { get; init; }
 }
 
+/// <summary>How the exact part went.</summary>
+public sealed record ExactFacts
+{
+    /// <summary>Blocks left to the probes; 0 where all is exact.</summary>
+    public required int ProbedBlocks { get; init; }
+
+    /// <summary>Entries of the factor.</summary>
+    public required long Entries { get; init; }
+
+    /// <summary>Floating-point operations of factorisation and selected inversion.</summary>
+    public required double Operations { get; init; }
+
+    /// <summary>Seconds foreseen for what comes after the choice of a route, without probes.</summary>
+    public required double ForecastSeconds { get; init; }
+
+    /// <summary>Seconds that it took.</summary>
+    public required double Seconds { get; init; }
+
+    /// <summary>Peak resident memory foreseen.</summary>
+    public required long ForecastBytes { get; init; }
+}
+
 /// <summary>Wall time of a phase.</summary>
 /// <param name="Name">The phase as the observer saw it.</param>
 /// <param name="Seconds">Wall-clock seconds.</param>
@@ -125,6 +147,9 @@ public sealed record EstimateSummary
 
     /// <summary>Sum over components of the estimated spanning probabilities, or null where nothing was probed.</summary>
     public required double? FosterSum { get; init; }
+
+    /// <summary>The exact part, or null where nothing but bridges was exact.</summary>
+    public required ExactFacts? Exact { get; init; }
 
     /// <summary>Solver statistics, or null where nothing was solved.</summary>
     public required SolverFacts? Solver { get; init; }

@@ -1,6 +1,7 @@
 // The probed route: draws panels, solves them side by side, and adds each to the sums in the order of its number.
 // Invariant: results depend on network, seed and number of probes; not on threads.
 
+using System.Diagnostics;
 using ScaleResist.Estimating;
 using ScaleResist.Graphs;
 using ScaleResist.Solving;
@@ -51,6 +52,7 @@ internal sealed class ProbedEstimates
         {
             for (int i = 0; i < slots.Length; i++)
                 slots[i] = new Slot(new ProbePanel(network, plan.Seed), solver.NewWorkspace<float>());
+            long begin = Stopwatch.GetTimestamp();
             for (int first = 0; first < panels; first += slots.Length)
             {
                 int count = Math.Min(slots.Length, panels - first);
@@ -65,6 +67,8 @@ internal sealed class ProbedEstimates
                 Together(work, plan.Threads);
                 for (int i = 0; i < count; i++)
                     sums.Add(slots[i].Panel, plan.Threads);
+                if (first == 0)
+                    RunCost.CheckTime(network, plan, (panels + slots.Length - 1) / slots.Length, Stopwatch.GetElapsedTime(begin));
                 observer.Report(Math.Min(plan.Probes, (first + count) * ProbePanel.Width));
             }
         }

@@ -1,5 +1,6 @@
 // Rough prices of a run beside its solves: memory and writing. The rates are those of one processor; a factor of two is what they are for.
 
+using System.Globalization;
 using ScaleResist.Estimating;
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
@@ -32,5 +33,33 @@ internal static class RunCost
         double panels = (double)slots * PanelsPerThread * network.NodeCount * Panel<float>.Width * sizeof(float);
         double coordinates = plan.Want.HasFlag(Want.Coordinates) ? (double)network.NodeCount * plan.Probes * sizeof(float) : 0;
         return (long)(BaseBytes + NetworkBytes(network) + (16.0 * network.LinkCount) + panels + coordinates);
+    }
+
+    /// <summary>Refuses the probed route where it is foreseen to need more memory than the budget.</summary>
+    /// <exception cref="BudgetException">It does not fit.</exception>
+    public static void CheckMemory(Network network, EstimatePlan plan)
+    {
+        long bytes = ProbedBytes(network, plan);
+        if (bytes > plan.MemoryBudget)
+        {
+            throw new BudgetException(string.Create(CultureInfo.InvariantCulture,
+                $"the probes need about {bytes / 1e9:0.0} GB, and --memory-budget is {plan.MemoryBudget / 1e9:0.0} GB; use fewer --threads, "
+                + $"fewer tables in --want or a larger budget"));
+        }
+    }
+
+    /// <summary>Refuses the probed route where, after the first batch of panels, the rest is foreseen to take longer than the budget.</summary>
+    /// <exception cref="BudgetException">It does not fit.</exception>
+    public static void CheckTime(Network network, EstimatePlan plan, int batches, TimeSpan batch)
+    {
+        if (plan.TimeBudget is not TimeSpan budget)
+            return;
+        double writing = WritingSeconds(network, plan), all = (batches * batch.TotalSeconds) + writing;
+        if (all <= budget.TotalSeconds)
+            return;
+        int affordable = (int)Math.Min(int.MaxValue, Math.Max(0, (budget.TotalSeconds - writing) / batch.TotalSeconds * plan.Probes / batches));
+        string mend = affordable >= 4 ? $"use --probes {affordable}, or a larger budget" : "use a larger budget";
+        throw new BudgetException(string.Create(CultureInfo.InvariantCulture,
+            $"{plan.Probes} probes would take about {all:N0} s, and {budget.TotalSeconds:N0} s of --time-budget are left; {mend}"));
     }
 }
