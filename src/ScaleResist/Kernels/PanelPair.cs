@@ -1,5 +1,7 @@
 // Sixteen columns in doubles, as many as a panel of floats has: two panels of eight, side by side.
 
+using System.Runtime.InteropServices;
+
 namespace ScaleResist.Kernels;
 
 /// <summary>n x 16 doubles: columns 0 to 7 in the first panel, 8 to 15 in the second.</summary>
@@ -26,6 +28,13 @@ public sealed class PanelPair(int rows) : IDisposable
 
     /// <summary>One value.</summary>
     public ref double At(int node, int column) => ref this[column / Half].Row(node)[column % Half];
+
+    /// <summary>Sets rows to zero.</summary>
+    public unsafe void Clear(int start, int end)
+    {
+        foreach (Panel<double> half in (ReadOnlySpan<Panel<double>>)[First, Second])
+            NativeMemory.Clear(half.Pointer + ((long)start * Half), (nuint)(end - start) * 64);
+    }
 
     /// <inheritdoc/>
     public void Dispose()

@@ -37,6 +37,7 @@ internal sealed class ProbedEstimates
             Pairs = plan.Want.HasFlag(Want.Pairs) ? new PairSums(network, bridges, inputs.Pairs ?? []) : null,
             Coordinates = plan.Want.HasFlag(Want.Coordinates) ? new Coordinates(network, plan.Probes) : null,
         };
+        sums.Pairs?.SolveFew(solver, plan.Probes, plan.Threads, cancel);
         int panels = ProbePanel.CountFor(plan.Probes);
         bool forms = plan.Want.HasFlag(Want.Index);
         Slot[] slots = new Slot[Math.Min(plan.Threads, panels)];

@@ -64,9 +64,9 @@ internal sealed class RefinedGradient(
     {
         report.Iterations = 0;
         report.Lanczos.Clear();
+        x.Clear(start, end);
         for (int half = 0; half < 2; half++)
         {
-            ConjugateGradient.Clear(x[half], start, end);
             LaneSums squares = PanelKernels.Squares(b[half], start, end);
             for (int lane = 0; lane < PanelPair.Half; lane++)
                 size[(half * PanelPair.Half) + lane] = squares[lane];

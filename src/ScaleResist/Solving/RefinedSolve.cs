@@ -62,9 +62,10 @@ public sealed partial class LaplacianSolver
         ClearSingles(z.Second);
     }
 
-    // One component of more than one node.
+    // One component of more than one node. Leaves a column that doubles fall short on as it is where the caller has a certificate of its own.
     internal void SolveRefined(
-        int number, PanelPair b, PanelPair z, int columns, double tolerance, RefinedWorkspace workspace, CancellationToken cancel)
+        int number, PanelPair b, PanelPair z, int columns, double tolerance, RefinedWorkspace workspace, CancellationToken cancel,
+        bool certified = false)
     {
         solvers[number].Solve(b, z, tolerance, workspace, cancel);
         SolveReport report = workspace.Report;
@@ -89,7 +90,10 @@ public sealed partial class LaplacianSolver
                 for (int j = 0; j < some.Length; j++)
                     b2.Row(u)[j] = b.At(u, some[j]);
             }
-            SolveInDoubles(number, b2, z2, some.Length, tolerance, doubles, some.Length, cancel);
+            if (certified)
+                solvers[number].Solve(b2, z2, tolerance, doubles, cancel);
+            else
+                SolveInDoubles(number, b2, z2, some.Length, tolerance, doubles, some.Length, cancel);
             for (int u = component.Start; u < component.End; u++)
             {
                 for (int j = 0; j < some.Length; j++)
