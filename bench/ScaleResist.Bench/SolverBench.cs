@@ -40,8 +40,9 @@ internal static class SolverBench
             + $"Times in ms a right-hand side, the least of {Rounds} rounds, "
             + "in brackets iterations and the true relative residual.\n");
         Console.WriteLine("| network | nodes | links | core | set-up s | us a link | preconditioner | 16 floats | 2 threads | gain "
-            + "| one at a time, float | gain of 16 | one at a time, double | gain of 16 | 8 doubles to 1e-6 |");
-        Console.WriteLine(string.Concat(Enumerable.Repeat("| --- ", 15)) + "|");
+            + "| one at a time, float | gain of 16 | one at a time, double | gain of 16 | 8 doubles to 1e-6 "
+            + "| 16 refined to 1e-6 | gain |");
+        Console.WriteLine(string.Concat(Enumerable.Repeat("| --- ", 17)) + "|");
         foreach ((string name, FamilyPlan plan) in Families)
         {
             if (only is not null && !name.StartsWith(only, StringComparison.Ordinal))
@@ -85,12 +86,14 @@ internal static class SolverBench
         Timing two = Least(round => Solve(network, solver, [first.B, second.B], [first.Z, second.Z], tolerance, round == 0));
         (Timing floats, Timing doubles) = OneAtATime(network, solver, first.B);
         Timing twice = InDoubles(network, solver, first.B);
+        Timing refined = Refined(network, solver, first.B);
         Console.WriteLine(
             $"| {name} | {network.NodeCount:N0} | {network.LinkCount:N0} | {network.NodeCount - solver.Eliminated:N0} "
             + $"| {setUp:0.00} | {setUp / network.LinkCount * 1e6:0.00} | {solver.Preconditioner} "
             + $"| {one} | {two} | {one.Milliseconds / two.Milliseconds:0.00} "
             + $"| {floats} | {floats.Milliseconds / one.Milliseconds:0.0} "
-            + $"| {doubles} | {doubles.Milliseconds / one.Milliseconds:0.0} | {twice} |");
+            + $"| {doubles} | {doubles.Milliseconds / one.Milliseconds:0.0} | {twice} "
+            + $"| {refined} | {twice.Milliseconds / refined.Milliseconds:0.00} |");
     }
 
     // The panels' solver stops by the error in the energy norm: a tolerance for that whose residual is small enough, but not by much.
@@ -143,6 +146,28 @@ internal static class SolverBench
         }
         double tolerance = ToleranceFor(Twice, 1e-5, t => Solve(network, solver, [b2], [z2], t, true).Residual);
         return Least(round => Solve(network, solver, [b2], [z2], tolerance, round == 0));
+    }
+
+    private static Timing Refined(Network network, LaplacianSolver solver, Panel<float> b)
+    {
+        using PanelPair b2 = new(network.NodeCount), z2 = new(network.NodeCount);
+        using RefinedWorkspace workspace = solver.NewRefinedWorkspace();
+        for (int u = 0; u < network.NodeCount; u++)
+        {
+            for (int column = 0; column < PanelPair.Width; column++)
+                b2.At(u, column) = b.Row(u)[column];
+        }
+        double tolerance = ToleranceFor(Twice, 1e-5, t => Time(t, true).Residual);
+        return Least(round => Time(tolerance, round == 0));
+
+        Timing Time(double tolerance, bool check)
+        {
+            long begin = Stopwatch.GetTimestamp();
+            solver.Solve(b2, z2, PanelPair.Width, tolerance, workspace, default);
+            double time = Stopwatch.GetElapsedTime(begin).TotalMilliseconds / PanelPair.Width;
+            double residual = check ? Math.Max(Residual(network, b2.First, z2.First), Residual(network, b2.Second, z2.Second)) : 0;
+            return new(time, residual, workspace.Report.Iterations);
+        }
     }
 
     private static (Timing Floats, Timing Doubles) OneAtATime(Network network, LaplacianSolver solver, Panel<float> b)

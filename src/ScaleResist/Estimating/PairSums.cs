@@ -1,34 +1,59 @@
-// Requested pairs: the same residuals as for links, for any two nodes.
-// Invariant: two nodes of different components get +infinity, one node twice gets 0, a linked pair gets the link's own estimate.
+// Requested pairs: where they are few, each is solved and enclosed; else the same residuals as for links, for any two nodes.
+// Invariant: two nodes of different components get +infinity, one node twice gets 0, and what is not solved is estimated as a link would be.
 
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
+using ScaleResist.Solving;
 
 namespace ScaleResist.Estimating;
 
-/// <summary>Sums of squared residuals for requested pairs, panel by panel.</summary>
+/// <summary>Enclosures of requested pairs, or sums of squared residuals, panel by panel.</summary>
 public sealed class PairSums
 {
+    // An enclosure wider than this is no result: where conductances lie so far apart that doubles cannot solve, the probes say what is known.
+    private const double WidestEnclosure = 1e-3;
+
     private readonly Network network;
     private readonly Bridges bridges;
     private readonly IReadOnlyList<(int U, int V)> pairs;
+    private readonly Func<int, int, bool>? isExact;
     private readonly int[] componentOf;
     private readonly double[] shorted;
     private readonly double[] single;
+    private readonly Dictionary<int, Enclosure> solved = [];
     private int probes;
 
     /// <summary>Empty sums.</summary>
     /// <param name="network">The network.</param>
     /// <param name="bridges">Its bridges.</param>
     /// <param name="pairs">Internal nodes.</param>
-    public PairSums(Network network, Bridges bridges, IReadOnlyList<(int U, int V)> pairs)
+    /// <param name="isExact">Whether a pair is found exactly elsewhere, so that nothing is done for it here; null: none is.</param>
+    public PairSums(Network network, Bridges bridges, IReadOnlyList<(int U, int V)> pairs, Func<int, int, bool>? isExact = null)
     {
+        this.isExact = isExact;
         this.network = network;
         this.bridges = bridges;
         this.pairs = pairs;
         componentOf = network.ComponentOfNodes();
         shorted = new double[pairs.Count];
         single = new double[pairs.Count];
+    }
+
+    /// <summary>
+    /// Solves and encloses the pairs that are not exact, if at most <paramref name="most"/> are: a solve costs as much as a probe, and tells all.
+    /// Comes before the first panel.
+    /// </summary>
+    public void SolveFew(LaplacianSolver solver, int most, int threads, CancellationToken cancel)
+    {
+        int[] open = [.. Enumerable.Range(0, pairs.Count).Where(IsOpen)];
+        if (open.Length == 0 || open.Length > most)
+            return;
+        CertifiedPairs certified = CertifiedPairs.Solve(network, solver, [.. open.Select(i => pairs[i])], threads, cancel);
+        for (int i = 0; i < open.Length; i++)
+        {
+            if (certified[i].RelativeWidth <= WidestEnclosure)
+                solved[open[i]] = certified[i];
+        }
     }
 
     /// <summary>Adds a solved panel. Panels are added in order of their numbers.</summary>
@@ -38,12 +63,10 @@ public sealed class PairSums
         float* b = panel.B.Pointer;
         for (int i = 0; i < pairs.Count; i++)
         {
+            if (solved.ContainsKey(i) || !IsOpen(i))
+                continue;
             (int u, int v) = pairs[i];
-            if (u == v || componentOf[u] != componentOf[v])
-                continue;
             long arc = network.FindArc(u, v);
-            if (arc >= 0 && bridges.Contains(network.LinkBetween(u, v)))
-                continue;
             LinkBounds bounds = BoundsOf(u, v, arc);
             float unit = arc < 0 ? 0 : (float)Math.Sqrt(bounds.Upper);
             (float one, float other) = ProbeKernels.LinkSquares(
@@ -55,8 +78,25 @@ public sealed class PairSums
         probes += panel.Probes;
     }
 
-    /// <summary>The estimate of a pair, and how it was found: <c>bridge</c>, <c>exact</c> or <c>probe</c>.</summary>
+    /// <summary>What is known of a pair, and how it was found: <c>bridge</c>, <c>exact</c>, <c>solve</c> or <c>probe</c>.</summary>
     public (Estimate Resistance, string Method) Estimate(int pair, double quantile)
+    {
+        if (Known(pair) is { } known)
+            return known;
+        if (solved.TryGetValue(pair, out Enclosure enclosure))
+            return (new Estimate(enclosure.Middle, 0, enclosure.Lower, enclosure.Upper), "solve");
+        (int u, int v) = pairs[pair];
+        long arc = network.FindArc(u, v);
+        LinkBounds bounds = BoundsOf(u, v, arc);
+        return (arc < 0
+            ? LinkLikelihood.EstimatePair(bounds, shorted[pair], probes, quantile)
+            : LinkLikelihood.Estimate(bounds, shorted[pair], single[pair], probes, quantile), "probe");
+    }
+
+    private bool IsOpen(int pair) => Known(pair) is null && isExact?.Invoke(pairs[pair].U, pairs[pair].V) != true;
+
+    // What needs neither probe nor solve.
+    private (Estimate Resistance, string Method)? Known(int pair)
     {
         (int u, int v) = pairs[pair];
         if (u == v)
@@ -64,12 +104,9 @@ public sealed class PairSums
         if (componentOf[u] != componentOf[v])
             return (Estimating.Estimate.Exact(double.PositiveInfinity), "exact");
         long arc = network.FindArc(u, v);
-        if (arc >= 0 && bridges.Contains(network.LinkBetween(u, v)))
-            return (Estimating.Estimate.Exact(1 / network.Conductance(arc)), "bridge");
-        LinkBounds bounds = BoundsOf(u, v, arc);
-        return (arc < 0
-            ? LinkLikelihood.EstimatePair(bounds, shorted[pair], probes, quantile)
-            : LinkLikelihood.Estimate(bounds, shorted[pair], single[pair], probes, quantile), "probe");
+        return arc >= 0 && bridges.Contains(network.LinkBetween(u, v))
+            ? (Estimating.Estimate.Exact(1 / network.Conductance(arc)), "bridge")
+            : null;
     }
 
     private LinkBounds BoundsOf(int u, int v, long arc) => arc < 0

@@ -45,6 +45,7 @@ public static class EstimateRun
 
         RouteChoice? route = null;
         ExactResults? exact = null;
+        ExactPairs? exactPairs = null;
         LaplacianSolver? solver = null;
         ProbedEstimates? probed = null;
         NodeSums? nodes = null;
@@ -59,6 +60,8 @@ public static class EstimateRun
                 exact = phases.Do("factorising", route.Forecast!.Entries, "entries",
                     () => ExactResults.Of(route.Part, route.Symbolic!, route.Laplacian!, inputs.NodeWeights, plan.Threads, cancel));
             }
+            if (exact is not null && plan.Want.HasFlag(Want.Pairs))
+                exactPairs = new ExactPairs(exact);
             // On the probed route a tree has exact links, nodes and index; its pairs are left.
             left = route.AllExact ? plan.Want & (exact is null ? Want.Pairs | Want.Coordinates : Want.Coordinates) : plan.Want;
             if (left != Want.None)
@@ -67,7 +70,7 @@ public static class EstimateRun
                 solver = phases.Do("preparing", network.LinkCount, "links",
                     () => new LaplacianSolver(network, plan.Probes, plan.Seed, cancel));
                 probed = phases.Do("solving", plan.Probes, "probes",
-                    () => ProbedEstimates.Run(blocks, Left(), inputs, exact?.ExactBlocks, !route.AllExact, solver, observer, cancel));
+                    () => ProbedEstimates.Run(blocks, Left(), inputs, exact?.ExactBlocks, exactPairs is null ? null : exactPairs.Holds, !route.AllExact, solver, observer, cancel));
             }
             if ((plan.Want & (Want.Index | Want.Nodes)) != 0)
                 nodes = probed?.Nodes ?? new NodeSums(blocks, inputs.NodeWeights, exact?.ExactBlocks);
@@ -88,7 +91,6 @@ public static class EstimateRun
         if (plan.Want.HasFlag(Want.Pairs))
         {
             IReadOnlyList<(int U, int V)> pairs = inputs.Pairs ?? [];
-            using ExactPairs? exactPairs = exact is null ? null : new ExactPairs(exact);
             PairSums sums = probed?.Pairs ?? new PairSums(network, blocks.Bridges, pairs);
             Write("pairs", Tables.Pairs(label), pairs.Count,
                 w => PairRows.Write(network, pairs, sums, exactPairs, plan.Confidence, plan.Threads, w));

@@ -116,7 +116,7 @@ public sealed record NetworkSurvey
         double prepared = Stopwatch.GetElapsedTime(begin).TotalSeconds;
         begin = Stopwatch.GetTimestamp();
         ProbedEstimates.Run(
-            blocks, plan with { Probes = ProbePanel.Width, ModeError = plan.EffectiveModeError }, new EstimateInputs(), null, true, solver,
+            blocks, plan with { Probes = ProbePanel.Width, ModeError = plan.EffectiveModeError }, new EstimateInputs(), null, null, true, solver,
             new Silent(), cancel);
         double panel = Stopwatch.GetElapsedTime(begin).TotalSeconds;
         int panels = ProbePanel.CountFor(plan.Probes), rounds = (panels + plan.Threads - 1) / plan.Threads;

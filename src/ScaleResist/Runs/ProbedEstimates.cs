@@ -24,6 +24,7 @@ internal sealed class ProbedEstimates
     /// <param name="plan">What is wanted of the probes.</param>
     /// <param name="inputs">Pairs and node weights.</param>
     /// <param name="exact">Blocks that need no probes, or null.</param>
+    /// <param name="isExact">Whether a pair needs no probes; null: all do.</param>
     /// <param name="links">Whether links are probed.</param>
     /// <param name="solver">Prepared for the network.</param>
     /// <param name="observer">Hears of every batch.</param>
@@ -33,6 +34,7 @@ internal sealed class ProbedEstimates
         EstimatePlan plan,
         EstimateInputs inputs,
         ExactBlocks? exact,
+        Func<int, int, bool>? isExact,
         bool links,
         LaplacianSolver solver,
         IRunObserver observer,
@@ -43,9 +45,10 @@ internal sealed class ProbedEstimates
         {
             Links = links ? new LinkSums(network, blocks.Bridges) : null,
             Nodes = (plan.Want & (Want.Index | Want.Nodes)) != 0 ? new NodeSums(blocks, inputs.NodeWeights, exact) : null,
-            Pairs = plan.Want.HasFlag(Want.Pairs) ? new PairSums(network, blocks.Bridges, inputs.Pairs ?? []) : null,
+            Pairs = plan.Want.HasFlag(Want.Pairs) ? new PairSums(network, blocks.Bridges, inputs.Pairs ?? [], isExact) : null,
             Coordinates = plan.Want.HasFlag(Want.Coordinates) ? new Coordinates(network, plan.Probes) : null,
         };
+        sums.Pairs?.SolveFew(solver, plan.Probes, plan.Threads, cancel);
         int panels = ProbePanel.CountFor(plan.Probes);
         Slot[] slots = new Slot[Math.Min(plan.Threads, panels)];
         try

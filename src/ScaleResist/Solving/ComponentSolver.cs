@@ -37,7 +37,7 @@ public sealed class SolverWorkspace<T> : IDisposable
 }
 
 /// <summary>Solves on one component of more than one node.</summary>
-internal sealed class ComponentSolver
+internal sealed partial class ComponentSolver
 {
 
     private readonly Laplacian laplacian;

@@ -219,7 +219,7 @@ public static class ConjugateGradient
         Buffer.MemoryCopy(from.Pointer + offset, to.Pointer + offset, (end - start) * 64L, (end - start) * 64L);
     }
 
-    private static unsafe void Clear<T>(Panel<T> panel, int start, int end)
+    internal static unsafe void Clear<T>(Panel<T> panel, int start, int end)
         where T : unmanaged =>
         NativeMemory.Clear(panel.Pointer + ((long)start * Panel<T>.Width), (nuint)(end - start) * 64);
 }

@@ -43,7 +43,7 @@ public sealed class SolveStatistics
 /// <summary>
 /// Solves Laplacian systems of one network. Prepared once; serves several threads, each with its own panels and workspace.
 /// </summary>
-public sealed class LaplacianSolver
+public sealed partial class LaplacianSolver
 {
     private readonly Network network;
     private readonly ComponentSolver[] solvers;

@@ -109,6 +109,7 @@ internal sealed class FakeEngine : IEstimateEngine
         Links = Links,
         Components = 2,
         Bridges = 34,
+        Exact = null,
         Index =
         [
             new IndexEntry

@@ -148,14 +148,15 @@ public sealed class Sample_scenario(TwoNights nights) : IClassFixture<TwoNights>
     }
 
     [Fact]
-    public void The_coordinates_formula_gives_the_resistance_of_pairs_without_a_link()
+    public void Few_pairs_are_solved_and_the_coordinates_formula_agrees_within_its_error()
     {
         List<object?[]> rows = DuckLake.Query($"""
-            SELECT abs(formula - resistance) / resistance FROM {ByCoordinates("pairs")} WHERE conductance IS NULL
+            SELECT abs(formula - resistance) / coordinates_se, resistance_se, method FROM {ByCoordinates("pairs")} WHERE conductance IS NULL
             """);
         // Of the 40 pairs, 2 lie across components and 7 are joined by a link.
         Assert.Equal(2 * 31, rows.Count);
-        Assert.All(rows, r => Assert.InRange((double)r[0]!, 0, 1e-4));
+        Assert.All(rows, r => Assert.Equal((0.0, "solve"), ((double)r[1]!, (string)r[2]!)));
+        Assert.InRange(rows.Count(r => (double)r[0]! <= 2), 56, 62);
     }
 
     [Fact]
