@@ -65,6 +65,9 @@ public sealed record EstimatePlan
     /// <summary>Threads to use; results do not depend on it.</summary>
     public int Threads { get; init; } = Environment.ProcessorCount;
 
+    /// <summary>Seconds that the automatic route gives to exactness: what is foreseen to take longer is probed.</summary>
+    public double AffordableSeconds { get; init; } = 120;
+
     /// <summary>Time that the run may be foreseen to take; null: as long as it takes.</summary>
     public TimeSpan? TimeBudget { get; init; }
 

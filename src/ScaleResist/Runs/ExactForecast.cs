@@ -32,22 +32,25 @@ public sealed record ExactForecast(long Entries, double Operations, double Secon
 /// <param name="Bytes">Memory it may be foreseen to need.</param>
 internal sealed record ExactBudget(double Seconds, double Bytes)
 {
-    // Where nobody names a budget, the automatic route takes the truth for up to two minutes.
-    private const double AffordableSeconds = 120;
     private const double ShareOfMemory = 0.75;
 
     /// <summary>Bounds on the order that are worth no closer look.</summary>
     public OrderLimits Limits { get; private init; }
 
+    // A large network of more entries a node than this would miss the two minutes; the search for its order should not cost half as much.
+    private static double WorthOrdering(Network network) => Math.Max(5e7, 100.0 * network.NodeCount);
+
     public static ExactBudget Of(EstimatePlan plan, Network network)
     {
-        double seconds = plan.TimeBudget?.TotalSeconds ?? (plan.Route == Route.Exact ? double.PositiveInfinity : AffordableSeconds);
+        double seconds = Math.Min(
+            plan.TimeBudget?.TotalSeconds ?? double.PositiveInfinity, plan.Route == Route.Exact ? double.PositiveInfinity : plan.AffordableSeconds);
         double bytes = plan.MemoryBudget ?? (ShareOfMemory * GC.GetGCMemoryInfo().TotalAvailableMemoryBytes);
         double room = Math.Max(0, bytes - RunCost.NetworkBytes(network));
         return new ExactBudget(seconds, bytes)
         {
             // A factor of so many entries takes 8 bytes each; 2 of its operations count as one squared length.
-            Limits = new OrderLimits((long)Math.Min(room / 8, seconds / ExactForecast.SecondsPerEntry),
+            Limits = new OrderLimits(
+                (long)Math.Min(Math.Min(room / 8, seconds / ExactForecast.SecondsPerEntry), plan.Route == Route.Exact ? double.MaxValue : WorthOrdering(network)),
                 seconds / ExactForecast.SecondsPerOperation),
         };
     }

@@ -141,7 +141,7 @@ public class CertifiedPairsTests
         string[] Methods((int, int)[] wanted)
         {
             MemorySink sink = new();
-            EstimateRun.Execute(network, new EstimatePlan { Want = Want.Pairs, Probes = 16 }, new EstimateInputs { Pairs = wanted },
+            EstimateRun.Execute(network, new EstimatePlan { Want = Want.Pairs, Route = Route.Probe, Probes = 16 }, new EstimateInputs { Pairs = wanted },
                 sink, new SilentObserver(), default);
             return sink["pairs"].Column<string>("method");
         }
