@@ -80,8 +80,8 @@ public class FillReducingOrderTests
     [Theory]
     [InlineData(2, 0)]
     [InlineData(3, 0.002)]
-    [InlineData(7, 0.06)]
-    public void Chordal_networks_fill_no_more_than_approximate_degrees_let_through(int k, double share)
+    [InlineData(7, 0.06)] // its hubs go last
+    public void Chordal_networks_fill_next_to_nothing(int k, double share)
     {
         // A k-tree: every further node joins a random clique of k. Its nodes of least degree are simplicial (Rose, Discrete Math. 7:317, 1974).
         Random random = new(k);
@@ -96,8 +96,8 @@ public class FillReducingOrderTests
         }
         Network network = TestNetworks.Unit([.. links]);
         long least = network.NodeCount + network.LinkCount;
-        int[] md = MinimumDegree.Order(PatternOf(network), network.NodeCount, OrderLimits.None, out _, default)!;
-        Console.WriteLine($"KTREE {k} {least} {EntriesOf(network)} {EliminationTree.Of(network.Laplacian, md).Entries}");
+        int[] order = MinimumDegree.Order(PatternOf(network), network.NodeCount, OrderLimits.None, out _, default)!;
+        Assert.InRange(EliminationTree.Of(network.Laplacian, order).Entries, least, 1.002 * least);
         Assert.InRange(EntriesOf(network), least, (1 + share) * least);
     }
 
