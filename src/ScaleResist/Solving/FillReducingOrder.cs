@@ -12,8 +12,8 @@ namespace ScaleResist.Solving;
 internal static class FillReducingOrder
 {
     private const double HubDegree = 10; // times the root of the number of nodes
-    private const double WorthDissecting = 1e4; // operations of the factor a node
-    private const double SquaresOfSeparator = 5; // of the first separator: the fill of square and cubic grids is 7.75 times or more
+    private const double WorthDissecting = 2e4; // operations of the factor a node
+    private const double SquaresOfSeparator = 5; // of the first separator; George's square grids take 7.75 log2 n
 
     /// <summary>All nodes in the order of elimination; the last one is to be grounded.</summary>
     /// <exception cref="InvalidOperationException">The graph has more arcs than an array can hold.</exception>

@@ -25,30 +25,52 @@ internal sealed record LevelGraph(int[] Start, int[] Neighbours, int[] ArcWeight
     public (LevelGraph Coarse, int[] CoarseOf) Coarsen(int heaviest)
     {
         int n = Count, count = 0;
-        int[] coarseOf = new int[n], first = new int[n], second = new int[n];
-        Array.Fill(coarseOf, -1);
-        for (int u = 0; u < n; u++)
+        int[] mate = new int[n];
+        Array.Fill(mate, -1);
+        foreach (int u in Shuffled(n))
         {
-            if (coarseOf[u] >= 0)
+            if (mate[u] >= 0)
                 continue;
-            int mate = u, weight = 0, mateWeight = 0;
+            int best = u, weight = 0, lightest = 0;
             for (int k = Start[u]; k < Start[u + 1]; k++)
             {
                 int v = Neighbours[k];
-                if (coarseOf[v] >= 0 || ArcWeights[k] < weight || NodeWeights[u] + NodeWeights[v] > heaviest)
+                if (mate[v] >= 0 || ArcWeights[k] < weight || NodeWeights[u] + NodeWeights[v] > heaviest)
                     continue;
-                if (ArcWeights[k] == weight && NodeWeights[v] >= mateWeight)
+                if (ArcWeights[k] == weight && NodeWeights[v] >= lightest)
                     continue;
-                (mate, weight, mateWeight) = (v, ArcWeights[k], NodeWeights[v]);
+                (best, weight, lightest) = (v, ArcWeights[k], NodeWeights[v]);
             }
-            first[count] = u;
-            second[count] = mate;
-            coarseOf[u] = coarseOf[mate] = count++;
+            mate[u] = best;
+            mate[best] = u;
         }
-        return (Contract(coarseOf, first, second, count), coarseOf);
+        int[] coarseOf = new int[n], first = new int[n];
+        for (int u = 0; u < n; u++)
+        {
+            coarseOf[u] = mate[u] < u ? coarseOf[mate[u]] : count;
+            if (mate[u] >= u)
+                first[count++] = u;
+        }
+        return (Contract(coarseOf, first, mate, count), coarseOf);
     }
 
-    private LevelGraph Contract(int[] coarseOf, int[] first, int[] second, int count)
+    // A fixed shuffle: pairs made in the order of rows would grow into strips.
+    private static int[] Shuffled(int n)
+    {
+        int[] order = new int[n];
+        for (int i = 0; i < n; i++)
+            order[i] = i;
+        ulong state = 0x9E3779B97F4A7C15;
+        for (int i = n - 1; i > 0; i--)
+        {
+            state = (state * 6364136223846793005) + 1442695040888963407;
+            int j = (int)Math.BigMul(state, (ulong)i + 1, out _);
+            (order[i], order[j]) = (order[j], order[i]);
+        }
+        return order;
+    }
+
+    private LevelGraph Contract(int[] coarseOf, int[] first, int[] mate, int count)
     {
         int[] start = new int[count + 1], nodes = new int[count], at = new int[count];
         int[] neighbours = new int[Neighbours.Length], arcs = new int[Neighbours.Length];
@@ -58,8 +80,8 @@ internal sealed record LevelGraph(int[] Start, int[] Neighbours, int[] ArcWeight
         {
             start[c] = write;
             Add(first[c]);
-            if (second[c] != first[c])
-                Add(second[c]);
+            if (mate[first[c]] != first[c])
+                Add(mate[first[c]]);
 
             void Add(int u)
             {

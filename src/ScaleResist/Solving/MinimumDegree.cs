@@ -75,7 +75,8 @@ internal sealed class MinimumDegree
 
     /// <summary>
     /// The first <paramref name="free"/> nodes in the order of elimination, or null where the factor is sure to exceed the limits, or
-    /// the search reads more than a factor within them would be worth. The others stay, and count in degrees and costs; links among them do not matter.
+    /// the search reads more than a factor within them would be worth. The others stay, and count in degrees and costs; links among
+    /// them do not matter.
     /// </summary>
     /// <param name="graph">n nodes.</param>
     /// <param name="free">Nodes to eliminate.</param>

@@ -7,7 +7,7 @@ namespace ScaleResist.Solving;
 /// <summary>Nested dissection down to small leaves, minimum degree there.</summary>
 internal sealed class NestedDissection
 {
-    private const int LeafNodes = 400;
+    private const int LeafNodes = 1000;
     private readonly OrderGraph root;
     private readonly CancellationToken cancel;
     private readonly int[] order;

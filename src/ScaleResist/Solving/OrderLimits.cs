@@ -18,7 +18,7 @@ internal struct ColumnCosts
     /// <summary>Sum of squared column lengths.</summary>
     public double Operations;
 
-    /// <summary>Adds <paramref name="width"/> columns that end in the same <paramref name="below"/> rows: lengths below + width, ..., below + 1.</summary>
+    /// <summary>Adds <paramref name="width"/> columns over the same <paramref name="below"/> rows: lengths below + width, ..., below + 1.</summary>
     public void Add(int width, int below)
     {
         double w = width, d = below;
@@ -27,8 +27,9 @@ internal struct ColumnCosts
     }
 
     /// <summary>
-    /// Whether what is still to come must exceed the limits: a clique, and <paramref name="nodes"/> nodes in all that have at least as many
-    /// neighbours by now. Their links, nodes x clique / 2 at least, are entries all, and the squares of N column lengths come to (their sum)^2 / N or more.
+    /// Whether what is still to come must exceed the limits: a clique, and <paramref name="nodes"/> nodes in all that have at least as
+    /// many neighbours by now. Their links, nodes x clique / 2 at least, are entries all, and the squares of N column lengths come to
+    /// (their sum)^2 / N or more.
     /// </summary>
     public readonly bool Exceed(OrderLimits limits, int nodes, int clique)
     {
