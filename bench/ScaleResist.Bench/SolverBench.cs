@@ -46,12 +46,16 @@ internal static class SolverBench
         {
             if (only is not null && !name.StartsWith(only, StringComparison.Ordinal))
                 continue;
-            EdgeListBuilder builder = new(weighted: plan.Decades > 0);
-            NetworkGenerator.Generate(plan, new Sink(builder));
-            Network network = NetworkBuilder.Build(
-                builder.Finish(new InputFacts { Path = name, Form = "memory", Sha256 = "", Columns = ["1", "2"] }));
-            Row(name, LargestComponent(network), solves);
+            Row(name, LargestComponent(Generated(name, plan)), solves);
         }
+    }
+
+    internal static Network Generated(string name, FamilyPlan plan)
+    {
+        EdgeListBuilder builder = new(weighted: plan.Decades > 0);
+        NetworkGenerator.Generate(plan, new Sink(builder));
+        return NetworkBuilder.Build(
+            builder.Finish(new InputFacts { Path = name, Form = "memory", Sha256 = "", Columns = ["1", "2"] }));
     }
 
     private static Network LargestComponent(Network network)
@@ -149,7 +153,7 @@ internal static class SolverBench
     {
         Elimination elimination = Elimination.Of(network.Laplacian, network.Components[0]);
         string name = solver.Preconditioner;
-        bool jacobi = name == "jacobi";
+        bool jacobi = name == "gauss-seidel";
         if (!jacobi && !name.StartsWith("sampled elimination", StringComparison.Ordinal))
             throw new InvalidOperationException($"no yardstick for '{name}'");
         bool inPlace = jacobi && elimination.Steps.Count == 0; // unweighted links stay unweighted

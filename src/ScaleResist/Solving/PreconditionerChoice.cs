@@ -40,6 +40,7 @@ internal sealed record PreconditionerChoice(string Name, string Reason, SampledF
     public static PreconditionerChoice ByTrial(
         Laplacian laplacian, int n, Func<Laplacian> core, int solves, ulong seed, CancellationToken cancel)
     {
+        SplitLaplacian split = SplitLaplacian.Of(laplacian);
         using Panel<float> b = new(n), x = new(n);
         using GradientWorkspace<float> workspace = new(n);
         SolveReport report = new();
@@ -52,19 +53,19 @@ internal sealed record PreconditionerChoice(string Name, string Reason, SampledF
         if (steps <= most && report.Reasons.All(reason => reason == StopReason.Converged))
         {
             double least = Enumerable.Range(0, Panel<float>.Width).Min(report.Lanczos.LeastRitzValue);
-            return new("jacobi", $"a trial needs {steps:0} steps", null, least);
+            return new("gauss-seidel", $"a trial needs {steps:0} steps", null, least);
         }
         Laplacian own = core();
         int samples = solves >= ManySolves && own.Neighbours.Length < PlanarDegree * n ? 2 : 1;
         return new(
-            $"sampled elimination, {samples} sample{(samples == 1 ? "" : "s")} an entry", $"a trial of jacobi foretells {steps:0} steps",
+            $"sampled elimination, {samples} sample{(samples == 1 ? "" : "s")} an entry", $"a trial of gauss-seidel foretells {steps:0} steps",
             SampledFactor.Of(own, samples, seed));
 
         // The steps needed, or those foretold from the pace of the second half.
         double Try(int limit)
         {
             ConjugateGradient.Solve(
-                laplacian, new Jacobi<float>(laplacian.Strengths), b, x, workspace, 0, n, default, new SolveLimits(0, limit, reduction), report, cancel);
+                new GaussSeidel<float>(split), b, x, workspace, 0, n, default, new SolveLimits(0, limit, reduction), report, cancel);
             if (report.Reasons.All(reason => reason == StopReason.Converged))
                 return report.Iterations;
             double pace = Math.Log(report.HalfReduction / report.WorstReduction) / (limit - (limit / 2));

@@ -1,0 +1,132 @@
+// The plain twins of GaussSeidelKernels, lane by lane, in the same order of operations.
+
+using System.Numerics;
+using ScaleResist.Graphs;
+
+namespace ScaleResist.Kernels;
+
+/// <summary>Reference kernels; see <see cref="GaussSeidelKernels"/> for each one's meaning.</summary>
+internal static class GaussSeidelKernelTwins
+{
+    public static void Start<T>(
+        SplitLaplacian split, Panel<T> b, Panel<T> rho, int start, int end, ref LaneSums squares, ref LaneSums energies)
+        where T : unmanaged, INumber<T>
+    {
+        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
+        {
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                T square = T.Zero, energy = T.Zero;
+                for (int v = chunk; v < Math.Min(end, chunk + LaneSums.ChunkRows); v++)
+                {
+                    T right = b.Row(v)[lane];
+                    T scaled = (right + Earlier(split, rho, v, lane)) * Inverse<T>(split, v);
+                    rho.Row(v)[lane] = scaled;
+                    square += right * right;
+                    energy += Strength<T>(split, v) * scaled * scaled;
+                }
+                squares[lane] += double.CreateTruncating(square);
+                energies[lane] += double.CreateTruncating(energy);
+            }
+        }
+    }
+
+    public static void Check<T>(
+        SplitLaplacian split, Panel<T> b, Panel<T> x, Panel<T> rho, int start, int end, ref LaneSums squares, ref LaneSums energies)
+        where T : unmanaged, INumber<T>
+    {
+        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
+        {
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                T square = T.Zero, energy = T.Zero;
+                for (int v = chunk; v < Math.Min(end, chunk + LaneSums.ChunkRows); v++)
+                {
+                    T around = Around(split.Laplacian, x, lane, split.Laplacian.RowStart[v], split.Laplacian.RowStart[v + 1]);
+                    T residual = b.Row(v)[lane] - ((Strength<T>(split, v) * x.Row(v)[lane]) - around);
+                    T scaled = (residual + Earlier(split, rho, v, lane)) * Inverse<T>(split, v);
+                    rho.Row(v)[lane] = scaled;
+                    square += residual * residual;
+                    energy += Strength<T>(split, v) * scaled * scaled;
+                }
+                squares[lane] += double.CreateTruncating(square);
+                energies[lane] += double.CreateTruncating(energy);
+            }
+        }
+    }
+
+    public static LaneSums Back<T>(SplitLaplacian split, Panel<T> rho, Panel<T> pi, Panel<T> t, in LaneSums factors, int start, int end)
+        where T : unmanaged, INumber<T>
+    {
+        LaneSums sums = default;
+        for (int chunkEnd = end; chunkEnd > start; chunkEnd -= LaneSums.ChunkRows)
+        {
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                T beta = T.CreateTruncating(factors[lane]), products = T.Zero;
+                for (int v = chunkEnd - 1; v >= Math.Max(start, chunkEnd - LaneSums.ChunkRows); v--)
+                {
+                    T around = Around(
+                        split.Laplacian, t, lane, split.Laplacian.RowStart[v] + split.Earlier[v], split.Laplacian.RowStart[v + 1]);
+                    T direction = rho.Row(v)[lane];
+                    if (beta != T.Zero)
+                        direction += beta * pi.Row(v)[lane];
+                    pi.Row(v)[lane] = direction;
+                    T solved = direction + (Inverse<T>(split, v) * around);
+                    t.Row(v)[lane] = solved;
+                    products += solved * ((Strength<T>(split, v) * direction) - around);
+                }
+                sums[lane] += double.CreateTruncating(products);
+            }
+        }
+        return sums;
+    }
+
+    public static LaneSums Forward<T>(
+        SplitLaplacian split, Panel<T> x, Panel<T> rho, Panel<T> pi, Panel<T> t, in LaneSums factors, int start, int end)
+        where T : unmanaged, INumber<T>
+    {
+        LaneSums sums = default;
+        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
+        {
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                T a = T.CreateTruncating(factors[lane]), energy = T.Zero;
+                for (int v = chunk; v < Math.Min(end, chunk + LaneSums.ChunkRows); v++)
+                {
+                    T both = pi.Row(v)[lane] + (Inverse<T>(split, v) * Earlier(split, t, v, lane));
+                    T solved = t.Row(v)[lane];
+                    t.Row(v)[lane] = both - solved;
+                    x.Row(v)[lane] += a * solved;
+                    T residual = rho.Row(v)[lane] - (a * both);
+                    rho.Row(v)[lane] = residual;
+                    energy += Strength<T>(split, v) * residual * residual;
+                }
+                sums[lane] += double.CreateTruncating(energy);
+            }
+        }
+        return sums;
+    }
+
+    private static T Earlier<T>(SplitLaplacian split, Panel<T> panel, int node, int lane)
+        where T : unmanaged, INumber<T> =>
+        Around(split.Laplacian, panel, lane, split.Laplacian.RowStart[node], split.Laplacian.RowStart[node] + split.Earlier[node]);
+
+    private static T Around<T>(Laplacian laplacian, Panel<T> panel, int lane, long from, long to)
+        where T : unmanaged, INumber<T>
+    {
+        T around = T.Zero;
+        for (long k = from; k < to; k++)
+        {
+            T neighbour = panel.Row(laplacian.Neighbours[k])[lane];
+            around += laplacian.Conductances is null ? neighbour : T.CreateTruncating(laplacian.Conductances[k]) * neighbour;
+        }
+        return around;
+    }
+
+    private static T Strength<T>(SplitLaplacian split, int node)
+        where T : unmanaged, INumber<T> => T.CreateTruncating(split.Laplacian.Strengths[node]);
+
+    private static T Inverse<T>(SplitLaplacian split, int node)
+        where T : unmanaged, INumber<T> => T.CreateTruncating(1 / split.Laplacian.Strengths[node]);
+}
