@@ -41,7 +41,6 @@ internal static class TrafficTable
         Print("Gauss-Seidel start", Least(() => GaussSeidelKernels.Start(split, b, r, 0, n, out _, out _)), (2 * panel) + split1);
         Print("Gauss-Seidel back", Least(() => GaussSeidelKernels.Back(split, r, p, q, default, 0, n)), (4 * panel) + split1);
         Print("Gauss-Seidel forward", Least(() => GaussSeidelKernels.Forward(split, x, r, p, q, default, 0, n)), (7 * panel) + split1);
-        Print("Gauss-Seidel check", Least(() => GaussSeidelKernels.Check(split, b, x, r, 0, n, out _, out _)), (3 * panel) + arcs + (n * 4.0));
 
         void Print(string kernel, double time, double bytes) => Console.WriteLine(
             $"| {name} | {n:N0} | {laplacian.RowStart[n] / 2:N0} | {kernel} | {time * 1e3:0.0} | {bytes / 1e9:0.000} "

@@ -9,7 +9,7 @@ namespace ScaleResist.Kernels;
 internal static class GaussSeidelKernelTwins
 {
     public static void Start<T>(
-        SplitLaplacian split, Panel<T> b, Panel<T> rho, int start, int end, ref LaneSums squares, ref LaneSums energies)
+        SplitLaplacian split, Panel<T> r, Panel<T> rho, int start, int end, ref LaneSums squares, ref LaneSums energies)
         where T : unmanaged, INumber<T>
     {
         for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
@@ -19,31 +19,7 @@ internal static class GaussSeidelKernelTwins
                 T square = T.Zero, energy = T.Zero;
                 for (int v = chunk; v < Math.Min(end, chunk + LaneSums.ChunkRows); v++)
                 {
-                    T right = b.Row(v)[lane];
-                    T scaled = (right + Earlier(split, rho, v, lane)) * Inverse<T>(split, v);
-                    rho.Row(v)[lane] = scaled;
-                    square += right * right;
-                    energy += Strength<T>(split, v) * scaled * scaled;
-                }
-                squares[lane] += double.CreateTruncating(square);
-                energies[lane] += double.CreateTruncating(energy);
-            }
-        }
-    }
-
-    public static void Check<T>(
-        SplitLaplacian split, Panel<T> b, Panel<T> x, Panel<T> rho, int start, int end, ref LaneSums squares, ref LaneSums energies)
-        where T : unmanaged, INumber<T>
-    {
-        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
-        {
-            for (int lane = 0; lane < Panel<T>.Width; lane++)
-            {
-                T square = T.Zero, energy = T.Zero;
-                for (int v = chunk; v < Math.Min(end, chunk + LaneSums.ChunkRows); v++)
-                {
-                    T around = Around(split.Laplacian, x, lane, split.Laplacian.RowStart[v], split.Laplacian.RowStart[v + 1]);
-                    T residual = b.Row(v)[lane] - ((Strength<T>(split, v) * x.Row(v)[lane]) - around);
+                    T residual = r.Row(v)[lane];
                     T scaled = (residual + Earlier(split, rho, v, lane)) * Inverse<T>(split, v);
                     rho.Row(v)[lane] = scaled;
                     square += residual * residual;

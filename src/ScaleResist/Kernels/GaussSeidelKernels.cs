@@ -11,8 +11,7 @@
 // Invariant: within a column, operations follow the scalar twin's order exactly, so both give the same bits.
 //
 // Data movement in panels of n rows, beside the adjacency (16 bytes a node; 4 an arc, 8 more with weights, half of them in each sweep):
-//   Start    reads 1, writes 1, gathers a row a link              Check     reads 2, writes 1, gathers three rows a link
-//   Back     reads 2, writes 2, gathers a row a link              Forward   reads 4, writes 3, gathers a row a link
+//   Start  reads 1, writes 1, gathers a row a link     Back  reads 2, writes 2, likewise     Forward  reads 4, writes 3, likewise
 
 using System.Numerics;
 using System.Runtime.CompilerServices;
@@ -51,18 +50,18 @@ internal sealed record SplitLaplacian(Laplacian Laplacian, int[] Earlier)
 /// <summary>The sweeps over the nodes <c>start .. end-1</c>, which are one component; W = 16 floats or 8 doubles.</summary>
 internal static unsafe class GaussSeidelKernels
 {
-    private const int PrefetchRows = 2;
-    private const int PrefetchArcs = 16;
+    private const int PrefetchRows = 8;
+    private const int PrefetchArcs = 32;
 
-    /// <summary>rho = (D+Lo)^-1 b; gives |b|^2 and r'M r = sum d rho^2 by column.</summary>
+    /// <summary>rho = (D+Lo)^-1 r, also over r itself; gives |r|^2 and r'M r = sum d rho^2 by column.</summary>
     public static void Start<T>(
-        SplitLaplacian split, Panel<T> b, Panel<T> rho, int start, int end, out LaneSums squares, out LaneSums energies)
+        SplitLaplacian split, Panel<T> r, Panel<T> rho, int start, int end, out LaneSums squares, out LaneSums energies)
         where T : unmanaged, INumber<T>
     {
         squares = energies = default;
         if (PanelKernels.Scalar)
         {
-            GaussSeidelKernelTwins.Start(split, b, rho, start, end, ref squares, ref energies);
+            GaussSeidelKernelTwins.Start(split, r, rho, start, end, ref squares, ref energies);
             return;
         }
         fixed (long* rowStart = split.Laplacian.RowStart)
@@ -80,49 +79,8 @@ internal static unsafe class GaussSeidelKernels
                     int ahead = Math.Min(v + PrefetchRows, end - 1);
                     Prefetch(rho.Pointer, neighbours, rowStart[ahead], earlier[ahead]);
                     Vector512<T> around = Around(rho.Pointer, neighbours, conductances, rowStart[v], rowStart[v] + earlier[v]);
-                    Vector512<T> right = Vector512.Load(Row(b.Pointer, v));
-                    Vector512<T> scaled = (right + around) * Broadcast<T>(1 / strengths[v]);
-                    scaled.Store(Row(rho.Pointer, v));
-                    square += right * right;
-                    energy += Broadcast<T>(strengths[v]) * scaled * scaled;
-                }
-                VectorKernels.Add(ref squares, square);
-                VectorKernels.Add(ref energies, energy);
-            }
-        }
-    }
-
-    /// <summary>r = b - L x, of which rho = (D+Lo)^-1 r is kept; gives |r|^2 and r'M r = sum d rho^2 by column.</summary>
-    public static void Check<T>(
-        SplitLaplacian split, Panel<T> b, Panel<T> x, Panel<T> rho, int start, int end, out LaneSums squares, out LaneSums energies)
-        where T : unmanaged, INumber<T>
-    {
-        squares = energies = default;
-        if (PanelKernels.Scalar)
-        {
-            GaussSeidelKernelTwins.Check(split, b, x, rho, start, end, ref squares, ref energies);
-            return;
-        }
-        fixed (long* rowStart = split.Laplacian.RowStart)
-        fixed (int* neighbours = split.Laplacian.Neighbours)
-        fixed (double* conductances = split.Laplacian.Conductances)
-        fixed (double* strengths = split.Laplacian.Strengths)
-        fixed (int* earlier = split.Earlier)
-        {
-            for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
-            {
-                int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
-                Vector512<T> square = Vector512<T>.Zero, energy = Vector512<T>.Zero;
-                for (int v = chunk; v < chunkEnd; v++)
-                {
-                    int ahead = Math.Min(v + PrefetchRows, end - 1);
-                    Prefetch(rho.Pointer, neighbours, rowStart[ahead], earlier[ahead]);
-                    Prefetch(x.Pointer, neighbours, rowStart[ahead], (int)(rowStart[ahead + 1] - rowStart[ahead]));
-                    Vector512<T> around = Around(x.Pointer, neighbours, conductances, rowStart[v], rowStart[v + 1]);
-                    Vector512<T> before = Around(rho.Pointer, neighbours, conductances, rowStart[v], rowStart[v] + earlier[v]);
-                    Vector512<T> residual = Vector512.Load(Row(b.Pointer, v))
-                        - ((Broadcast<T>(strengths[v]) * Vector512.Load(Row(x.Pointer, v))) - around);
-                    Vector512<T> scaled = (residual + before) * Broadcast<T>(1 / strengths[v]);
+                    Vector512<T> residual = Vector512.Load(Row(r.Pointer, v));
+                    Vector512<T> scaled = (residual + around) * Broadcast<T>(1 / strengths[v]);
                     scaled.Store(Row(rho.Pointer, v));
                     square += residual * residual;
                     energy += Broadcast<T>(strengths[v]) * scaled * scaled;

@@ -15,7 +15,7 @@ namespace ScaleResist.Kernels;
 /// <summary>Panel kernels over the nodes <c>start .. end-1</c>; W = 16 floats or 8 doubles.</summary>
 internal static unsafe class VectorKernels
 {
-    private const int PrefetchArcs = 12;
+    private const int PrefetchArcs = 64;
 
     /// <summary>y = L x, and sums = x'y by column.</summary>
     public static void Multiply<T>(Laplacian laplacian, T* x, T* y, int start, int end, ref LaneSums sums)

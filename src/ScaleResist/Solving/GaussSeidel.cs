@@ -22,8 +22,11 @@ internal sealed class GaussSeidel<T>(SplitLaplacian split, double leastEigenvalu
 
     /// <inheritdoc/>
     public void BeginAt(
-        Panel<T> b, Panel<T> x, GradientWorkspace<T> workspace, int start, int end, out LaneSums squares, out LaneSums energies) =>
-        GaussSeidelKernels.Check(split, b, x, workspace.R, start, end, out squares, out energies);
+        Panel<T> b, Panel<T> x, GradientWorkspace<T> workspace, int start, int end, out LaneSums squares, out LaneSums energies)
+    {
+        PanelKernels.Residual(split.Laplacian, b, x, workspace.R, start, end);
+        GaussSeidelKernels.Start(split, workspace.R, workspace.R, start, end, out squares, out energies);
+    }
 
     /// <inheritdoc/>
     public LaneSums Product(in LaneSums beta, GradientWorkspace<T> workspace, int start, int end) =>
