@@ -153,12 +153,12 @@ internal static class SolverBench
     {
         Elimination elimination = Elimination.Of(network.Laplacian, network.Components[0]);
         string name = solver.Preconditioner;
-        bool jacobi = name == "gauss-seidel";
-        if (!jacobi && !name.StartsWith("sampled elimination", StringComparison.Ordinal))
+        bool seidel = name == "gauss-seidel";
+        if (!seidel && !name.StartsWith("sampled elimination", StringComparison.Ordinal))
             throw new InvalidOperationException($"no yardstick for '{name}'");
-        bool inPlace = jacobi && elimination.Steps.Count == 0; // unweighted links stay unweighted
+        bool inPlace = seidel && elimination.Steps.Count == 0; // unweighted links stay unweighted
         Laplacian core = inPlace ? network.Laplacian : elimination.BuildCore();
-        SampledFactor? factor = jacobi ? null : SampledFactor.Of(core, int.Parse(name.Split(' ')[2]), seed: 1);
+        SampledFactor? factor = seidel ? null : SampledFactor.Of(core, int.Parse(name.Split(' ')[2]), seed: 1);
         OneColumn<float> single = new(elimination, core, factor);
         OneColumn<double> twice = new(elimination, core, factor);
         return (Least(column => Time<float>(single.Solve, () => single.Iterations, column)),

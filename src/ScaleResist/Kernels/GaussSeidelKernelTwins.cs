@@ -42,8 +42,9 @@ internal static class GaussSeidelKernelTwins
                 T beta = T.CreateTruncating(factors[lane]), products = T.Zero;
                 for (int v = chunkEnd - 1; v >= Math.Max(start, chunkEnd - LaneSums.ChunkRows); v--)
                 {
-                    T around = Around(
-                        split.Laplacian, t, lane, split.Laplacian.RowStart[v] + split.Earlier[v], split.Laplacian.RowStart[v + 1]);
+                    T around = T.Zero;
+                    for (long k = split.Laplacian.RowStart[v + 1] - 1; k >= split.Laplacian.RowStart[v] + split.Earlier[v]; k--)
+                        around += Term(split.Laplacian, t, lane, k);
                     T direction = rho.Row(v)[lane];
                     if (beta != T.Zero)
                         direction += beta * pi.Row(v)[lane];
@@ -85,19 +86,19 @@ internal static class GaussSeidelKernelTwins
     }
 
     private static T Earlier<T>(SplitLaplacian split, Panel<T> panel, int node, int lane)
-        where T : unmanaged, INumber<T> =>
-        Around(split.Laplacian, panel, lane, split.Laplacian.RowStart[node], split.Laplacian.RowStart[node] + split.Earlier[node]);
-
-    private static T Around<T>(Laplacian laplacian, Panel<T> panel, int lane, long from, long to)
         where T : unmanaged, INumber<T>
     {
         T around = T.Zero;
-        for (long k = from; k < to; k++)
-        {
-            T neighbour = panel.Row(laplacian.Neighbours[k])[lane];
-            around += laplacian.Conductances is null ? neighbour : T.CreateTruncating(laplacian.Conductances[k]) * neighbour;
-        }
+        for (long k = split.Laplacian.RowStart[node]; k < split.Laplacian.RowStart[node] + split.Earlier[node]; k++)
+            around += Term(split.Laplacian, panel, lane, k);
         return around;
+    }
+
+    private static T Term<T>(Laplacian laplacian, Panel<T> panel, int lane, long arc)
+        where T : unmanaged, INumber<T>
+    {
+        T neighbour = panel.Row(laplacian.Neighbours[arc])[lane];
+        return laplacian.Conductances is null ? neighbour : T.CreateTruncating(laplacian.Conductances[arc]) * neighbour;
     }
 
     private static T Strength<T>(SplitLaplacian split, int node)

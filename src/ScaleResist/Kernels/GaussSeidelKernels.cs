@@ -51,7 +51,7 @@ internal sealed record SplitLaplacian(Laplacian Laplacian, int[] Earlier)
 internal static unsafe class GaussSeidelKernels
 {
     private const int PrefetchRows = 8;
-    private const int PrefetchArcs = 32;
+    private const int PrefetchArcs = 16;
 
     /// <summary>rho = (D+Lo)^-1 r, also over r itself; gives |r|^2 and r'M r = sum d rho^2 by column.</summary>
     public static void Start<T>(
@@ -78,7 +78,7 @@ internal static unsafe class GaussSeidelKernels
                 {
                     int ahead = Math.Min(v + PrefetchRows, end - 1);
                     Prefetch(rho.Pointer, neighbours, rowStart[ahead], earlier[ahead]);
-                    Vector512<T> around = Around(rho.Pointer, neighbours, conductances, rowStart[v], rowStart[v] + earlier[v]);
+                    Vector512<T> around = AroundEarlier(rho.Pointer, neighbours, conductances, rowStart[v], rowStart[v] + earlier[v]);
                     Vector512<T> residual = Vector512.Load(Row(r.Pointer, v));
                     Vector512<T> scaled = (residual + around) * Broadcast<T>(1 / strengths[v]);
                     scaled.Store(Row(rho.Pointer, v));
@@ -116,7 +116,7 @@ internal static unsafe class GaussSeidelKernels
                     int ahead = Math.Max(v - PrefetchRows, start);
                     long later = rowStart[ahead] + earlier[ahead];
                     Prefetch(t.Pointer, neighbours, later, (int)(rowStart[ahead + 1] - later));
-                    Vector512<T> around = Around(t.Pointer, neighbours, conductances, rowStart[v] + earlier[v], rowStart[v + 1]);
+                    Vector512<T> around = AroundLater(t.Pointer, neighbours, conductances, rowStart[v] + earlier[v], rowStart[v + 1]);
                     Vector512<T> residual = Vector512.Load(Row(rho.Pointer, v));
                     Vector512<T> direction = Vector512.ConditionalSelect(
                         none, residual, residual + (beta * Vector512.Load(Row(pi.Pointer, v))));
@@ -156,7 +156,7 @@ internal static unsafe class GaussSeidelKernels
                 {
                     int ahead = Math.Min(v + PrefetchRows, end - 1);
                     Prefetch(t.Pointer, neighbours, rowStart[ahead], earlier[ahead]);
-                    Vector512<T> around = Around(t.Pointer, neighbours, conductances, rowStart[v], rowStart[v] + earlier[v]);
+                    Vector512<T> around = AroundEarlier(t.Pointer, neighbours, conductances, rowStart[v], rowStart[v] + earlier[v]);
                     Vector512<T> both = Vector512.Load(Row(pi.Pointer, v)) + (Broadcast<T>(1 / strengths[v]) * around);
                     Vector512<T> solved = Vector512.Load(Row(t.Pointer, v));
                     (both - solved).Store(Row(t.Pointer, v));
@@ -171,9 +171,10 @@ internal static unsafe class GaussSeidelKernels
         return sums;
     }
 
-    // The sum of c times the rows of some neighbours, in order.
+    // The sum of c times the rows of some neighbours. A row that has only just been stored comes last in both sweeps: the sums of the others need
+    // not wait for it.
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
-    private static Vector512<T> Around<T>(T* panel, int* neighbours, double* conductances, long from, long to)
+    private static Vector512<T> AroundEarlier<T>(T* panel, int* neighbours, double* conductances, long from, long to)
         where T : unmanaged
     {
         Vector512<T> around = Vector512<T>.Zero;
@@ -185,6 +186,24 @@ internal static unsafe class GaussSeidelKernels
         else
         {
             for (long k = from; k < to; k++)
+                around += Broadcast<T>(conductances[k]) * Vector512.Load(Row(panel, neighbours[k]));
+        }
+        return around;
+    }
+
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static Vector512<T> AroundLater<T>(T* panel, int* neighbours, double* conductances, long from, long to)
+        where T : unmanaged
+    {
+        Vector512<T> around = Vector512<T>.Zero;
+        if (conductances == null)
+        {
+            for (long k = to - 1; k >= from; k--)
+                around += Vector512.Load(Row(panel, neighbours[k]));
+        }
+        else
+        {
+            for (long k = to - 1; k >= from; k--)
                 around += Broadcast<T>(conductances[k]) * Vector512.Load(Row(panel, neighbours[k]));
         }
         return around;
