@@ -105,5 +105,5 @@ internal static class GaussSeidelKernelTwins
         where T : unmanaged, INumber<T> => T.CreateTruncating(split.Laplacian.Strengths[node]);
 
     private static T Inverse<T>(SplitLaplacian split, int node)
-        where T : unmanaged, INumber<T> => T.CreateTruncating(1 / split.Laplacian.Strengths[node]);
+        where T : unmanaged, INumber<T> => T.CreateTruncating(GaussSeidelKernels.Inverse(split.Laplacian.Strengths[node]));
 }

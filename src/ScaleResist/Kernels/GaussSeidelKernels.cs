@@ -80,7 +80,7 @@ internal static unsafe class GaussSeidelKernels
                     Prefetch(rho.Pointer, neighbours, rowStart[ahead], earlier[ahead]);
                     Vector512<T> around = AroundEarlier(rho.Pointer, neighbours, conductances, rowStart[v], rowStart[v] + earlier[v]);
                     Vector512<T> residual = Vector512.Load(Row(r.Pointer, v));
-                    Vector512<T> scaled = (residual + around) * Broadcast<T>(1 / strengths[v]);
+                    Vector512<T> scaled = (residual + around) * Broadcast<T>(Inverse(strengths[v]));
                     scaled.Store(Row(rho.Pointer, v));
                     square += residual * residual;
                     energy += Broadcast<T>(strengths[v]) * scaled * scaled;
@@ -121,7 +121,7 @@ internal static unsafe class GaussSeidelKernels
                     Vector512<T> direction = Vector512.ConditionalSelect(
                         none, residual, residual + (beta * Vector512.Load(Row(pi.Pointer, v))));
                     direction.Store(Row(pi.Pointer, v));
-                    Vector512<T> solved = direction + (Broadcast<T>(1 / strengths[v]) * around);
+                    Vector512<T> solved = direction + (Broadcast<T>(Inverse(strengths[v])) * around);
                     solved.Store(Row(t.Pointer, v));
                     products += solved * ((Broadcast<T>(strengths[v]) * direction) - around);
                 }
@@ -157,7 +157,7 @@ internal static unsafe class GaussSeidelKernels
                     int ahead = Math.Min(v + PrefetchRows, end - 1);
                     Prefetch(t.Pointer, neighbours, rowStart[ahead], earlier[ahead]);
                     Vector512<T> around = AroundEarlier(t.Pointer, neighbours, conductances, rowStart[v], rowStart[v] + earlier[v]);
-                    Vector512<T> both = Vector512.Load(Row(pi.Pointer, v)) + (Broadcast<T>(1 / strengths[v]) * around);
+                    Vector512<T> both = Vector512.Load(Row(pi.Pointer, v)) + (Broadcast<T>(Inverse(strengths[v])) * around);
                     Vector512<T> solved = Vector512.Load(Row(t.Pointer, v));
                     (both - solved).Store(Row(t.Pointer, v));
                     (Vector512.Load(Row(x.Pointer, v)) + (a * solved)).Store(Row(x.Pointer, v));
@@ -170,6 +170,9 @@ internal static unsafe class GaussSeidelKernels
         }
         return sums;
     }
+
+    // 0 for a core of one node, which has nothing left to solve.
+    internal static double Inverse(double strength) => strength > 0 ? 1 / strength : 0;
 
     // The sum of c times the rows of some neighbours. A row that has only just been stored comes last in both sweeps: the sums of the others need
     // not wait for it.
