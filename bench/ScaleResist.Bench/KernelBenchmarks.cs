@@ -12,6 +12,7 @@ namespace ScaleResist.Bench;
 public unsafe class KernelBenchmarks
 {
     private Network network = null!;
+    private SplitLaplacian split = null!;
     private Panel<float> x = null!, r = null!, p = null!, q = null!;
     private int n;
 
@@ -31,6 +32,7 @@ public unsafe class KernelBenchmarks
         NetworkGenerator.Generate(new FamilyPlan(Family, 1_000_000), new Sink(builder));
         network = NetworkBuilder.Build(builder.Finish(new InputFacts { Path = "bench", Form = "memory", Sha256 = "", Columns = ["1", "2"] }));
         n = network.NodeCount;
+        split = SplitLaplacian.Of(network.Laplacian);
         (x, r, p, q) = (new(n), new(n), new(n), new(n));
         ProbeKernels.Fill(network, 1, 0, 0xFFFF, p, 0, n);
         PanelKernels.Scalar = Scalar;
@@ -44,13 +46,13 @@ public unsafe class KernelBenchmarks
     [Benchmark]
     public double Multiply() => PanelKernels.Multiply(network.Laplacian, p, q, 0, n)[0];
 
-    /// <summary>x += a p, r -= a q.</summary>
+    /// <summary>Gauss-Seidel's direction and back sweep.</summary>
     [Benchmark]
-    public double Step() => PanelKernels.Step(x, r, p, q, default, 0, n)[0];
+    public double Back() => GaussSeidelKernels.Back(split, r, p, q, default, 0, n)[0];
 
-    /// <summary>p = s + b p.</summary>
+    /// <summary>Gauss-Seidel's forward sweep and step.</summary>
     [Benchmark]
-    public void Direction() => PanelKernels.Direction(p, q, default, 0, n);
+    public double Forward() => GaussSeidelKernels.Forward(split, x, r, p, q, default, 0, n)[0];
 
     /// <summary>b = B' C^(1/2) q.</summary>
     [Benchmark]

@@ -18,7 +18,7 @@ internal sealed class OneColumn<T>
     private readonly int[] neighbours;
     private readonly T[]? conductances;
     private readonly T[] strengths, inverse;
-    private readonly Half? byRows, byColumns; // null: the diagonal alone
+    private readonly Half? byRows, byColumns; // null: symmetric Gauss-Seidel
     private readonly T[] x, r, p, q;
 
     private sealed record Half(long[] Start, int[] Index, T[] Share);
@@ -147,9 +147,20 @@ internal sealed class OneColumn<T>
             }
             return rs;
         }
+        // q = (D+Lo)^-1 r, then (D+Up)^-1 D q: rows are sorted by neighbour.
         for (int i = 0; i < q.Length; i++)
         {
-            T value = inverse[i] * r[i];
+            T sum = r[i];
+            for (int k = (int)start[i]; k < (int)start[i + 1] && neighbours[k] < i; k++)
+                sum += conductances is null ? q[neighbours[k]] : conductances[k] * q[neighbours[k]];
+            q[i] = inverse[i] * sum;
+        }
+        for (int i = q.Length - 1; i >= 0; i--)
+        {
+            T sum = T.Zero;
+            for (int k = (int)start[i + 1] - 1; k >= (int)start[i] && neighbours[k] > i; k--)
+                sum += conductances is null ? q[neighbours[k]] : conductances[k] * q[neighbours[k]];
+            T value = q[i] + (inverse[i] * sum);
             q[i] = value;
             rs += double.CreateTruncating(value * r[i]);
         }

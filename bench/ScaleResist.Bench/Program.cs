@@ -8,6 +8,9 @@ switch (args)
     case ["kernels", .. string[] rest]:
         BenchmarkSwitcher.FromTypes([typeof(KernelBenchmarks)]).Run(rest.Length > 0 ? rest : ["--filter", "*"]);
         return 0;
+    case ["traffic"]:
+        TrafficTable.Run();
+        return 0;
     case ["job", string file]:
         WholeJob.Run(file, 16);
         return 0;
@@ -24,6 +27,6 @@ switch (args)
         SolverBench.Run(family == "all" ? null : family, count);
         return 0;
     default:
-        Console.Error.WriteLine("say: kernels [BenchmarkDotNet options] | job FILE [PROBES] | solver [FAMILY | all [SOLVES]]");
+        Console.Error.WriteLine("say: kernels [BenchmarkDotNet options] | traffic | job FILE [PROBES] | solver [FAMILY | all [SOLVES]]");
         return 2;
 }

@@ -47,12 +47,16 @@ internal static class SolverBench
         {
             if (only is not null && !name.StartsWith(only, StringComparison.Ordinal))
                 continue;
-            EdgeListBuilder builder = new(weighted: plan.Decades > 0);
-            NetworkGenerator.Generate(plan, new Sink(builder));
-            Network network = NetworkBuilder.Build(
-                builder.Finish(new InputFacts { Path = name, Form = "memory", Sha256 = "", Columns = ["1", "2"] }));
-            Row(name, LargestComponent(network), solves);
+            Row(name, LargestComponent(Generated(name, plan)), solves);
         }
+    }
+
+    internal static Network Generated(string name, FamilyPlan plan)
+    {
+        EdgeListBuilder builder = new(weighted: plan.Decades > 0);
+        NetworkGenerator.Generate(plan, new Sink(builder));
+        return NetworkBuilder.Build(
+            builder.Finish(new InputFacts { Path = name, Form = "memory", Sha256 = "", Columns = ["1", "2"] }));
     }
 
     private static Network LargestComponent(Network network)
@@ -174,12 +178,12 @@ internal static class SolverBench
     {
         Elimination elimination = Elimination.Of(network.Laplacian, network.Components[0]);
         string name = solver.Preconditioner;
-        bool jacobi = name == "jacobi";
-        if (!jacobi && !name.StartsWith("sampled elimination", StringComparison.Ordinal))
+        bool seidel = name == "gauss-seidel";
+        if (!seidel && !name.StartsWith("sampled elimination", StringComparison.Ordinal))
             throw new InvalidOperationException($"no yardstick for '{name}'");
-        bool inPlace = jacobi && elimination.Steps.Count == 0; // unweighted links stay unweighted
+        bool inPlace = seidel && elimination.Steps.Count == 0; // unweighted links stay unweighted
         Laplacian core = inPlace ? network.Laplacian : elimination.BuildCore();
-        SampledFactor? factor = jacobi ? null : SampledFactor.Of(core, int.Parse(name.Split(' ')[2]), seed: 1);
+        SampledFactor? factor = seidel ? null : SampledFactor.Of(core, int.Parse(name.Split(' ')[2]), seed: 1);
         OneColumn<float> single = new(elimination, core, factor);
         OneColumn<double> twice = new(elimination, core, factor);
         return (Least(column => Time<float>(single.Solve, () => single.Iterations, column)),

@@ -7,43 +7,64 @@ namespace ScaleResist.Kernels;
 /// <summary>Reference kernels; see <see cref="FactorKernels"/> for each one's meaning.</summary>
 internal static class FactorKernelTwins
 {
-    public static void Forward<T>(FactorHalf rows, Panel<T> r, Panel<T> y, int n)
+    public static LaneSums Forward<T>(FactorHalf rows, float[] inverse, Panel<T> r, Panel<T> y, int n)
+        where T : unmanaged, INumber<T>
+    {
+        LaneSums sums = default;
+        for (int chunk = 0; chunk < n; chunk += LaneSums.ChunkRows)
+        {
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                T energy = T.Zero;
+                for (int v = chunk; v < Math.Min(n, chunk + LaneSums.ChunkRows); v++)
+                {
+                    T sum = Gathered(rows, y, v, lane, r.Row(v)[lane]);
+                    y.Row(v)[lane] = sum;
+                    energy += T.CreateTruncating(inverse[v]) * sum * sum;
+                }
+                sums[lane] += double.CreateTruncating(energy);
+            }
+        }
+        return sums;
+    }
+
+    public static LaneSums StepForward<T>(
+        FactorHalf rows, float[] inverse, Panel<T> x, Panel<T> r, Panel<T> p, Panel<T> q, in LaneSums factors, int n)
         where T : unmanaged, INumber<T>
     {
         for (int v = 0; v < n; v++)
         {
             for (int lane = 0; lane < Panel<T>.Width; lane++)
             {
-                T sum = r.Row(v)[lane];
-                for (long k = rows.Start[v]; k < rows.Start[v + 1]; k++)
-                    sum += T.CreateTruncating(rows.Share[k]) * y.Row(rows.Index[k])[lane];
+                T a = T.CreateTruncating(factors[lane]);
+                x.Row(v)[lane] += a * p.Row(v)[lane];
+                r.Row(v)[lane] -= a * q.Row(v)[lane];
+            }
+        }
+        return Forward(rows, inverse, r, q, n);
+    }
+
+    public static void Back<T>(FactorHalf columns, float[] inverse, Panel<T> y, Panel<T> p, in LaneSums factors, int n)
+        where T : unmanaged, INumber<T>
+    {
+        for (int v = n - 1; v >= 0; v--)
+        {
+            for (int lane = 0; lane < Panel<T>.Width; lane++)
+            {
+                T sum = Gathered(columns, y, v, lane, T.CreateTruncating(inverse[v]) * y.Row(v)[lane]);
+                T beta = T.CreateTruncating(factors[lane]);
                 y.Row(v)[lane] = sum;
+                p.Row(v)[lane] = beta == T.Zero ? sum : sum + (beta * p.Row(v)[lane]);
             }
         }
     }
 
-    public static LaneSums Back<T>(FactorHalf columns, float[] inverse, Panel<T> r, Panel<T> y, int n)
+    private static T Gathered<T>(FactorHalf half, Panel<T> panel, int place, int lane, T sum)
         where T : unmanaged, INumber<T>
     {
-        LaneSums sums = default;
-        for (int chunkEnd = n; chunkEnd > 0; chunkEnd -= LaneSums.ChunkRows)
-        {
-            int chunk = Math.Max(0, chunkEnd - LaneSums.ChunkRows);
-            for (int lane = 0; lane < Panel<T>.Width; lane++)
-            {
-                T products = T.Zero;
-                for (int v = chunkEnd - 1; v >= chunk; v--)
-                {
-                    T sum = T.CreateTruncating(inverse[v]) * y.Row(v)[lane];
-                    for (long k = columns.Start[v]; k < columns.Start[v + 1]; k++)
-                        sum += T.CreateTruncating(columns.Share[k]) * y.Row(columns.Index[k])[lane];
-                    y.Row(v)[lane] = sum;
-                    products += r.Row(v)[lane] * sum;
-                }
-                sums[lane] += double.CreateTruncating(products);
-            }
-        }
-        return sums;
+        for (long k = half.Start[place]; k < half.Start[place + 1]; k++)
+            sum += T.CreateTruncating(half.Share[k]) * panel.Row(half.Index[k])[lane];
+        return sum;
     }
 
     public static LaneSums Eliminate<T>(ReadOnlySpan<EliminationStep> steps, Panel<T> b)

@@ -2,7 +2,8 @@
 // Invariant: within a column, operations follow the scalar twin's order exactly, so both give the same bits.
 //
 // Data movement in panels of the core's n rows, beside 8 bytes an entry of the factor each way:
-//   Forward   reads 1, writes 1, gathers a row an entry      Back   reads 2, writes 1, gathers a row an entry
+//   Forward      reads 1, writes 1, gathers a row an entry      Back   reads 2, writes 2, gathers a row an entry
+//   StepForward  reads 4, writes 3, gathers a row an entry
 //   Eliminate and Restore move two to four rows an eliminated node
 
 using System.Numerics;
@@ -30,67 +31,111 @@ internal static unsafe class FactorKernels
 {
     private const int PrefetchEntries = 8;
 
-    /// <summary>y_v = r_v + sum over predecessors u of share y_u, in order.</summary>
-    public static void Forward<T>(FactorHalf rows, Panel<T> r, Panel<T> y, int n)
+    /// <summary>y_v = r_v + sum over predecessors u of share y_u, in order; returns r'M r = sum inverse y^2 by column.</summary>
+    public static LaneSums Forward<T>(FactorHalf rows, float[] inverse, Panel<T> r, Panel<T> y, int n)
         where T : unmanaged, INumber<T>
     {
         if (PanelKernels.Scalar)
-        {
-            FactorKernelTwins.Forward(rows, r, y, n);
-            return;
-        }
+            return FactorKernelTwins.Forward(rows, inverse, r, y, n);
+        LaneSums sums = default;
         fixed (long* start = rows.Start)
         fixed (int* index = rows.Index)
         fixed (float* share = rows.Share)
         {
             long last = start[n] - 1;
-            for (int v = 0; v < n; v++)
+            for (int chunk = 0; chunk < n; chunk += LaneSums.ChunkRows)
             {
-                Vector512<T> sum = Vector512.Load(Row(r.Pointer, v));
-                for (long k = start[v]; k < start[v + 1]; k++)
+                Vector512<T> energy = Vector512<T>.Zero;
+                for (int v = chunk; v < Math.Min(n, chunk + LaneSums.ChunkRows); v++)
                 {
-                    if (Sse.IsSupported)
-                        Sse.Prefetch0(Row(y.Pointer, index[Math.Min(k + PrefetchEntries, last)]));
-                    sum += Broadcast<T>(share[k]) * Vector512.Load(Row(y.Pointer, index[k]));
+                    Vector512<T> sum = Ahead(index, share, y.Pointer, start[v], start[v + 1], last, Vector512.Load(Row(r.Pointer, v)));
+                    sum.Store(Row(y.Pointer, v));
+                    energy += Broadcast<T>(inverse[v]) * sum * sum;
                 }
-                sum.Store(Row(y.Pointer, v));
+                VectorKernels.Add(ref sums, energy);
             }
         }
+        return sums;
     }
 
     /// <summary>
-    /// x_v = y_v inverse_v + sum over successors w of share x_w, in reverse order, x over y; returns r'x by column.
+    /// x += a p, r -= a q with one factor a column, and <see cref="Forward"/> on the new r in the same pass, y over q; returns r'M r by column.
     /// </summary>
-    public static LaneSums Back<T>(FactorHalf columns, float[] inverse, Panel<T> r, Panel<T> y, int n)
+    public static LaneSums StepForward<T>(
+        FactorHalf rows, float[] inverse, Panel<T> x, Panel<T> r, Panel<T> p, Panel<T> q, in LaneSums factors, int n)
         where T : unmanaged, INumber<T>
     {
         if (PanelKernels.Scalar)
-            return FactorKernelTwins.Back(columns, inverse, r, y, n);
+            return FactorKernelTwins.StepForward(rows, inverse, x, r, p, q, factors, n);
         LaneSums sums = default;
+        Vector512<T> a = PanelKernels.Narrow<T>(factors);
+        fixed (long* start = rows.Start)
+        fixed (int* index = rows.Index)
+        fixed (float* share = rows.Share)
+        {
+            long last = start[n] - 1;
+            for (int chunk = 0; chunk < n; chunk += LaneSums.ChunkRows)
+            {
+                Vector512<T> energy = Vector512<T>.Zero;
+                for (int v = chunk; v < Math.Min(n, chunk + LaneSums.ChunkRows); v++)
+                {
+                    (Vector512.Load(Row(x.Pointer, v)) + (a * Vector512.Load(Row(p.Pointer, v)))).Store(Row(x.Pointer, v));
+                    Vector512<T> residual = Vector512.Load(Row(r.Pointer, v)) - (a * Vector512.Load(Row(q.Pointer, v)));
+                    residual.Store(Row(r.Pointer, v));
+                    Vector512<T> sum = Ahead(index, share, q.Pointer, start[v], start[v + 1], last, residual);
+                    sum.Store(Row(q.Pointer, v));
+                    energy += Broadcast<T>(inverse[v]) * sum * sum;
+                }
+                VectorKernels.Add(ref sums, energy);
+            }
+        }
+        return sums;
+    }
+
+    // sum += share y_u, with the rows prefetched that come up to eight entries later.
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static Vector512<T> Ahead<T>(int* index, float* share, T* y, long from, long to, long last, Vector512<T> sum)
+        where T : unmanaged
+    {
+        for (long k = from; k < to; k++)
+        {
+            if (Sse.IsSupported)
+                Sse.Prefetch0(Row(y, index[Math.Min(k + PrefetchEntries, last)]));
+            sum += Broadcast<T>(share[k]) * Vector512.Load(Row(y, index[k]));
+        }
+        return sum;
+    }
+
+    /// <summary>
+    /// s_v = y_v inverse_v + sum over successors w of share s_w, in reverse order, s over y, and p = s + b p with one factor a column
+    /// (0: p = s, whatever it held).
+    /// </summary>
+    public static void Back<T>(FactorHalf columns, float[] inverse, Panel<T> y, Panel<T> p, in LaneSums factors, int n)
+        where T : unmanaged, INumber<T>
+    {
+        if (PanelKernels.Scalar)
+        {
+            FactorKernelTwins.Back(columns, inverse, y, p, factors, n);
+            return;
+        }
+        Vector512<T> beta = PanelKernels.Narrow<T>(factors), none = Vector512.Equals(beta, Vector512<T>.Zero);
         fixed (long* start = columns.Start)
         fixed (int* index = columns.Index)
         fixed (float* share = columns.Share)
         {
-            for (int chunkEnd = n; chunkEnd > 0; chunkEnd -= LaneSums.ChunkRows)
+            for (int v = n - 1; v >= 0; v--)
             {
-                int chunk = Math.Max(0, chunkEnd - LaneSums.ChunkRows);
-                Vector512<T> products = Vector512<T>.Zero;
-                for (int v = chunkEnd - 1; v >= chunk; v--)
+                Vector512<T> sum = Broadcast<T>(inverse[v]) * Vector512.Load(Row(y.Pointer, v));
+                for (long k = start[v]; k < start[v + 1]; k++)
                 {
-                    Vector512<T> sum = Broadcast<T>(inverse[v]) * Vector512.Load(Row(y.Pointer, v));
-                    for (long k = start[v]; k < start[v + 1]; k++)
-                    {
-                        if (Sse.IsSupported)
-                            Sse.Prefetch0(Row(y.Pointer, index[Math.Max(k - PrefetchEntries, 0)]));
-                        sum += Broadcast<T>(share[k]) * Vector512.Load(Row(y.Pointer, index[k]));
-                    }
-                    sum.Store(Row(y.Pointer, v));
-                    products += Vector512.Load(Row(r.Pointer, v)) * sum;
+                    if (Sse.IsSupported)
+                        Sse.Prefetch0(Row(y.Pointer, index[Math.Max(k - PrefetchEntries, 0)]));
+                    sum += Broadcast<T>(share[k]) * Vector512.Load(Row(y.Pointer, index[k]));
                 }
-                VectorKernels.Add(ref sums, products);
+                sum.Store(Row(y.Pointer, v));
+                Vector512.ConditionalSelect(none, sum, sum + (beta * Vector512.Load(Row(p.Pointer, v)))).Store(Row(p.Pointer, v));
             }
         }
-        return sums;
     }
 
     /// <summary>b_i += share_i b_v for every step in order; returns the energy b_v^2 / d that the steps take out, by column.</summary>

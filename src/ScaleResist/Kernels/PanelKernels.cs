@@ -2,6 +2,7 @@
 // SCALERESIST_KERNELS=scalar forces the twins; both give the same bits, so the choice shows in the time alone.
 
 using System.Numerics;
+using System.Runtime.Intrinsics;
 using ScaleResist.Graphs;
 
 namespace ScaleResist.Kernels;
@@ -25,54 +26,17 @@ public static unsafe class PanelKernels
         return sums;
     }
 
-    /// <summary>Returns |b - L x|^2 by column.</summary>
-    public static LaneSums Residual<T>(Laplacian laplacian, Panel<T> b, Panel<T> x, int start, int end)
+    /// <summary>Returns |b - L x|^2 by column; the residual itself goes to r, where one is given.</summary>
+    public static LaneSums Residual<T>(Laplacian laplacian, Panel<T> b, Panel<T> x, Panel<T>? r, int start, int end)
         where T : unmanaged, INumber<T>
     {
         LaneSums sums = default;
+        T* stored = r is null ? null : r.Pointer;
         if (Scalar)
-            ScalarKernels.Residual(laplacian, b.Pointer, x.Pointer, start, end, ref sums);
+            ScalarKernels.Residual(laplacian, b.Pointer, x.Pointer, stored, start, end, ref sums);
         else
-            VectorKernels.Residual(laplacian, b.Pointer, x.Pointer, start, end, ref sums);
+            VectorKernels.Residual(laplacian, b.Pointer, x.Pointer, stored, start, end, ref sums);
         return sums;
-    }
-
-    /// <summary>x += a p, r -= a q with one factor a column; returns |r|^2 by column.</summary>
-    public static LaneSums Step<T>(Panel<T> x, Panel<T> r, Panel<T> p, Panel<T> q, in LaneSums factors, int start, int end)
-        where T : unmanaged, INumber<T>
-    {
-        LaneSums sums = default;
-        T* a = stackalloc T[Panel<T>.Width];
-        Narrow(factors, a);
-        if (Scalar)
-            ScalarKernels.Step(x.Pointer, r.Pointer, p.Pointer, q.Pointer, a, start, end, ref sums);
-        else
-            VectorKernels.Step(x.Pointer, r.Pointer, p.Pointer, q.Pointer, a, start, end, ref sums);
-        return sums;
-    }
-
-    /// <summary>s = r / d row by row (0 where d is 0); returns r's by column.</summary>
-    public static LaneSums Scale<T>(double[] strengths, Panel<T> r, Panel<T> s, int start, int end)
-        where T : unmanaged, INumber<T>
-    {
-        LaneSums sums = default;
-        if (Scalar)
-            ScalarKernels.Scale(strengths, r.Pointer, s.Pointer, start, end, ref sums);
-        else
-            VectorKernels.Scale(strengths, r.Pointer, s.Pointer, start, end, ref sums);
-        return sums;
-    }
-
-    /// <summary>p = s + b p with one factor a column.</summary>
-    public static void Direction<T>(Panel<T> p, Panel<T> s, in LaneSums factors, int start, int end)
-        where T : unmanaged, INumber<T>
-    {
-        T* b = stackalloc T[Panel<T>.Width];
-        Narrow(factors, b);
-        if (Scalar)
-            ScalarKernels.Direction(p.Pointer, s.Pointer, b, start, end);
-        else
-            VectorKernels.Direction(p.Pointer, s.Pointer, b, start, end);
     }
 
     /// <summary>Returns |x|^2 by column.</summary>
@@ -104,6 +68,14 @@ public static unsafe class PanelKernels
             ScalarKernels.Shift(x.Pointer, means, start, end);
         else
             VectorKernels.Shift(x.Pointer, means, start, end);
+    }
+
+    internal static Vector512<T> Narrow<T>(in LaneSums factors)
+        where T : unmanaged, INumber<T>
+    {
+        T* lanes = stackalloc T[Panel<T>.Width];
+        Narrow(factors, lanes);
+        return Vector512.Load(lanes);
     }
 
     private static void Narrow<T>(in LaneSums from, T* to)

@@ -30,7 +30,7 @@ internal static unsafe class ScalarKernels
         }
     }
 
-    public static void Residual<T>(Laplacian laplacian, T* b, T* x, int start, int end, ref LaneSums sums)
+    public static void Residual<T>(Laplacian laplacian, T* b, T* x, T* r, int start, int end, ref LaneSums sums)
         where T : unmanaged, INumber<T>
     {
         for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
@@ -43,62 +43,12 @@ internal static unsafe class ScalarKernels
                 {
                     T residual = At(b, u, lane)
                         - ((T.CreateTruncating(laplacian.Strengths[u]) * At(x, u, lane)) - Around(laplacian, x, u, lane));
+                    if (r != null)
+                        At(r, u, lane) = residual;
                     squares += residual * residual;
                 }
                 sums[lane] += double.CreateTruncating(squares);
             }
-        }
-    }
-
-    public static void Step<T>(T* x, T* r, T* p, T* q, T* factors, int start, int end, ref LaneSums sums)
-        where T : unmanaged, INumber<T>
-    {
-        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
-        {
-            int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
-            for (int lane = 0; lane < Panel<T>.Width; lane++)
-            {
-                T squares = T.Zero;
-                for (int u = chunk; u < chunkEnd; u++)
-                {
-                    At(x, u, lane) += factors[lane] * At(p, u, lane);
-                    T residual = At(r, u, lane) - (factors[lane] * At(q, u, lane));
-                    At(r, u, lane) = residual;
-                    squares += residual * residual;
-                }
-                sums[lane] += double.CreateTruncating(squares);
-            }
-        }
-    }
-
-    public static void Scale<T>(double[] strengths, T* r, T* s, int start, int end, ref LaneSums sums)
-        where T : unmanaged, INumber<T>
-    {
-        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
-        {
-            int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
-            for (int lane = 0; lane < Panel<T>.Width; lane++)
-            {
-                T products = T.Zero;
-                for (int u = chunk; u < chunkEnd; u++)
-                {
-                    T residual = At(r, u, lane);
-                    T scaled = T.CreateTruncating(strengths[u] > 0 ? 1 / strengths[u] : 0) * residual;
-                    At(s, u, lane) = scaled;
-                    products += residual * scaled;
-                }
-                sums[lane] += double.CreateTruncating(products);
-            }
-        }
-    }
-
-    public static void Direction<T>(T* p, T* s, T* factors, int start, int end)
-        where T : unmanaged, INumber<T>
-    {
-        for (int u = start; u < end; u++)
-        {
-            for (int lane = 0; lane < Panel<T>.Width; lane++)
-                At(p, u, lane) = At(s, u, lane) + (factors[lane] * At(p, u, lane));
         }
     }
 

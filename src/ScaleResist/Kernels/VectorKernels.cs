@@ -3,7 +3,7 @@
 //
 // Data movement, in panels of n rows (64 n bytes each), beside the adjacency (8 bytes a node, 4 an arc, 8 more with weights):
 //   Multiply   reads 1 (rows again for each neighbour: from cache where the node order is good), writes 1
-//   Step       reads 4, writes 2        Scale  reads 1, writes 1        Direction  reads 2, writes 1
+//   Residual   reads 2 (x as above), writes 1 or none
 
 using System.Runtime.CompilerServices;
 using System.Runtime.Intrinsics;
@@ -15,7 +15,7 @@ namespace ScaleResist.Kernels;
 /// <summary>Panel kernels over the nodes <c>start .. end-1</c>; W = 16 floats or 8 doubles.</summary>
 internal static unsafe class VectorKernels
 {
-    private const int PrefetchArcs = 12;
+    private const int PrefetchArcs = 64;
 
     /// <summary>y = L x, and sums = x'y by column.</summary>
     public static void Multiply<T>(Laplacian laplacian, T* x, T* y, int start, int end, ref LaneSums sums)
@@ -52,8 +52,8 @@ internal static unsafe class VectorKernels
         }
     }
 
-    /// <summary>sums = |b - L x|^2 by column, nothing stored.</summary>
-    public static void Residual<T>(Laplacian laplacian, T* b, T* x, int start, int end, ref LaneSums sums)
+    /// <summary>sums = |b - L x|^2 by column; r = b - L x, or nothing where it is null.</summary>
+    public static void Residual<T>(Laplacian laplacian, T* b, T* x, T* r, int start, int end, ref LaneSums sums)
         where T : unmanaged
     {
         fixed (long* rowStart = laplacian.RowStart)
@@ -61,6 +61,7 @@ internal static unsafe class VectorKernels
         fixed (double* conductances = laplacian.Conductances)
         fixed (double* strengths = laplacian.Strengths)
         {
+            long lastArc = rowStart[end] - 1;
             for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
             {
                 int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
@@ -68,66 +69,23 @@ internal static unsafe class VectorKernels
                 for (int u = chunk; u < chunkEnd; u++)
                 {
                     Vector512<T> around = Vector512<T>.Zero;
-                    for (long k = rowStart[u]; k < rowStart[u + 1]; k++)
+                    long rowEnd = rowStart[u + 1];
+                    for (long k = rowStart[u]; k < rowEnd; k++)
                     {
+                        if (Sse.IsSupported)
+                            Sse.Prefetch0(Row(x, neighbours[Math.Min(k + PrefetchArcs, lastArc)]));
                         Vector512<T> neighbour = Vector512.Load(Row(x, neighbours[k]));
                         around += conductances == null ? neighbour : Broadcast<T>(conductances[k]) * neighbour;
                     }
                     Vector512<T> residual = Vector512.Load(Row(b, u))
                         - ((Broadcast<T>(strengths[u]) * Vector512.Load(Row(x, u))) - around);
+                    if (r != null)
+                        residual.Store(Row(r, u));
                     squares += residual * residual;
                 }
                 Add(ref sums, squares);
             }
         }
-    }
-
-    /// <summary>x += a p, r -= a q with one factor a column, and sums = |r|^2 by column.</summary>
-    public static void Step<T>(T* x, T* r, T* p, T* q, T* factors, int start, int end, ref LaneSums sums)
-        where T : unmanaged
-    {
-        Vector512<T> a = Vector512.Load(factors);
-        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
-        {
-            int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
-            Vector512<T> squares = Vector512<T>.Zero;
-            for (int u = chunk; u < chunkEnd; u++)
-            {
-                (Vector512.Load(Row(x, u)) + (a * Vector512.Load(Row(p, u)))).Store(Row(x, u));
-                Vector512<T> residual = Vector512.Load(Row(r, u)) - (a * Vector512.Load(Row(q, u)));
-                residual.Store(Row(r, u));
-                squares += residual * residual;
-            }
-            Add(ref sums, squares);
-        }
-    }
-
-    /// <summary>s = r / d row by row (0 where d is 0), and sums = r's by column.</summary>
-    public static void Scale<T>(double[] strengths, T* r, T* s, int start, int end, ref LaneSums sums)
-        where T : unmanaged
-    {
-        for (int chunk = start; chunk < end; chunk += LaneSums.ChunkRows)
-        {
-            int chunkEnd = Math.Min(end, chunk + LaneSums.ChunkRows);
-            Vector512<T> products = Vector512<T>.Zero;
-            for (int u = chunk; u < chunkEnd; u++)
-            {
-                Vector512<T> residual = Vector512.Load(Row(r, u));
-                Vector512<T> scaled = Broadcast<T>(strengths[u] > 0 ? 1 / strengths[u] : 0) * residual;
-                scaled.Store(Row(s, u));
-                products += residual * scaled;
-            }
-            Add(ref sums, products);
-        }
-    }
-
-    /// <summary>p = s + b p with one factor a column.</summary>
-    public static void Direction<T>(T* p, T* s, T* factors, int start, int end)
-        where T : unmanaged
-    {
-        Vector512<T> b = Vector512.Load(factors);
-        for (int u = start; u < end; u++)
-            (Vector512.Load(Row(s, u)) + (b * Vector512.Load(Row(p, u)))).Store(Row(p, u));
     }
 
     /// <summary>sums = |x|^2 by column.</summary>

@@ -45,8 +45,8 @@ internal sealed partial class ComponentSolver
     private readonly EliminationStep[] steps = [];
     private readonly int[]? coreRows; // the Laplacian's row of each row of the core; null: the component itself, in place
     private readonly Laplacian core;
-    private readonly IPreconditioner<float> single;
-    private readonly IPreconditioner<double> twice;
+    private readonly IPreconditionedLaplacian<float> single;
+    private readonly IPreconditionedLaplacian<double> twice;
 
     public ComponentSolver(Laplacian laplacian, Component component, int solves, ulong seed, CancellationToken cancel)
     {
@@ -74,13 +74,14 @@ internal sealed partial class ComponentSolver
         {
             coreRows = Compose(coreRows, factor.Order);
             core = Renumbered(core, factor.Order);
-            single = new SampledElimination<float>(factor);
-            twice = new SampledElimination<double>(factor);
+            single = new SampledElimination<float>(core, factor);
+            twice = new SampledElimination<double>(core, factor);
         }
         else
         {
-            single = new Jacobi<float>(core.Strengths, Choice.LeastEigenvalue);
-            twice = new Jacobi<double>(core.Strengths, Choice.LeastEigenvalue);
+            SplitLaplacian split = SplitLaplacian.Of(core);
+            single = new GaussSeidel<float>(split, Choice.LeastEigenvalue);
+            twice = new GaussSeidel<double>(split, Choice.LeastEigenvalue);
         }
     }
 
@@ -103,12 +104,12 @@ internal sealed partial class ComponentSolver
         where T : unmanaged, INumber<T>
     {
         (int start, int end) = (component.Start, component.End);
-        IPreconditioner<T> preconditioner = typeof(T) == typeof(float) ? (IPreconditioner<T>)single : (IPreconditioner<T>)twice;
+        IPreconditionedLaplacian<T> preconditioner = typeof(T) == typeof(float) ? (IPreconditionedLaplacian<T>)single : (IPreconditionedLaplacian<T>)twice;
         SolveLimits limits = SolveLimits.For(tolerance, GradientRows);
         SolveReport report = workspace.Report;
         if (coreRows is null)
         {
-            ConjugateGradient.Solve(core, preconditioner, b, z, workspace.Gradient, start, end, default, limits, report, cancel);
+            ConjugateGradient.Solve(preconditioner, b, z, workspace.Gradient, start, end, default, limits, report, cancel);
             PanelKernels.Centre(z, start, end);
             return;
         }
@@ -116,13 +117,13 @@ internal sealed partial class ComponentSolver
         LaneSums eliminated = FactorKernels.Eliminate<T>(steps, z);
         FactorKernels.Gather(z, coreRows, workspace.CoreB);
         ConjugateGradient.Solve(
-            core, preconditioner, workspace.CoreB, workspace.CoreX, workspace.Gradient, 0, core.NodeCount, eliminated, limits, report, cancel);
+            preconditioner, workspace.CoreB, workspace.CoreX, workspace.Gradient, 0, core.NodeCount, eliminated, limits, report, cancel);
         FactorKernels.Scatter(workspace.CoreX, coreRows, z);
         FactorKernels.Restore<T>(steps, z);
         PanelKernels.Centre(z, start, end);
         // In exact arithmetic the whole residual is the core's. What is more than that, rounding did on the way through the eliminated nodes.
         LaneSums size = PanelKernels.Squares(b, start, end), coreSize = PanelKernels.Squares(workspace.CoreB, 0, core.NodeCount);
-        LaneSums residual = PanelKernels.Residual(laplacian, b, z, start, end);
+        LaneSums residual = PanelKernels.Residual(laplacian, b, z, null, start, end);
         for (int lane = 0; lane < Panel<T>.Width; lane++)
         {
             double ofCore = report.Residuals[lane] * report.Residuals[lane] * coreSize[lane];

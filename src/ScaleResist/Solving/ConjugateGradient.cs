@@ -1,12 +1,12 @@
 // Preconditioned conjugate gradient on a whole panel at once: every column has its own scalars, all columns share each pass.
 // Invariant: a column that has stopped gets step 0 and direction factor 0, so its x does not change while others go on.
 //
-//   q = L p          a = r's / p'q      (Multiply: reads p and the adjacency, writes q)
-//   x += a p         r -= a q           (Step: reads x, r, p, q, writes x, r; gives |r|^2)
-//   s = M r          b = new r's / old  (Apply: reads r, writes s; Jacobi: 2 panels)
-//   p = s + b p                         (Direction: reads s, p, writes p)
+//   p = M r + b p        p'L p               (Product)
+//   a = r'M r / p'L p
+//   x += a p             r -= a L p          (Advance: gives the new r'M r)
+//   b = new r'M r / old
 //
-// 11 panel passes an iteration beside the gathers of L p. s lives in q's memory, which is free by then.
+// How many passes over the panels this takes is the preconditioner's affair: GaussSeidel needs 2 of 12 panels in all, SampledElimination 3 of 14.
 //
 // When to stop. A residual small beside b says little: a weak cut's mode may hold most of x and next to nothing of b. What counts is the error in
 // the energy norm, |x - x*|_L^2 = r' L+ r <= r'M r / m with m the least eigenvalue of M L on vectors that sum to zero; the energy x'b = sum a r's
@@ -14,13 +14,12 @@
 
 using System.Numerics;
 using System.Runtime.InteropServices;
-using ScaleResist.Graphs;
 using ScaleResist.Kernels;
 
 namespace ScaleResist.Solving;
 
 /// <summary>Lockstep conjugate gradient for L x = b on the rows <c>start .. end-1</c>, one component, W columns at a time.</summary>
-public static class ConjugateGradient
+internal static class ConjugateGradient
 {
     // The recurrence aims below the tolerance, so that the error recomputed from the true residual can meet it.
     private const double Aim = 0.64;
@@ -31,8 +30,7 @@ public static class ConjugateGradient
     /// Solves until |x - x*|_L &lt;= tolerance |x*|_L, as far as the preconditioner lets one tell, and checks by the true residual. Each column of b
     /// must sum to zero; x is not centred.
     /// </summary>
-    /// <param name="laplacian">L.</param>
-    /// <param name="preconditioner">M.</param>
+    /// <param name="preconditioned">L and M.</param>
     /// <param name="b">Right-hand sides, n x W.</param>
     /// <param name="x">Solutions, n x W; what it held is overwritten.</param>
     /// <param name="workspace">Three panels of at least n rows.</param>
@@ -43,8 +41,7 @@ public static class ConjugateGradient
     /// <param name="report">Receives iterations, reasons, energy errors and true residuals.</param>
     /// <param name="cancel">Checked once an iteration.</param>
     public static void Solve<T>(
-        Laplacian laplacian,
-        IPreconditioner<T> preconditioner,
+        IPreconditionedLaplacian<T> preconditioned,
         Panel<T> b,
         Panel<T> x,
         GradientWorkspace<T> workspace,
@@ -57,39 +54,21 @@ public static class ConjugateGradient
         where T : unmanaged, INumber<T>
     {
         Clear(x, start, end);
-        Copy(b, workspace.R, start, end);
-        Run<T> run = new(laplacian, preconditioner, x, workspace, start, end, known, limits, report);
-        LaneSums size = PanelKernels.Squares(b, start, end);
+        Run<T> run = new(preconditioned, b, x, workspace, start, end, known, limits, report);
         run.Begin();
         for (int restart = 0; ; restart++)
         {
             run.Iterate(cancel);
-            Verify(laplacian, b, x, workspace, start, end, size, report);
             if (!run.Resume() || restart == MostRestarts)
                 break;
         }
         report.LeastEigenvalue = run.Least;
     }
 
-    // r = b - L x from x itself, and its size beside b.
-    private static void Verify<T>(
-        Laplacian laplacian, Panel<T> b, Panel<T> x, GradientWorkspace<T> workspace, int start, int end, in LaneSums size, SolveReport report)
-        where T : unmanaged, INumber<T>
-    {
-        LaneSums ones = default;
-        for (int lane = 0; lane < Panel<T>.Width; lane++)
-            ones[lane] = 1;
-        PanelKernels.Multiply(laplacian, x, workspace.Q, start, end);
-        Copy(b, workspace.R, start, end);
-        LaneSums rr = PanelKernels.Step(workspace.P, workspace.R, workspace.P, workspace.Q, ones, start, end); // p is free, and doubled in vain
-        for (int lane = 0; lane < Panel<T>.Width; lane++)
-            report.Residuals[lane] = size[lane] > 0 ? Math.Sqrt(rr[lane] / size[lane]) : 0;
-    }
-
     // The state of one solve. Where rounding has parted the recurrence from the truth, it begins again from the true residual, x as it is.
     private sealed class Run<T>(
-        Laplacian laplacian,
-        IPreconditioner<T> preconditioner,
+        IPreconditionedLaplacian<T> preconditioned,
+        Panel<T> b,
         Panel<T> x,
         GradientWorkspace<T> workspace,
         int start,
@@ -100,19 +79,20 @@ public static class ConjugateGradient
         where T : unmanaged, INumber<T>
     {
         private readonly double factor = limits.Tolerance * limits.Tolerance * Safety;
+        private LaneSums size;
         private LaneSums rs;
         private LaneSums first;
         private LaneSums energy = known;
         private uint active;
         private bool judged;
 
-        public double Least { get; private set; } = preconditioner.LeastEigenvalue;
+        public double Least { get; private set; } = preconditioned.LeastEigenvalue;
 
         public void Begin()
         {
             report.Iterations = 0;
             report.HalfReduction = 1;
-            rs = preconditioner.Apply(workspace.R, workspace.Q, start, end);
+            preconditioned.Begin(b, workspace, start, end, out size, out rs);
             first = rs;
             active = 0;
             for (int lane = 0; lane < Panel<T>.Width; lane++)
@@ -127,14 +107,13 @@ public static class ConjugateGradient
 
         public void Iterate(CancellationToken cancel)
         {
-            Panel<T> r = workspace.R, p = workspace.P, q = workspace.Q;
+            LaneSums beta = default;
             report.Lanczos.Clear();
-            Copy(q, p, start, end);
             while (active != 0 && report.Iterations < limits.MostIterations)
             {
                 cancel.ThrowIfCancellationRequested();
                 report.Iterations++;
-                LaneSums pq = PanelKernels.Multiply(laplacian, p, q, start, end);
+                LaneSums pq = preconditioned.Product(beta, workspace, start, end);
                 LaneSums a = default;
                 for (int lane = 0; lane < Panel<T>.Width; lane++)
                 {
@@ -146,9 +125,8 @@ public static class ConjugateGradient
                     energy[lane] += a[lane] * rs[lane];
                 }
                 report.Lanczos.AddSteps(a);
-                PanelKernels.Step(x, r, p, q, a, start, end);
-                LaneSums newRs = preconditioner.Apply(r, q, start, end);
-                LaneSums beta = default;
+                LaneSums newRs = preconditioned.Advance(a, x, workspace, start, end);
+                beta = default;
                 for (int lane = 0; lane < Panel<T>.Width; lane++)
                 {
                     if (!IsActive(lane))
@@ -163,19 +141,18 @@ public static class ConjugateGradient
                 report.Lanczos.AddDirections(beta);
                 if (report.Iterations <= limits.MostIterations / 2)
                     report.HalfReduction = WorstReduction();
-                if (active != 0)
-                    PanelKernels.Direction(p, q, beta, start, end);
             }
             report.WorstReduction = WorstReduction();
         }
 
-        // After Verify: judges every column by its true residual. Those that fall short go on from it, as long as that halves the error.
+        // Judges every column by its true residual, recomputed from x. Those that fall short go on from it, as long as that halves the error.
         public bool Resume()
         {
-            rs = preconditioner.Apply(workspace.R, workspace.Q, start, end);
+            preconditioned.BeginAt(b, x, workspace, start, end, out LaneSums rr, out rs);
             active = 0;
             for (int lane = 0; lane < Panel<T>.Width; lane++)
             {
+                report.Residuals[lane] = size[lane] > 0 ? Math.Sqrt(rr[lane] / size[lane]) : 0;
                 double error = rs[lane] > 0 ? Math.Sqrt(rs[lane] / (Safety * Least * energy[lane])) : rs[lane] == 0 ? 0 : double.NaN;
                 bool worthIt = !judged || error < 0.5 * report.EnergyErrors[lane];
                 report.EnergyErrors[lane] = error;

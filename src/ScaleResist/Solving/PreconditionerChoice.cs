@@ -8,16 +8,19 @@ namespace ScaleResist.Solving;
 /// <summary>A choice and its reason.</summary>
 /// <param name="Name">As reports show it.</param>
 /// <param name="Reason">One line.</param>
-/// <param name="Factor">The sampled factor, or null where the diagonal is enough.</param>
-/// <param name="LeastEigenvalue">Of D^-1 L, as the trial saw it; 1 where there was none.</param>
+/// <param name="Factor">The sampled factor, or null where Gauss-Seidel is enough.</param>
+/// <param name="LeastEigenvalue">Of M L, as the trial saw it; 1 where there was none.</param>
 internal sealed record PreconditionerChoice(string Name, string Reason, SampledFactor? Factor, double LeastEigenvalue = 1)
 {
     private const int TrialSteps = 16;
+    private const int BallNodes = 1 << 16;
 
-    // In steps of Jacobi on a panel of 16: what a sampled factor costs to make, and what a solve with it costs. Rough by nature: measured
-    // some 140 and 48 on a small world of 10^6 nodes, and some 250 for the factor of a thesaurus with hubs (1.8M links).
-    private const double SetUpSteps = 300;
-    private const double SolveSteps = 50;
+    // In steps of Gauss-Seidel on a panel of 16: what a sampled factor costs to make, and what a solve with it costs. Rough by nature.
+    private const double SetUpSteps = 200;
+    private const double SolveSteps = 60;
+    private const double MostSteps = 128; // beyond, the early pace foretells too few steps (226 on a grid that needs 1200)
+    // A ball may look worse than the whole, since most of its nodes lie on its boundary: 103 steps against 31 on a small world of 10^6 nodes.
+    private const double BallMargin = 2;
     // On a grid of 10^6 nodes a second sample costs as much to set up as it saves in some 120 solves; on a cubic grid it costs 30 s and the
     // solves become slower.
     private const int ManySolves = 256;
@@ -27,9 +30,10 @@ internal sealed record PreconditionerChoice(string Name, string Reason, SampledF
     public static PreconditionerChoice None { get; } = new("elimination", "nothing is left to iterate on", null);
 
     /// <summary>
-    /// Tries Jacobi on white right-hand sides, in which every mode has the same share, a weak cut's too, until a thousandth of one mode's share
-    /// is left. Where the steps this takes cost less, over the solves to come, than a sampled factor and its solves, Jacobi it is, and the
-    /// trial has shown the least eigenvalue of D^-1 L. Else a sampled factor.
+    /// Tries Gauss-Seidel on white right-hand sides, in which every mode has the same share, a weak cut's too, until a thousandth of one mode's
+    /// share is left: first on a small ball, which tells meshes and roads, then on the whole. Where the steps this takes cost less, over the
+    /// solves to come, than a sampled factor and its solves, Gauss-Seidel it is, and the trial has shown the least eigenvalue of M L. Else a
+    /// sampled factor.
     /// </summary>
     /// <param name="laplacian">L, of which the first <paramref name="n"/> rows are tried.</param>
     /// <param name="n">The number of nodes.</param>
@@ -40,35 +44,57 @@ internal sealed record PreconditionerChoice(string Name, string Reason, SampledF
     public static PreconditionerChoice ByTrial(
         Laplacian laplacian, int n, Func<Laplacian> core, int solves, ulong seed, CancellationToken cancel)
     {
-        using Panel<float> b = new(n), x = new(n);
-        using GradientWorkspace<float> workspace = new(n);
-        SolveReport report = new();
-        FillSigns(b, seed);
-        double reduction = 1e-3 / n;
-        double most = SolveSteps + (SetUpSteps * ProbeKernels.Width / Math.Max(solves, ProbeKernels.Width));
-        double steps = Try(TrialSteps);
-        if (steps > TrialSteps && steps <= most)
-            steps = Try((int)most);
-        if (steps <= most && report.Reasons.All(reason => reason == StopReason.Converged))
+        double most = Math.Min(MostSteps, SolveSteps + (SetUpSteps * ProbeKernels.Width / Math.Max(solves, ProbeKernels.Width)));
+        Trial trial;
+        if (n > 2 * BallNodes)
         {
-            double least = Enumerable.Range(0, Panel<float>.Width).Min(report.Lanczos.LeastRitzValue);
-            return new("jacobi", $"a trial needs {steps:0} steps", null, least);
+            Laplacian ball = LeadingBall.Of(laplacian, BallNodes);
+            trial = Trial.Of(ball, ball.NodeCount, TrialSteps, seed, cancel);
+            if (trial.Steps > BallMargin * most)
+                return Sampled($" on {ball.NodeCount:N0} nodes");
         }
-        Laplacian own = core();
-        int samples = solves >= ManySolves && own.Neighbours.Length < PlanarDegree * n ? 2 : 1;
-        return new(
-            $"sampled elimination, {samples} sample{(samples == 1 ? "" : "s")} an entry", $"a trial of jacobi foretells {steps:0} steps",
-            SampledFactor.Of(own, samples, seed));
+        trial = Trial.Of(laplacian, n, most, seed, cancel);
+        if (trial.Least is double least)
+            return new("gauss-seidel", $"a trial needs {trial.Steps:0} steps", null, least);
+        return Sampled("");
 
-        // The steps needed, or those foretold from the pace of the second half.
-        double Try(int limit)
+        PreconditionerChoice Sampled(string where)
         {
-            ConjugateGradient.Solve(
-                laplacian, new Jacobi<float>(laplacian.Strengths), b, x, workspace, 0, n, default, new SolveLimits(0, limit, reduction), report, cancel);
-            if (report.Reasons.All(reason => reason == StopReason.Converged))
-                return report.Iterations;
-            double pace = Math.Log(report.HalfReduction / report.WorstReduction) / (limit - (limit / 2));
-            return pace > 0 ? limit + (Math.Log(report.WorstReduction / reduction) / pace) : double.PositiveInfinity;
+            Laplacian own = core();
+            int samples = solves >= ManySolves && own.Neighbours.Length < PlanarDegree * n ? 2 : 1;
+            return new(
+                $"sampled elimination, {samples} sample{(samples == 1 ? "" : "s")} an entry",
+                $"a trial of gauss-seidel{where} foretells {trial.Steps:0} steps", SampledFactor.Of(own, samples, seed));
+        }
+    }
+
+    // The steps needed, and the least eigenvalue of M L they showed; or those foretold from the pace of the last half, where they are too many.
+    private sealed record Trial(double Steps, double? Least)
+    {
+        public static Trial Of(Laplacian laplacian, int n, double most, ulong seed, CancellationToken cancel)
+        {
+            using Panel<float> b = new(n), x = new(n);
+            using GradientWorkspace<float> workspace = new(n);
+            SolveReport report = new();
+            GaussSeidel<float> preconditioned = new(SplitLaplacian.Of(laplacian));
+            FillSigns(b, seed);
+            double reduction = 1e-3 / n;
+            double steps = Try(TrialSteps);
+            if (steps > TrialSteps && steps <= most)
+                steps = Try((int)most);
+            return steps <= most && report.Reasons.All(reason => reason == StopReason.Converged)
+                ? new(steps, Enumerable.Range(0, Panel<float>.Width).Min(report.Lanczos.LeastRitzValue))
+                : new(steps, null);
+
+            double Try(int limit)
+            {
+                ConjugateGradient.Solve(
+                    preconditioned, b, x, workspace, 0, n, default, new SolveLimits(0, limit, reduction), report, cancel);
+                if (report.Reasons.All(reason => reason == StopReason.Converged))
+                    return report.Iterations;
+                double pace = Math.Log(report.HalfReduction / report.WorstReduction) / (limit - (limit / 2));
+                return pace > 0 ? limit + (Math.Log(report.WorstReduction / reduction) / pace) : double.PositiveInfinity;
+            }
         }
     }
 

@@ -66,13 +66,13 @@ public readonly record struct SolveLimits(double Tolerance, int MostIterations, 
 public sealed class GradientWorkspace<T>(int rows) : IDisposable
     where T : unmanaged, INumber<T>
 {
-    /// <summary>Residuals r.</summary>
+    /// <summary>Residuals r, or what a preconditioner keeps in their place.</summary>
     internal Panel<T> R { get; } = new(rows);
 
     /// <summary>Directions p.</summary>
     internal Panel<T> P { get; } = new(rows);
 
-    /// <summary>L p, then, once used, the preconditioned residuals s.</summary>
+    /// <summary>L p, and what a preconditioner makes of r.</summary>
     internal Panel<T> Q { get; } = new(rows);
 
     /// <inheritdoc/>

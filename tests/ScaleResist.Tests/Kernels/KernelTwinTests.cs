@@ -96,10 +96,14 @@ public unsafe class KernelTwinTests
         int n = network.NodeCount;
         SampledFactor factor = SampledFactor.Of(network.Laplacian, 2, 1);
         EliminationStep[] steps = [.. Elimination.Of(network.Laplacian, network.Components[0]).Steps];
-        using Panel<T> r = Filled<T>(n, 1), y = Filled<T>(n, 2), b = Filled<T>(n, 3);
-        using Panel<T> y2 = Filled<T>(n, 2), b2 = Filled<T>(n, 3);
-        List<LaneSums> vector = Run(y, b), scalar = [];
-        WithScalar(() => scalar = Run(y2, b2));
+        using Panel<T> x = Filled<T>(n, 5), r = Filled<T>(n, 1), p = Filled<T>(n, 4), y = Filled<T>(n, 2), b = Filled<T>(n, 3);
+        using Panel<T> x2 = Filled<T>(n, 5), r2 = Filled<T>(n, 1), p2 = Filled<T>(n, 4), y2 = Filled<T>(n, 2), b2 = Filled<T>(n, 3);
+        LaneSums factors = Factors();
+        List<LaneSums> vector = Run(x, r, p, y, b), scalar = [];
+        WithScalar(() => scalar = Run(x2, r2, p2, y2, b2));
+        AssertSame(x, x2);
+        AssertSame(r, r2);
+        AssertSame(p, p2);
         AssertSame(y, y2);
         AssertSame(b, b2);
         for (int i = 0; i < vector.Count; i++)
@@ -108,14 +112,15 @@ public unsafe class KernelTwinTests
                 Assert.Equal(scalar[i][lane], vector[i][lane]);
         }
 
-        List<LaneSums> Run(Panel<T> y, Panel<T> b)
+        List<LaneSums> Run(Panel<T> x, Panel<T> r, Panel<T> p, Panel<T> y, Panel<T> b)
         {
-            FactorKernels.Forward(new FactorHalf(factor.RowStart, factor.Predecessors, factor.RowShares), r, y, n);
-            LaneSums products = FactorKernels.Back(
-                new FactorHalf(factor.ColumnStart, factor.Successors, factor.ColumnShares), factor.Inverse, r, y, n);
+            FactorHalf rows = new(factor.RowStart, factor.Predecessors, factor.RowShares);
+            LaneSums first = FactorKernels.Forward(rows, factor.Inverse, r, y, n);
+            FactorKernels.Back(new FactorHalf(factor.ColumnStart, factor.Successors, factor.ColumnShares), factor.Inverse, y, p, factors, n);
+            LaneSums second = FactorKernels.StepForward(rows, factor.Inverse, x, r, p, y, factors, n);
             LaneSums energy = FactorKernels.Eliminate<T>(steps, b);
             FactorKernels.Restore<T>(steps, b);
-            return [products, energy, PanelKernels.Squares(b, 0, n)];
+            return [first, second, energy, PanelKernels.Squares(b, 0, n)];
         }
     }
 
@@ -134,9 +139,8 @@ public unsafe class KernelTwinTests
         int n = network.NodeCount;
         using Panel<T> x = Filled<T>(n, 1), r = Filled<T>(n, 2), p = Filled<T>(n, 3), q = Filled<T>(n, 4), s = new(n);
         using Panel<T> x2 = Filled<T>(n, 1), r2 = Filled<T>(n, 2), p2 = Filled<T>(n, 3), q2 = Filled<T>(n, 4), s2 = new(n);
-        LaneSums factors = default;
-        for (int lane = 0; lane < 16; lane++)
-            factors[lane] = 0.1 * lane;
+        LaneSums factors = Factors();
+        SplitLaplacian split = SplitLaplacian.Of(network.Laplacian);
         List<LaneSums> vector = Run(x, r, p, q, s);
         List<LaneSums> scalar = [];
         WithScalar(() => scalar = Run(x2, r2, p2, q2, s2));
@@ -156,14 +160,26 @@ public unsafe class KernelTwinTests
             List<LaneSums> sums =
             [
                 PanelKernels.Multiply(network.Laplacian, p, q, start, n),
-                PanelKernels.Residual(network.Laplacian, r, x, start, n),
-                PanelKernels.Step(x, r, p, q, factors, start, n),
-                PanelKernels.Scale(network.Strengths, r, s, start, n),
+                PanelKernels.Residual(network.Laplacian, r, x, null, start, n),
+                PanelKernels.Residual(network.Laplacian, r, x, s, start, n),
             ];
-            PanelKernels.Direction(p, s, factors, start, n);
+            GaussSeidelKernels.Start(split, s, s, start, n, out LaneSums squares, out LaneSums energies);
+            sums.Add(squares);
+            sums.Add(energies);
+            sums.Add(GaussSeidelKernels.Back(split, s, p, q, factors, start, n));
+            sums.Add(GaussSeidelKernels.Forward(split, x, s, p, q, factors, start, n));
             PanelKernels.Centre(x, start, n);
             return sums;
         }
+    }
+
+    // The first lane's is 0.
+    private static LaneSums Factors()
+    {
+        LaneSums factors = default;
+        for (int lane = 0; lane < 16; lane++)
+            factors[lane] = 0.1 * lane;
+        return factors;
     }
 
     // The switch is shared with tests that run beside this one; both settings give the same bits, so they may run either.
