@@ -46,12 +46,17 @@ internal static class SolverBench
         {
             if (only is not null && !name.StartsWith(only, StringComparison.Ordinal))
                 continue;
-            EdgeListBuilder builder = new(weighted: plan.Decades > 0);
-            NetworkGenerator.Generate(plan, new Sink(builder));
-            Network network = NetworkBuilder.Build(
-                builder.Finish(new InputFacts { Path = name, Form = "memory", Sha256 = "", Columns = ["1", "2"] }));
-            Row(name, LargestComponent(network), solves);
+            Row(name, Generate(plan), solves);
         }
+    }
+
+    /// <summary>The largest component of a generated network.</summary>
+    public static Network Generate(FamilyPlan plan)
+    {
+        EdgeListBuilder builder = new(weighted: plan.Decades > 0);
+        NetworkGenerator.Generate(plan, new Sink(builder));
+        return LargestComponent(NetworkBuilder.Build(
+            builder.Finish(new InputFacts { Path = "generated", Form = "memory", Sha256 = "", Columns = ["1", "2"] })));
     }
 
     private static Network LargestComponent(Network network)
