@@ -1,70 +1,69 @@
-// Elimination one node at a time, the least degree first: for what is left when little of the graph is independent any more.
+// Elimination one node at a time, the least degree first: for what is left where hardly any nodes are independent.
 // Invariant: parallel links may stand in the lists; they are merged when a node is gathered, and degrees count them all.
 
 namespace ScaleResist.Solving;
 
-/// <summary>Eliminates all of a remaining graph.</summary>
+/// <summary>Eliminates all that is left of a graph.</summary>
 internal static class DegreeElimination
 {
+    /// <summary>Eliminates all nodes that are alive into columns; the last is grounded.</summary>
+    /// <param name="graph">Read only.</param>
+    /// <param name="columns">Grow by the nodes that were left.</param>
+    /// <param name="samples">An entry.</param>
+    /// <param name="seed">Of the draws.</param>
     public static void Run(RemainingGraph graph, FactorColumns columns, int samples, ulong seed)
     {
-        int n = graph.Count;
-        int[] nodes = graph.Nodes.ToArray(), degrees = new int[n];
-        for (int i = 0; i < n; i++)
-            degrees[i] = graph.Degree(nodes[i]);
-        FillLinks fill = new(n, degrees.Sum(d => (long)d));
-        bool[] gone = new bool[n];
-        int[] position = new int[n]; // 1 + place among the gathered neighbours
+        int[] nodes = graph.Nodes.ToArray();
+        int n = nodes.Length;
+        int[] degrees = [.. nodes.Select(graph.Degree)];
+        FillLinks fill = new(n, degrees.Sum(degree => (long)degree));
         DegreeQueue queue = new(degrees);
         StarSample star = new(samples, seed);
-        for (int step = 0; step < n; step++)
+        SampledLink[] links = [];
+        bool[] gone = new bool[n];
+        int[] position = new int[n]; // 1 + place among the gathered neighbours
+        for (int i = 0; i < n; i++)
         {
             int v = queue.TakeLeast();
             gone[v] = true;
-            int count = 0;
+            star.Clear();
             foreach (Arc arc in graph.Row(nodes[v]))
-                Put(nodes.AsSpan().BinarySearch(arc.To), arc.Conductance);
+                Gather(Array.BinarySearch(nodes, arc.To), arc.Weight);
             for (int link = fill.First(v); link >= 0; link = fill.Next(link))
-                Put(fill.To(link), fill.Weight(link));
-            for (int i = 0; i < count; i++)
-                position[star.Nodes[i]] = 0;
-
-            double d = star.Begin(nodes[v], count);
-            int place = columns.Open(nodes[v], count);
-            columns.MakeRoom();
-            columns.Inverse[place] = d > 0 ? (float)(1 / d) : 0;
-            Span<Arc> column = columns.Column(place);
-            for (int i = 0; i < count; i++)
-                column[i] = new Arc(nodes[star.Nodes[i]], (float)(star.Weights[i] / d));
-            for (int i = 0; i + 1 < count; i++)
+                Gather(fill.To(link), fill.Weight(link));
+            for (int k = 0; k < star.Count; k++)
             {
-                double c = star.Conductance(i, d);
-                if (!(c > 0))
+                position[star.Nodes[k]] = 0;
+                star.Nodes[k] = nodes[star.Nodes[k]];
+            }
+            int place = columns.Open(nodes[v], star.Count), count = StarSample.LinkCount(star.Count, samples);
+            columns.Inverse[place] = star.Eliminate(nodes[v], columns.Column(place));
+            if (links.Length < count)
+                links = new SampledLink[2 * count];
+            star.Sample(links);
+            foreach (SampledLink link in links.AsSpan(0, count))
+            {
+                if (!(link.Weight > 0))
                     continue;
-                for (int s = 0; s < samples; s++)
-                {
-                    int j = star.Draw(i, count);
-                    fill.Add(star.Nodes[i], star.Nodes[j], c);
-                    queue.Change(star.Nodes[i], 1);
-                    queue.Change(star.Nodes[j], 1);
-                }
+                int a = Array.BinarySearch(nodes, link.A), b = Array.BinarySearch(nodes, link.B);
+                fill.Add(a, b, link.Weight);
+                queue.Change(a, 1);
+                queue.Change(b, 1);
             }
+        }
 
-            void Put(int node, double weight)
+        void Gather(int node, double weight)
+        {
+            if (gone[node])
+                return;
+            queue.Change(node, -1);
+            if (position[node] > 0)
             {
-                if (gone[node])
-                    return;
-                queue.Change(node, -1);
-                if (position[node] > 0)
-                {
-                    star.Weights[position[node] - 1] += weight;
-                    return;
-                }
-                star.Ensure(count + 1);
-                star.Nodes[count] = node;
-                star.Weights[count++] = weight;
-                position[node] = count;
+                star.Weights[position[node] - 1] += weight;
+                return;
             }
+            star.Add(node, weight);
+            position[node] = star.Count;
         }
     }
 }

@@ -1,32 +1,12 @@
-// What is left of a graph while its nodes are being eliminated: rows of packed arcs in the order of the nodes, written afresh in every round.
+// What is left of a graph while its nodes are being eliminated: rows of arcs, close together in the order of the nodes, written afresh each round.
 // Invariant: rows are symmetric, without self-loops or duplicates; only nodes that are alive have rows, and only to nodes that are alive.
 //
-// Two buffers of arcs serve in turn, and links are pooled: memory that was never touched costs more than the work done in it.
+// Two buffers of arcs serve in turn: memory touched for the first time costs more than the work that is done in it.
 
-using System.Runtime.CompilerServices;
+using System.Runtime.InteropServices;
 using ScaleResist.Graphs;
 
 namespace ScaleResist.Solving;
-
-/// <summary>The other end in the upper half and the conductance's bits below, so that arcs sort by their ends.</summary>
-/// <param name="Bits">Both.</param>
-internal readonly record struct Arc(ulong Bits)
-{
-    /// <summary>An arc to a node.</summary>
-    public Arc(int to, float conductance)
-        : this(((ulong)(uint)to << 32) | BitConverter.SingleToUInt32Bits(conductance))
-    {
-    }
-
-    /// <summary>The other end.</summary>
-    public int To => (int)(Bits >> 32);
-
-    /// <summary>Positive; floats, since the factor's shares are.</summary>
-    public float Conductance => BitConverter.UInt32BitsToSingle((uint)Bits);
-}
-
-/// <summary>A link that an elimination leaves behind; conductance 0: none.</summary>
-internal readonly record struct SampledLink(int A, int B, float Conductance);
 
 /// <summary>Rows of the nodes that are alive.</summary>
 internal sealed class RemainingGraph
@@ -36,10 +16,10 @@ internal sealed class RemainingGraph
     private readonly int[] alive; // ascending
     private readonly bool[] gone;
     private readonly int[] degree;
-    private readonly int[] incoming; // links of the round that end at a node
+    private readonly int[] incoming; // ends of added links, by node
     private readonly ParallelOptions threads;
     private long[] start, nextStart;
-    private ulong[] arcs, nextArcs = [];
+    private Arc[] arcs, nextArcs = [];
 
     /// <summary>All of a Laplacian.</summary>
     public RemainingGraph(Laplacian laplacian, ParallelOptions threads)
@@ -53,14 +33,17 @@ internal sealed class RemainingGraph
         incoming = new int[n];
         start = new long[n];
         nextStart = new long[n];
-        arcs = GC.AllocateUninitializedArray<ulong>(laplacian.Neighbours.Length);
-        ForChunks(n, v =>
+        arcs = GC.AllocateUninitializedArray<Arc>(laplacian.Neighbours.Length);
+        ForChunks(n, (from, to) =>
         {
-            alive[v] = v;
-            start[v] = laplacian.RowStart[v];
-            degree[v] = (int)(laplacian.RowStart[v + 1] - laplacian.RowStart[v]);
-            for (long k = laplacian.RowStart[v]; k < laplacian.RowStart[v + 1]; k++)
-                arcs[k] = new Arc(laplacian.Neighbours[k], (float)laplacian.Conductance(k)).Bits;
+            for (int v = from; v < to; v++)
+            {
+                alive[v] = v;
+                start[v] = laplacian.RowStart[v];
+                degree[v] = (int)(laplacian.RowStart[v + 1] - laplacian.RowStart[v]);
+            }
+            for (long k = laplacian.RowStart[from]; k < laplacian.RowStart[to]; k++)
+                arcs[k] = new Arc(laplacian.Neighbours[k], (float)laplacian.Conductance(k));
         });
     }
 
@@ -74,26 +57,46 @@ internal sealed class RemainingGraph
     public int Degree(int node) => degree[node];
 
     /// <summary>The arcs of a node that is alive.</summary>
-    public ReadOnlySpan<Arc> Row(int node) =>
-        System.Runtime.InteropServices.MemoryMarshal.Cast<ulong, Arc>(arcs.AsSpan((int)start[node], degree[node]));
+    public ReadOnlySpan<Arc> Row(int node) => arcs.AsSpan((int)start[node], degree[node]);
 
-    /// <summary>Takes independent nodes out and puts links between their neighbours in; parallel ones are merged.</summary>
-    /// <param name="independent">Nodes to go, no two of them neighbours.</param>
-    /// <param name="links">Links to add.</param>
+    /// <summary>Takes nodes out, no two of them neighbours, and puts links in; parallel ones are merged. Linear in nodes, arcs and links.</summary>
     public void Replace(ReadOnlySpan<int> independent, ReadOnlySpan<SampledLink> links)
     {
-        // Until the rows are written anew, nextStart counts the neighbours that go.
+        long length = Measure(independent, links);
+        if (nextArcs.Length < length)
+            nextArcs = GC.AllocateUninitializedArray<Arc>(checked((int)length));
+        foreach (ref readonly SampledLink link in links)
+        {
+            if (link.Weight > 0)
+            {
+                nextArcs[--nextStart[link.A]] = new Arc(link.B, link.Weight);
+                nextArcs[--nextStart[link.B]] = new Arc(link.A, link.Weight);
+            }
+        }
+        ForChunks(Count, (from, to) =>
+        {
+            for (int i = from; i < to; i++)
+                Rewrite(alive[i]);
+        });
+        (start, nextStart) = (nextStart, start);
+        (arcs, nextArcs) = (nextArcs, arcs);
+    }
+
+    // Room for each new row, whose added links come first: nextStart stands behind these. Returns the room needed in all.
+    private long Measure(ReadOnlySpan<int> independent, ReadOnlySpan<SampledLink> links)
+    {
+        long[] losses = nextStart; // until the rooms are known
         foreach (int v in Nodes)
-            nextStart[v] = 0;
+            losses[v] = 0;
         foreach (int v in independent)
         {
             gone[v] = true;
             foreach (Arc arc in Row(v))
-                nextStart[arc.To]++;
+                losses[arc.To]++;
         }
-        foreach (SampledLink link in links)
+        foreach (ref readonly SampledLink link in links)
         {
-            if (link.Conductance > 0)
+            if (link.Weight > 0)
             {
                 incoming[link.A]++;
                 incoming[link.B]++;
@@ -106,82 +109,73 @@ internal sealed class RemainingGraph
             if (gone[v])
                 continue;
             alive[left++] = v;
-            long length = degree[v] - nextStart[v] + incoming[v];
+            long kept = degree[v] - losses[v];
             nextStart[v] = end + incoming[v];
-            end += length;
+            end = nextStart[v] + kept;
         }
         Count = left;
-        if (nextArcs.Length < end)
-            nextArcs = GC.AllocateUninitializedArray<ulong>(checked((int)end));
-        foreach (SampledLink link in links)
-        {
-            if (link.Conductance > 0)
-            {
-                nextArcs[--nextStart[link.A]] = new Arc(link.B, link.Conductance).Bits;
-                nextArcs[--nextStart[link.B]] = new Arc(link.A, link.Conductance).Bits;
-            }
-        }
-        ForChunks(left, i => Merge(alive[i]));
-        (start, nextStart) = (nextStart, start);
-        (arcs, nextArcs) = (nextArcs, arcs);
+        return end;
     }
 
-    // The new links of a row stand at its beginning; the old ones follow.
-    private void Merge(int v)
+    // Added links may be parallel to each other and to old ones; old ones are not to each other.
+    private void Rewrite(int v)
     {
-        int begin = (int)nextStart[v], added = begin + incoming[v], end = begin;
-        for (int read = begin; read < added; read++)
-            Put(nextArcs[read], end);
-        int merged = end;
-        ReadOnlySpan<Arc> row = Row(v);
-        if (row.Length + merged - begin > LongRow)
+        ReadOnlySpan<Arc> old = Row(v);
+        Span<Arc> row = nextArcs.AsSpan((int)nextStart[v]); // written no further than its room
+        int count = 0;
+        if (incoming[v] + old.Length > LongRow)
         {
-            foreach (Arc arc in row)
+            count = incoming[v];
+            foreach (Arc arc in old)
             {
                 if (!gone[arc.To])
-                    nextArcs[end++] = arc.Bits;
+                    row[count++] = arc;
             }
-            Array.Sort(nextArcs, begin, end - begin);
-            int last = end;
-            end = begin + 1;
-            for (int read = begin + 1; read < last; read++)
-            {
-                if ((nextArcs[read] ^ nextArcs[end - 1]) >> 32 == 0)
-                    nextArcs[end - 1] = new Arc((int)(nextArcs[read] >> 32), new Arc(nextArcs[read]).Conductance + new Arc(nextArcs[end - 1]).Conductance).Bits;
-                else
-                    nextArcs[end++] = nextArcs[read];
-            }
+            count = SortAndMerge(row[..count]);
         }
         else
         {
-            foreach (Arc arc in row)
+            for (int i = 0; i < incoming[v]; i++)
+                Put(row[i], row, ref count, count);
+            int added = count;
+            foreach (Arc arc in old)
             {
                 if (!gone[arc.To])
-                    Put(arc.Bits, merged);
+                    Put(arc, row, ref count, added);
             }
         }
-        degree[v] = end - begin;
+        degree[v] = count;
         incoming[v] = 0;
-
-        [MethodImpl(MethodImplOptions.AggressiveInlining)]
-        void Put(ulong bits, int last)
-        {
-            for (int k = begin; k < last; k++)
-            {
-                if ((nextArcs[k] ^ bits) >> 32 == 0)
-                {
-                    nextArcs[k] = new Arc((int)(bits >> 32), new Arc(nextArcs[k]).Conductance + new Arc(bits).Conductance).Bits;
-                    return;
-                }
-            }
-            nextArcs[end++] = bits;
-        }
     }
 
-    private void ForChunks(int count, Action<int> body) =>
-        Parallel.For(0, (count + Chunk - 1) / Chunk, threads, chunk =>
+    // Merges an arc with one of the first few of a row, or appends it.
+    private static void Put(Arc arc, Span<Arc> row, ref int count, int among)
+    {
+        for (int i = 0; i < among; i++)
         {
-            for (int i = chunk * Chunk; i < Math.Min(count, (chunk + 1) * Chunk); i++)
-                body(i);
-        });
+            if (row[i].IsParallelTo(arc))
+            {
+                row[i] = row[i].MergedWith(arc);
+                return;
+            }
+        }
+        row[count++] = arc;
+    }
+
+    private static int SortAndMerge(Span<Arc> row)
+    {
+        MemoryMarshal.Cast<Arc, ulong>(row).Sort();
+        int count = 0;
+        foreach (Arc arc in row)
+        {
+            if (count > 0 && row[count - 1].IsParallelTo(arc))
+                row[count - 1] = row[count - 1].MergedWith(arc);
+            else
+                row[count++] = arc;
+        }
+        return count;
+    }
+
+    private void ForChunks(int count, Action<int, int> body) =>
+        Parallel.For(0, (count + Chunk - 1) / Chunk, threads, chunk => body(chunk * Chunk, Math.Min(count, (chunk + 1) * Chunk)));
 }

@@ -3,63 +3,86 @@
 //
 // Neighbours sorted by weight w_1 <= ... <= w_k, d = sum w: for each i < k and each of S samples one j > i is drawn with probability w_j / W_i,
 // W_i = sum over j > i of w_j, and joined to i by w_i W_i / (d S): in expectation w_i w_j / d, the clique's link.
-// Invariant: the draws depend on seed and node alone, so nodes may be eliminated in any order, on any thread.
+// Invariant: the draws depend on seed and node alone, so independent nodes may be eliminated in any order, on any thread.
 
 using ScaleResist.Graphs;
 
 namespace ScaleResist.Solving;
 
-/// <summary>A star in work: the neighbours of the node that goes. One for each thread.</summary>
-/// <param name="samples">S.</param>
+/// <summary>The star of the node that goes. One for each thread.</summary>
+/// <param name="samples">S for small stars; large ones do with one.</param>
 /// <param name="seed">Of the draws.</param>
 internal sealed class StarSample(int samples, ulong seed)
 {
-    private const ulong Step = 0x9E3779B97F4A7C15;
+    // Several samples an entry multiply links faster than merging removes them where stars are large, as late on a cubic grid: one has to do there.
+    private const int ManyNeighbours = 32;
     private const int Short = 16;
     private readonly ulong key = NodeKey.Of((long)seed);
-    private double[] after = new double[Short + 1]; // W_i before each neighbour: the sum of the weights from it on
+    private double[] after = new double[Short + 1]; // the sum of the weights from each neighbour on
     private ulong state;
+    private double d;
 
-    /// <summary>The neighbours; distinct. Sorted by weight once <see cref="Begin"/> was called.</summary>
+    /// <summary>How many neighbours there are.</summary>
+    public int Count { get; private set; }
+
+    /// <summary>The neighbours; distinct. Sorted by weight once <see cref="Eliminate"/> was called.</summary>
     public int[] Nodes { get; private set; } = new int[Short];
 
     /// <summary>Beside <see cref="Nodes"/>.</summary>
     public double[] Weights { get; private set; } = new double[Short];
 
-    /// <summary>Makes room, keeping what is there.</summary>
-    public void Ensure(int count)
+    /// <summary>How many links a star of so many neighbours leaves behind.</summary>
+    public static int LinkCount(int neighbours, int samples) => Math.Max(neighbours - 1, 0) * SamplesFor(neighbours, samples);
+
+    /// <summary>Begins anew.</summary>
+    public void Clear() => Count = 0;
+
+    /// <summary>Adds a neighbour.</summary>
+    public void Add(int node, double weight)
     {
-        if (count <= Nodes.Length)
-            return;
-        int size = Math.Max(count, 2 * Nodes.Length);
-        int[] nodes = Nodes;
-        double[] weights = Weights;
-        Array.Resize(ref nodes, size);
-        Array.Resize(ref weights, size);
-        (Nodes, Weights, after) = (nodes, weights, new double[size + 1]);
+        if (Count == Nodes.Length)
+            Grow();
+        Nodes[Count] = node;
+        Weights[Count++] = weight;
     }
 
-    /// <summary>Sorts the first <paramref name="count"/> neighbours; returns d, the sum of their weights.</summary>
-    public double Begin(int node, int count)
+    /// <summary>The column of the factor, w / d, and 1 / d.</summary>
+    /// <param name="node">The node that goes, which keys the draws.</param>
+    /// <param name="column">Receives an arc for each neighbour.</param>
+    /// <returns>1 / d; 0 for a node without neighbours.</returns>
+    public float Eliminate(int node, Span<Arc> column)
     {
         state = NodeKey.Of((long)(key + (ulong)node));
-        Sort(count);
-        double d = 0;
-        after[count] = 0;
-        for (int i = count - 1; i >= 0; i--)
+        Sort();
+        after[Count] = d = 0;
+        for (int i = Count - 1; i >= 0; i--)
             after[i] = d += Weights[i];
-        return d;
+        double inverse = d > 0 ? 1 / d : 0;
+        for (int i = 0; i < Count; i++)
+            column[i] = new Arc(Nodes[i], (float)(Weights[i] * inverse));
+        return (float)inverse;
     }
 
-    /// <summary>The conductance of each of the S links that neighbour i sends to later ones; 0 where floating point has nothing left.</summary>
-    public double Conductance(int i, double d) => Weights[i] * after[i + 1] / (d * samples);
-
-    /// <summary>j > i with probability w_j / W_i: the first whose later weights sum to at most a uniform share of W_i.</summary>
-    public int Draw(int i, int count)
+    /// <summary>The links to keep of the clique; conductance 0 where floats have nothing left.</summary>
+    public void Sample(Span<SampledLink> links)
     {
-        state += Step;
+        int each = SamplesFor(Count, samples), next = 0;
+        for (int i = 0; i + 1 < Count; i++)
+        {
+            float c = (float)(Weights[i] * after[i + 1] / (d * each));
+            for (int s = 0; s < each; s++)
+                links[next++] = new SampledLink(Nodes[i], Nodes[Draw(i)], c);
+        }
+    }
+
+    private static int SamplesFor(int neighbours, int samples) => neighbours <= ManyNeighbours ? samples : 1;
+
+    // j > i with probability w_j / W_i: the first whose later weights sum to at most a uniform share of W_i.
+    private int Draw(int i)
+    {
+        state += 0x9E3779B97F4A7C15; // SplitMix64
         double target = (NodeKey.Of((long)state) >> 11) * (1.0 / (1UL << 53)) * after[i + 1];
-        int low = i + 1, high = count - 1;
+        int low = i + 1, high = Count - 1;
         while (high - low > Short)
         {
             int middle = (low + high) / 2;
@@ -74,16 +97,16 @@ internal sealed class StarSample(int samples, ulong seed)
         return drawn;
     }
 
-    // Most rows are short, and insertion beats the general sort there. Both order ties the same way each time.
-    private void Sort(int count)
+    // Most stars are small, and insertion beats the general sort there. Both order ties the same way each time.
+    private void Sort()
     {
         (int[] nodes, double[] weights) = (Nodes, Weights);
-        if (count > 2 * Short)
+        if (Count > 2 * Short)
         {
-            Array.Sort(weights, nodes, 0, count);
+            Array.Sort(weights, nodes, 0, Count);
             return;
         }
-        for (int i = 1; i < count; i++)
+        for (int i = 1; i < Count; i++)
         {
             double weight = weights[i];
             int node = nodes[i], j = i;
@@ -95,5 +118,14 @@ internal sealed class StarSample(int samples, ulong seed)
             weights[j] = weight;
             nodes[j] = node;
         }
+    }
+
+    private void Grow()
+    {
+        int[] nodes = Nodes;
+        double[] weights = Weights;
+        Array.Resize(ref nodes, 2 * Count);
+        Array.Resize(ref weights, 2 * Count);
+        (Nodes, Weights, after) = (nodes, weights, new double[(2 * Count) + 1]);
     }
 }
