@@ -26,7 +26,14 @@ switch (args)
     case ["solver", string family, string solves] when int.TryParse(solves, out int count):
         SolverBench.Run(family == "all" ? null : family, count);
         return 0;
+    case ["setup"]:
+        SetUpBench.Run(null);
+        return 0;
+    case ["setup", string family]:
+        SetUpBench.Run(family);
+        return 0;
     default:
-        Console.Error.WriteLine("say: kernels [BenchmarkDotNet options] | traffic | job FILE [PROBES] | solver [FAMILY | all [SOLVES]]");
+        Console.Error.WriteLine(
+            "say: kernels [BenchmarkDotNet options] | traffic | job FILE [PROBES] | solver [FAMILY | all [SOLVES]] | setup [FAMILY]");
         return 2;
 }

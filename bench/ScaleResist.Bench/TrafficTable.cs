@@ -25,7 +25,7 @@ internal static class TrafficTable
 
     private static void Rows(string name, FamilyPlan plan)
     {
-        Network network = SolverBench.Generated(name, plan);
+        Network network = SolverBench.Generate(plan);
         Laplacian laplacian = network.Laplacian;
         SplitLaplacian split = SplitLaplacian.Of(laplacian);
         int n = network.Components[0].End;

@@ -1,6 +1,7 @@
 // One component made ready for many solves: what can be eliminated exactly is, and the core gets the preconditioner that a short trial favours.
 // Invariant: what is prepared depends on the component and the seed alone, never on clocks or threads, so that runs repeat to the bit.
 
+using System.Collections.Concurrent;
 using System.Numerics;
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
@@ -133,39 +134,36 @@ internal sealed partial class ComponentSolver
         }
     }
 
-    private static int[] Compose(int[]? rows, int[] order)
-    {
-        int[] composed = new int[order.Length];
-        for (int i = 0; i < order.Length; i++)
-            composed[i] = rows is null ? order[i] : rows[order[i]];
-        return composed;
-    }
+    private static int[] Compose(int[]? rows, int[] order) => rows is null ? order : [.. order.Select(row => rows[row])];
 
-    private static Laplacian Renumbered(Laplacian laplacian, int[] order)
+    /// <summary>The same Laplacian with row order[i] as row i.</summary>
+    internal static Laplacian Renumbered(Laplacian laplacian, int[] order)
     {
         int n = order.Length;
         int[] place = new int[n];
-        for (int i = 0; i < n; i++)
-            place[order[i]] = i;
         long[] rowStart = new long[n + 1];
-        double[] strengths = new double[n];
         for (int i = 0; i < n; i++)
         {
+            place[order[i]] = i;
             rowStart[i + 1] = rowStart[i] + (laplacian.RowStart[order[i] + 1] - laplacian.RowStart[order[i]]);
-            strengths[i] = laplacian.Strengths[order[i]];
         }
-        int[] neighbours = new int[rowStart[n]];
-        double[]? conductances = laplacian.Conductances is null ? null : new double[rowStart[n]];
-        for (int i = 0; i < n; i++)
+        double[] strengths = new double[n];
+        int[] neighbours = GC.AllocateUninitializedArray<int>(laplacian.Neighbours.Length);
+        double[]? conductances = laplacian.Conductances is null ? null : GC.AllocateUninitializedArray<double>(neighbours.Length);
+        Parallel.ForEach(Partitioner.Create(0, n), range =>
         {
-            long write = rowStart[i];
-            for (long k = laplacian.RowStart[order[i]]; k < laplacian.RowStart[order[i] + 1]; k++, write++)
+            for (int i = range.Item1; i < range.Item2; i++)
             {
-                neighbours[write] = place[laplacian.Neighbours[k]];
-                if (conductances is not null)
-                    conductances[write] = laplacian.Conductances![k];
+                strengths[i] = laplacian.Strengths[order[i]];
+                long write = rowStart[i];
+                for (long k = laplacian.RowStart[order[i]]; k < laplacian.RowStart[order[i] + 1]; k++, write++)
+                {
+                    neighbours[write] = place[laplacian.Neighbours[k]];
+                    if (conductances is not null)
+                        conductances[write] = laplacian.Conductances![k];
+                }
             }
-        }
+        });
         return new Laplacian(rowStart, neighbours, conductances, strengths);
     }
 }

@@ -1,8 +1,6 @@
 // Nodes by degree, the least first. A node may stand in several buckets; what a bucket says is checked when the node comes up.
 // Invariant: every node not yet taken stands in at least one bucket that is not above its degree, so none is overlooked.
 
-using ScaleResist.Graphs;
-
 namespace ScaleResist.Solving;
 
 /// <summary>A bucket queue of nodes by degree, capped at the last bucket.</summary>
@@ -13,15 +11,12 @@ internal sealed class DegreeQueue
     private readonly int[] degree; // -1: taken
     private int least;
 
-    /// <summary>All nodes of a Laplacian by the length of their rows.</summary>
-    public DegreeQueue(Laplacian laplacian)
+    /// <summary>All nodes by their degrees.</summary>
+    public DegreeQueue(int[] degrees)
     {
-        degree = new int[laplacian.NodeCount];
+        degree = [.. degrees];
         for (int v = degree.Length - 1; v >= 0; v--)
-        {
-            degree[v] = (int)(laplacian.RowStart[v + 1] - laplacian.RowStart[v]);
             buckets[Bucket(v)].Push(v);
-        }
     }
 
     /// <summary>Takes a node of least degree.</summary>

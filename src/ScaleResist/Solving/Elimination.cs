@@ -6,6 +6,7 @@
 //     x_v  = b_v / d + sum (c_i / d) x_i            (back, in reverse)
 // A node is looked at once more when it is eliminated, so the work is linear in the arcs, around hubs too.
 
+using System.Collections.Concurrent;
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
 
@@ -44,7 +45,12 @@ internal sealed class Elimination
     {
         Elimination elimination = new(laplacian, component);
         elimination.Run();
-        elimination.Core = [.. Enumerable.Range(0, component.Nodes).Where(v => !elimination.gone[v]).Select(v => component.Start + v)];
+        elimination.Core = new int[component.Nodes - elimination.Steps.Count];
+        for (int v = 0, i = 0; v < component.Nodes; v++)
+        {
+            if (!elimination.gone[v])
+                elimination.Core[i++] = component.Start + v;
+        }
         return elimination;
     }
 
@@ -160,7 +166,6 @@ internal sealed class Elimination
     {
         int n = Core.Length;
         int[] place = new int[gone.Length];
-        Array.Fill(place, -1);
         long[] rowStart = new long[n + 1];
         for (int i = 0; i < n; i++)
         {
@@ -170,38 +175,48 @@ internal sealed class Elimination
         int[] neighbours = new int[rowStart[n]];
         double[] conductances = new double[rowStart[n]];
         double[] strengths = new double[n];
-        int[] at = new int[n]; // 1 + the arc to a neighbour within the row being built
-        for (int i = 0; i < n; i++)
+        Parallel.ForEach(Partitioner.Create(0, n), range =>
+        {
+            for (int i = range.Item1; i < range.Item2; i++)
+                BuildRow(i);
+        });
+        return new Laplacian(rowStart, neighbours, conductances, strengths);
+
+        // The links that were there come in order; what elimination added may be parallel to one of them, but not to each other.
+        void BuildRow(int i)
         {
             int v = Core[i] - start;
-            long write = rowStart[i];
+            Span<int> to = neighbours.AsSpan((int)rowStart[i], degree[v]);
+            Span<double> weights = conductances.AsSpan((int)rowStart[i], degree[v]);
+            int count = 0;
             for (long k = laplacian.RowStart[start + v]; k < laplacian.RowStart[start + v + 1]; k++)
-                Put(place[laplacian.Neighbours[k] - start], laplacian.Conductance(k));
+            {
+                int u = laplacian.Neighbours[k] - start;
+                if (gone[u])
+                    continue;
+                to[count] = place[u];
+                weights[count++] = laplacian.Conductance(k);
+            }
+            int original = count;
             for (int link = fill.First(v); link >= 0; link = fill.Next(link))
-                Put(place[fill.To(link)], fill.Weight(link));
-            for (long k = rowStart[i]; k < write; k++)
             {
-                at[neighbours[k]] = 0;
-                strengths[i] += conductances[k];
-            }
-            if (write != rowStart[i + 1])
-                throw new InvalidOperationException("A degree of the core was miscounted.");
-            Array.Sort(neighbours, conductances, (int)rowStart[i], (int)(write - rowStart[i]));
-
-            void Put(int to, double weight)
-            {
-                if (to < 0)
-                    return;
-                if (at[to] > 0)
+                if (gone[fill.To(link)])
+                    continue;
+                int u = place[fill.To(link)], same = to[..original].BinarySearch(u);
+                if (same >= 0)
                 {
-                    conductances[rowStart[i] + at[to] - 1] += weight;
-                    return;
+                    weights[same] += fill.Weight(link);
+                    continue;
                 }
-                neighbours[write] = to;
-                conductances[write++] = weight;
-                at[to] = (int)(write - rowStart[i]);
+                to[count] = u;
+                weights[count++] = fill.Weight(link);
             }
+            if (count != degree[v])
+                throw new InvalidOperationException("A degree of the core was miscounted.");
+            if (count > original)
+                to.Sort(weights);
+            foreach (double weight in weights)
+                strengths[i] += weight;
         }
-        return new Laplacian(rowStart, neighbours, conductances, strengths);
     }
 }

@@ -2,7 +2,7 @@
 // Invariant: what a column is judged by is b - L x, taken in doubles from the x that is returned.
 //
 // The iteration is that of ConjugateGradient on a residual scaled to size 1, and collects its steps in d. Whenever a column's residual has fallen
-// by Fall, before rounding parts the recurrence from the truth,
+// by Fall in the norm of M, before rounding parts the recurrence from the truth,
 //     x += d / scale       d = 0       r = new scale (b - L x)      (in doubles)
 // and the iteration goes on from the true residual along its old directions, rescaled: nothing that it has learnt of the spectrum is lost
 // (residual replacement: van der Vorst & Ye, SIAM J. Sci. Comput. 22:835, 2000).
@@ -15,7 +15,7 @@ namespace ScaleResist.Solving;
 /// <summary>Lockstep conjugate gradient in mixed precision for L x = b on the rows <c>start .. end-1</c>, one component, 16 columns.</summary>
 internal sealed class RefinedGradient(
     Laplacian laplacian,
-    IPreconditioner<float> preconditioner,
+    IPreconditionedLaplacian<float> preconditioned,
     PanelPair b,
     PanelPair x,
     RefinedWorkspace workspace,
@@ -28,15 +28,16 @@ internal sealed class RefinedGradient(
     private const double Safety = 0.5;
     private const double Fall = 1e-3;
 
-    private readonly Panel<float> d = workspace.Steps, r = workspace.Gradient.R, p = workspace.Gradient.P, q = workspace.Gradient.Q;
+    private readonly Panel<float> d = workspace.Steps;
+    private readonly GradientWorkspace<float> gradient = workspace.Gradient;
     private readonly SolveReport report = workspace.Report;
     private readonly double factor = limits.Tolerance * limits.Tolerance * Safety;
-    private double least = preconditioner.LeastEigenvalue;
+    private double least = preconditioned.LeastEigenvalue;
     private LaneSums energy = known; // x'b so far
     private LaneSums size;           // |b|^2
     private LaneSums scale;
     private LaneSums rs;             // r'M r, unscaled
-    private LaneSums left;           // |r|^2 of the scaled residual, and the same after the last replacement
+    private LaneSums scaled;         // the same of the scaled residual, and what it was after the last replacement
     private LaneSums replaced;
     private uint active;             // columns that still move
     private uint open;               // columns not judged yet, or judged and found short
@@ -48,14 +49,11 @@ internal sealed class RefinedGradient(
     public void Solve(CancellationToken cancel)
     {
         Begin();
+        LaneSums beta = default;
         while (open != 0 && report.Iterations < limits.MostIterations)
         {
             cancel.ThrowIfCancellationRequested();
-            LaneSums before = rs;
-            bool due = Step();
-            LaneSums beta = due || active == 0 ? Replace(before) : Advance(before);
-            if (active != 0)
-                PanelKernels.Direction(p, q, beta, start, end);
+            beta = Step(beta);
         }
         report.LeastEigenvalue = least;
     }
@@ -74,13 +72,12 @@ internal sealed class RefinedGradient(
         ConjugateGradient.Clear(d, start, end);
         for (int lane = 0; lane < PanelPair.Width; lane++)
             scale[lane] = InverseRoot(size[lane]);
-        RefineKernels.Narrow(b, scale, r, start, end);
-        LaneSums scaled = preconditioner.Apply(r, q, start, end);
-        ConjugateGradient.Copy(q, p, start, end);
+        RefineKernels.Narrow(b, scale, gradient.R, start, end);
+        preconditioned.Begin(gradient.R, gradient, start, end, out _, out scaled);
+        replaced = scaled;
         for (int lane = 0; lane < PanelPair.Width; lane++)
         {
             rs[lane] = scaled[lane] / (scale[lane] * scale[lane]);
-            replaced[lane] = size[lane] * scale[lane] * scale[lane];
             report.EnergyErrors[lane] = rs[lane] > 0 ? double.PositiveInfinity : 0;
             report.Residuals[lane] = rs[lane] > 0 ? 1 : 0;
             report.Reasons[lane] = rs[lane] > 0 ? StopReason.IterationLimit : StopReason.ZeroRightHandSide;
@@ -90,18 +87,17 @@ internal sealed class RefinedGradient(
         open = active;
     }
 
-    // q = L p, d += a p, r -= a q, q = M r. Says whether a column's residual has fallen far enough for a replacement.
-    private bool Step()
+    // p = M r + beta p, d += a p, r -= a L p; gives the next beta. A column that looks done waits for the next replacement.
+    private LaneSums Step(in LaneSums beta)
     {
         report.Iterations++;
-        LaneSums pq = PanelKernels.Multiply(laplacian, p, q, start, end);
-        LaneSums a = default;
+        LaneSums before = rs, a = default, next = default;
+        LaneSums pq = preconditioned.Product(beta, gradient, start, end);
         for (int lane = 0; lane < PanelPair.Width; lane++)
         {
             if (!Has(active, lane))
                 continue;
-            double scaled = rs[lane] * scale[lane] * scale[lane];
-            a[lane] = scaled / pq[lane];
+            a[lane] = rs[lane] * scale[lane] * scale[lane] / pq[lane];
             if (pq[lane] > 0 && double.IsFinite(a[lane]))
             {
                 energy[lane] += a[lane] * rs[lane];
@@ -112,32 +108,25 @@ internal sealed class RefinedGradient(
             active &= ~(1u << lane);
         }
         report.Lanczos.AddSteps(a);
-        left = PanelKernels.Step(d, r, p, q, a, start, end);
+        scaled = preconditioned.Advance(a, d, gradient, start, end);
         bool due = false;
-        for (int lane = 0; lane < PanelPair.Width; lane++)
-            due |= Has(active, lane) && left[lane] <= Fall * Fall * replaced[lane];
-        return due;
-    }
-
-    // s = M r of the recurrence; columns that look done wait for the next replacement.
-    private LaneSums Advance(in LaneSums before)
-    {
-        LaneSums scaled = preconditioner.Apply(r, q, start, end);
-        LaneSums beta = default;
         for (int lane = 0; lane < PanelPair.Width; lane++)
         {
             if (!Has(active, lane))
                 continue;
+            due |= scaled[lane] <= Fall * Fall * replaced[lane];
             rs[lane] = scaled[lane] / (scale[lane] * scale[lane]);
-            beta[lane] = rs[lane] / before[lane];
-            if (IsNear(lane) || !(beta[lane] > 0 && double.IsFinite(beta[lane])))
+            next[lane] = rs[lane] / before[lane];
+            if (IsNear(lane) || !(next[lane] > 0 && double.IsFinite(next[lane])))
             {
                 active &= ~(1u << lane);
-                beta[lane] = 0;
+                next[lane] = 0;
             }
         }
-        report.Lanczos.AddDirections(beta);
-        return active == 0 ? Replace(before) : beta;
+        if (due || active == 0)
+            return Replace(before);
+        report.Lanczos.AddDirections(next);
+        return next;
     }
 
     // Takes the steps into x, the residual from x, and judges every open column by it.
@@ -147,15 +136,15 @@ internal sealed class RefinedGradient(
         for (int lane = 0; lane < PanelPair.Width; lane++)
         {
             factors[lane] = 1 / scale[lane];
-            stretch[lane] = left[lane] > 0 ? InverseRoot(left[lane]) : 1;
+            stretch[lane] = scaled[lane] > 0 ? InverseRoot(scaled[lane] / replaced[lane]) : 1;
             scale[lane] *= stretch[lane];
         }
         RefineKernels.Correct(x, d, factors, start, end);
-        LaneSums residual = RefineKernels.Residual(laplacian, b, x, scale, r, start, end);
-        LaneSums scaled = preconditioner.Apply(r, q, start, end);
+        LaneSums residual = RefineKernels.Residual(laplacian, b, x, scale, gradient.R, start, end);
+        preconditioned.Begin(gradient.R, gradient, start, end, out _, out scaled);
+        replaced = scaled;
         for (int lane = 0; lane < PanelPair.Width; lane++)
         {
-            replaced[lane] = residual[lane] * scale[lane] * scale[lane];
             if (!Has(open, lane))
                 continue;
             rs[lane] = scaled[lane] / (scale[lane] * scale[lane]);

@@ -133,7 +133,7 @@ internal sealed partial class ComponentSolver
             PanelKernels.Centre(z[half], start, end);
             Put(PanelKernels.Squares(b[half], start, end), half, ref size);
             Put(PanelKernels.Squares(workspace.CoreB[half], 0, core.NodeCount), half, ref coreSize);
-            Put(PanelKernels.Residual(laplacian, b[half], z[half], start, end), half, ref residual);
+            Put(PanelKernels.Residual(laplacian, b[half], z[half], null, start, end), half, ref residual);
         }
         // As in floats: what is more than the core's residual, rounding did on the way through the eliminated nodes.
         SolveReport report = workspace.Report;

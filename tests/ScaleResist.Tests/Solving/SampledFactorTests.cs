@@ -73,10 +73,13 @@ public class SampledFactorTests
         Assert.InRange(solver.Statistics.LargestEnergyError, 0, 1e-8);
     }
 
-    [Fact]
-    public void The_same_seed_gives_the_same_factor_and_every_predecessor_comes_first()
+    [Theory]
+    [InlineData(Family.Cube, 1000, 0)]
+    [InlineData(Family.Complete, 400, 1)] // nothing independent: one node at a time
+    [InlineData(Family.SmallWorld, 5000, 6)]
+    public void The_same_seed_gives_the_same_factor_and_every_predecessor_comes_first(Family family, int nodes, double decades)
     {
-        Network network = TestNetworks.Of(Family.Cube, 1000);
+        Network network = TestNetworks.Of(family, nodes, decades: decades);
         SampledFactor one = SampledFactor.Of(network.Laplacian, 2, 5), two = SampledFactor.Of(network.Laplacian, 2, 5);
         Assert.Equal(one.Order, two.Order);
         Assert.Equal(one.ColumnShares, two.ColumnShares);
@@ -93,6 +96,30 @@ public class SampledFactorTests
             Assert.Equal(v == network.NodeCount - 1 ? 0 : 1, shares, 1e-5);
         }
         Assert.Equal(0, one.Inverse[^1]);
+    }
+
+    [Theory]
+    [InlineData(Family.Cube, 30_000, 0)]
+    [InlineData(Family.Road, 30_000, 6)]
+    public void The_number_of_threads_does_not_change_the_factor(Family family, int nodes, double decades)
+    {
+        Laplacian laplacian = TestNetworks.Of(family, nodes, decades: decades).Laplacian;
+        SampledFactor one = SampledFactor.Of(laplacian, 2, 5, threads: 1), four = SampledFactor.Of(laplacian, 2, 5, threads: 4);
+        Assert.Equal(one.Order, four.Order);
+        Assert.Equal(one.ColumnStart, four.ColumnStart);
+        Assert.Equal(one.Successors, four.Successors);
+        Assert.Equal(one.ColumnShares, four.ColumnShares);
+        Assert.Equal(one.Inverse, four.Inverse);
+        Assert.Equal(one.RowShares, four.RowShares);
+    }
+
+    [Fact]
+    public void Several_samples_an_entry_keep_the_factor_of_a_cubic_grid_sparse()
+    {
+        // Where all stars are sampled twice, the last ten thousand nodes become all but complete.
+        Network network = TestNetworks.Of(Family.Cube, 64_000);
+        foreach (int samples in new[] { 1, 2, 3 })
+            Assert.InRange(SampledFactor.Of(network.Laplacian, samples, 1).Successors.Length, 0, 20L * network.NodeCount);
     }
 
     [Fact]
