@@ -3,6 +3,7 @@
 // Invariant: the factor is read-only; solves share nothing but it, each has a workspace of its own.
 
 using System.Runtime.Intrinsics;
+using System.Runtime.Intrinsics.X86;
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
 
@@ -15,6 +16,7 @@ namespace ScaleResist.Solving;
 internal sealed unsafe class CholeskyFactor : IDisposable
 {
     private const int Panel = DenseKernels.Tile;
+    private const int FrontsAhead = 4, PrefetchDoubles = 128;
     private readonly NativeDoubles values;
 
     private CholeskyFactor(SymbolicCholesky symbolic, Laplacian laplacian, NativeDoubles values, double logDeterminant)
@@ -102,9 +104,7 @@ internal sealed unsafe class CholeskyFactor : IDisposable
         {
             for (int place = 0; place < ground; place++)
                 Vector512.Load(b.Pointer + (8L * nodes[place])).StoreAligned(rows + (8L * place));
-            Sweep<OneVector>(rows);
-            for (int place = 0; place < ground; place++)
-                Vector512.LoadAligned(rows + (8L * place)).Store(x.Pointer + (8L * nodes[place]));
+            Sweep<OneVector>(rows, nodes, x.Pointer);
         }
         x.Row(Symbolic.Nodes[ground]).Clear();
     }
@@ -123,17 +123,13 @@ internal sealed unsafe class CholeskyFactor : IDisposable
                 low.StoreAligned(rows + (16L * place));
                 high.StoreAligned(rows + (16L * place) + 8);
             }
-            Sweep<TwoVectors>(rows);
-            for (int place = 0; place < ground; place++)
-            {
-                double* row = rows + (16L * place);
-                Vector512.Narrow(Vector512.LoadAligned(row), Vector512.LoadAligned(row + 8)).Store(x.Pointer + (16L * nodes[place]));
-            }
+            Sweep<TwoVectors>(rows, nodes, x.Pointer);
         }
         x.Row(Symbolic.Nodes[ground]).Clear();
     }
 
-    private void Sweep<TWidth>(double* rows)
+    // Forward over the fronts, then back, each front's solution leaving for x as soon as it is there.
+    private void Sweep<TWidth>(double* rows, int* nodes, void* x)
         where TWidth : struct, IRowWidth
     {
         fixed (int* index = Symbolic.Rows)
@@ -154,14 +150,40 @@ internal sealed unsafe class CholeskyFactor : IDisposable
             {
                 int s = Symbolic.Own(f), r = Symbolic.RowCount(f);
                 int* later = index + Symbolic.RowStart[f];
+                if (f >= FrontsAhead)
+                    PrefetchFront(f - FrontsAhead, index);
                 for (int j = (s - 1) / Panel * Panel; j >= 0; j -= Panel)
                 {
                     int q = Math.Min(Panel, s - j), following = s - j - q;
                     value -= q * (long)(q + following + r);
                     SubstitutionKernels.Back<TWidth>(q, value, rows, Symbolic.First[f] + j, following, later, r);
                 }
+                for (int place = Symbolic.First[f]; place < Symbolic.First[f] + s; place++)
+                    Leave<TWidth>(rows, place, x, nodes[place]);
             }
         }
+    }
+
+    // Back substitution meets the fronts against the order of memory, where the processor does not fetch ahead by itself.
+    private void PrefetchFront(int front, int* index)
+    {
+        if (!Sse.IsSupported)
+            return;
+        double* from = values.Pointer + Symbolic.ValueStart[front];
+        long doubles = Math.Min(PrefetchDoubles, Symbolic.ValueStart[front + 1] - Symbolic.ValueStart[front]);
+        for (long k = 0; k < doubles; k += 8)
+            Sse.Prefetch0(from + k);
+        Sse.Prefetch0(index + Symbolic.RowStart[front]);
+    }
+
+    private static void Leave<TWidth>(double* rows, int place, void* x, int node)
+        where TWidth : struct, IRowWidth
+    {
+        double* row = rows + (8L * TWidth.Vectors * place);
+        if (TWidth.Vectors == 1)
+            Vector512.LoadAligned(row).Store((double*)x + (8L * node));
+        else
+            Vector512.Narrow(Vector512.LoadAligned(row), Vector512.LoadAligned(row + 8)).Store((float*)x + (16L * node));
     }
 
     /// <summary>M on the diagonal and between linked nodes. The factor stays as it is. The same bits whatever the number of threads.</summary>
