@@ -3,7 +3,6 @@
 // Invariant: the factor is read-only; solves share nothing but it, each has a workspace of its own.
 
 using System.Runtime.Intrinsics;
-using System.Runtime.Intrinsics.X86;
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
 
@@ -16,7 +15,6 @@ namespace ScaleResist.Solving;
 internal sealed unsafe class CholeskyFactor : IDisposable
 {
     private const int Panel = DenseKernels.Tile;
-    private const int FrontsAhead = 4, PrefetchDoubles = 128;
     private readonly NativeDoubles values;
 
     private CholeskyFactor(SymbolicCholesky symbolic, Laplacian laplacian, NativeDoubles values, double logDeterminant)
@@ -74,7 +72,7 @@ internal sealed unsafe class CholeskyFactor : IDisposable
         }
         FrontTeam alone = new(1);
         FrontTeam.WorkOff(
-            schedule.Runs, threads,
+            schedule.Subtrees, threads,
             () => new FrontalElimination(symbolic, laplacian, values, updates, logs, schedule.EliminationOfRuns, alone),
             (worker, run) =>
             {
@@ -150,8 +148,6 @@ internal sealed unsafe class CholeskyFactor : IDisposable
             {
                 int s = Symbolic.Own(f), r = Symbolic.RowCount(f);
                 int* later = index + Symbolic.RowStart[f];
-                if (f >= FrontsAhead)
-                    PrefetchFront(f - FrontsAhead, index);
                 for (int j = (s - 1) / Panel * Panel; j >= 0; j -= Panel)
                 {
                     int q = Math.Min(Panel, s - j), following = s - j - q;
@@ -162,18 +158,6 @@ internal sealed unsafe class CholeskyFactor : IDisposable
                     Leave<TWidth>(rows, place, x, nodes[place]);
             }
         }
-    }
-
-    // Back substitution meets the fronts against the order of memory, where the processor does not fetch ahead by itself.
-    private void PrefetchFront(int front, int* index)
-    {
-        if (!Sse.IsSupported)
-            return;
-        double* from = values.Pointer + Symbolic.ValueStart[front];
-        long doubles = Math.Min(PrefetchDoubles, Symbolic.ValueStart[front + 1] - Symbolic.ValueStart[front]);
-        for (long k = 0; k < doubles; k += 8)
-            Sse.Prefetch0(from + k);
-        Sse.Prefetch0(index + Symbolic.RowStart[front]);
     }
 
     private static void Leave<TWidth>(double* rows, int place, void* x, int node)
