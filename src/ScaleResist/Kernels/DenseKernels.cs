@@ -1,4 +1,4 @@
-// The dense products of a sparse factor, in register tiles of 24 x 8 and 8 x 8: C += A B.
+// The dense products of a sparse factor, in register tiles of 24 x 8 and 8 x 8 (8 x 4 with AVX2): C += A B.
 // Invariant: every entry of C is one chain of fused multiply-adds from its old value, k ascending. Tiles, blocks, threads and the width of
 // the machine's vectors leave the bits alone; the scalar twin in DenseKernelTwins is the plain triple loop.
 //
@@ -15,6 +15,7 @@ internal static unsafe class DenseKernels
     public const int Tile = 8;
 
     private const int TallTile = 24;
+    private const int HalfTile = 4; // columns where registers are half as many and half as wide
     private const int DepthBlock = 64; // k of one pass over C: A's columns and B's rows stay in the first caches
 
     /// <summary>C += A B; with <paramref name="lower"/> only entries on and below the diagonal of C (and some above) are touched.</summary>
@@ -33,8 +34,19 @@ internal static unsafe class DenseKernels
             double* bBlock = b + (from * ldb);
             for (int j = 0; j < n; j += Tile)
             {
-                int top = lower ? j : 0;
-                Strip(Math.Min(Tile, n - j), m - top, depth, aBlock + top, lda, bBlock + j, ldb, c + (j * ldc) + top, ldc);
+                int top = lower ? j : 0, columns = Math.Min(Tile, n - j);
+                double* aStrip = aBlock + top, bStrip = bBlock + j, cStrip = c + (j * ldc) + top;
+                if (Vector512.IsHardwareAccelerated)
+                {
+                    Strip(columns, m - top, depth, aStrip, lda, bStrip, ldb, cStrip, ldc);
+                    continue;
+                }
+                HalfStrip(Math.Min(HalfTile, columns), m - top, depth, aStrip, lda, bStrip, ldb, cStrip, ldc);
+                if (columns > HalfTile)
+                {
+                    HalfStrip(
+                        columns - HalfTile, m - top, depth, aStrip, lda, bStrip + HalfTile, ldb, cStrip + (HalfTile * ldc), ldc);
+                }
             }
         }
     }
@@ -294,5 +306,95 @@ internal static unsafe class DenseKernels
             c06.Store(c + (6 * ldc));
         if (TColumns.Count > 7)
             c07.Store(c + (7 * ldc));
+    }
+
+    private static void HalfStrip(int columns, int m, int k, double* a, long lda, double* b, long ldb, double* c, long ldc)
+    {
+        for (int i = 0; i < m; i += Tile)
+        {
+            switch (columns)
+            {
+                case 1:
+                    Half<Columns1>(k, a + i, lda, b, ldb, c + i, ldc);
+                    break;
+                case 2:
+                    Half<Columns2>(k, a + i, lda, b, ldb, c + i, ldc);
+                    break;
+                case 3:
+                    Half<Columns3>(k, a + i, lda, b, ldb, c + i, ldc);
+                    break;
+                default:
+                    Half<Columns4>(k, a + i, lda, b, ldb, c + i, ldc);
+                    break;
+            }
+        }
+    }
+
+    private static void Half<TColumns>(int k, double* a, long lda, double* b, long ldb, double* c, long ldc)
+        where TColumns : struct, IColumns
+    {
+        Vector256<double> c00 = default, c01 = default, c02 = default, c03 = default;
+        Vector256<double> c10 = default, c11 = default, c12 = default, c13 = default;
+        c00 = Vector256.Load(c);
+        c10 = Vector256.Load(c + 4);
+        if (TColumns.Count > 1)
+        {
+            c01 = Vector256.Load(c + (1 * ldc));
+            c11 = Vector256.Load(c + (1 * ldc) + 4);
+        }
+        if (TColumns.Count > 2)
+        {
+            c02 = Vector256.Load(c + (2 * ldc));
+            c12 = Vector256.Load(c + (2 * ldc) + 4);
+        }
+        if (TColumns.Count > 3)
+        {
+            c03 = Vector256.Load(c + (3 * ldc));
+            c13 = Vector256.Load(c + (3 * ldc) + 4);
+        }
+        for (int p = 0; p < k; p++)
+        {
+            Vector256<double> a0 = Vector256.Load(a), a1 = Vector256.Load(a + 4);
+            Vector256<double> b0 = Vector256.Create(*b);
+            c00 = Vector256.FusedMultiplyAdd(a0, b0, c00);
+            c10 = Vector256.FusedMultiplyAdd(a1, b0, c10);
+            if (TColumns.Count > 1)
+            {
+                Vector256<double> b1 = Vector256.Create(b[1]);
+                c01 = Vector256.FusedMultiplyAdd(a0, b1, c01);
+                c11 = Vector256.FusedMultiplyAdd(a1, b1, c11);
+            }
+            if (TColumns.Count > 2)
+            {
+                Vector256<double> b2 = Vector256.Create(b[2]);
+                c02 = Vector256.FusedMultiplyAdd(a0, b2, c02);
+                c12 = Vector256.FusedMultiplyAdd(a1, b2, c12);
+            }
+            if (TColumns.Count > 3)
+            {
+                Vector256<double> b3 = Vector256.Create(b[3]);
+                c03 = Vector256.FusedMultiplyAdd(a0, b3, c03);
+                c13 = Vector256.FusedMultiplyAdd(a1, b3, c13);
+            }
+            a += lda;
+            b += ldb;
+        }
+        c00.Store(c);
+        c10.Store(c + 4);
+        if (TColumns.Count > 1)
+        {
+            c01.Store(c + (1 * ldc));
+            c11.Store(c + (1 * ldc) + 4);
+        }
+        if (TColumns.Count > 2)
+        {
+            c02.Store(c + (2 * ldc));
+            c12.Store(c + (2 * ldc) + 4);
+        }
+        if (TColumns.Count > 3)
+        {
+            c03.Store(c + (3 * ldc));
+            c13.Store(c + (3 * ldc) + 4);
+        }
     }
 }

@@ -72,7 +72,7 @@ internal sealed unsafe class CholeskyFactor : IDisposable
         }
         FrontTeam alone = new(1);
         FrontTeam.WorkOff(
-            schedule.Runs, threads,
+            schedule.Subtrees, threads,
             () => new FrontalElimination(symbolic, laplacian, values, updates, logs, schedule.EliminationOfRuns, alone),
             (worker, run) =>
             {
@@ -102,9 +102,7 @@ internal sealed unsafe class CholeskyFactor : IDisposable
         {
             for (int place = 0; place < ground; place++)
                 Vector512.Load(b.Pointer + (8L * nodes[place])).StoreAligned(rows + (8L * place));
-            Sweep<OneVector>(rows);
-            for (int place = 0; place < ground; place++)
-                Vector512.LoadAligned(rows + (8L * place)).Store(x.Pointer + (8L * nodes[place]));
+            Sweep<OneVector>(rows, nodes, x.Pointer);
         }
         x.Row(Symbolic.Nodes[ground]).Clear();
     }
@@ -123,17 +121,13 @@ internal sealed unsafe class CholeskyFactor : IDisposable
                 low.StoreAligned(rows + (16L * place));
                 high.StoreAligned(rows + (16L * place) + 8);
             }
-            Sweep<TwoVectors>(rows);
-            for (int place = 0; place < ground; place++)
-            {
-                double* row = rows + (16L * place);
-                Vector512.Narrow(Vector512.LoadAligned(row), Vector512.LoadAligned(row + 8)).Store(x.Pointer + (16L * nodes[place]));
-            }
+            Sweep<TwoVectors>(rows, nodes, x.Pointer);
         }
         x.Row(Symbolic.Nodes[ground]).Clear();
     }
 
-    private void Sweep<TWidth>(double* rows)
+    // Forward over the fronts, then back, each front's solution leaving for x as soon as it is there.
+    private void Sweep<TWidth>(double* rows, int* nodes, void* x)
         where TWidth : struct, IRowWidth
     {
         fixed (int* index = Symbolic.Rows)
@@ -160,8 +154,20 @@ internal sealed unsafe class CholeskyFactor : IDisposable
                     value -= q * (long)(q + following + r);
                     SubstitutionKernels.Back<TWidth>(q, value, rows, Symbolic.First[f] + j, following, later, r);
                 }
+                for (int place = Symbolic.First[f]; place < Symbolic.First[f] + s; place++)
+                    Leave<TWidth>(rows, place, x, nodes[place]);
             }
         }
+    }
+
+    private static void Leave<TWidth>(double* rows, int place, void* x, int node)
+        where TWidth : struct, IRowWidth
+    {
+        double* row = rows + (8L * TWidth.Vectors * place);
+        if (TWidth.Vectors == 1)
+            Vector512.LoadAligned(row).Store((double*)x + (8L * node));
+        else
+            Vector512.Narrow(Vector512.LoadAligned(row), Vector512.LoadAligned(row + 8)).Store((float*)x + (16L * node));
     }
 
     /// <summary>M on the diagonal and between linked nodes. The factor stays as it is. The same bits whatever the number of threads.</summary>

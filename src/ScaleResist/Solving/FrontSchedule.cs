@@ -34,7 +34,7 @@ internal sealed class FrontSchedule
         this.symbolic = symbolic;
         this.above = above;
         Top = top;
-        Runs = runs;
+        Subtrees = runs;
         foreach (FrontRun run in runs)
         {
             EliminationOfRuns = EliminationOfRuns.Max(Elimination(Enumerable.Range(run.Start, run.End - run.Start)));
@@ -51,7 +51,7 @@ internal sealed class FrontSchedule
     }
 
     /// <summary>Runs, dearest first.</summary>
-    public FrontRun[] Runs { get; }
+    public FrontRun[] Subtrees { get; }
 
     /// <summary>The fronts above the runs, ascending.</summary>
     public int[] Top { get; }
@@ -83,10 +83,12 @@ internal sealed class FrontSchedule
     /// <summary>Bytes of all blocks of the inversion at their peak.</summary>
     public long InversionBytes(int threads) => sizeof(double) * (HeldInverses + Shared(threads, InversionOfRuns, InversionOfTop));
 
-    // Beside the blocks, 4 bytes a node and thread for local numbers and 8 or 16 a front for addresses and logarithms.
-    private long Shared(int threads, FrontSpace runs, FrontSpace top) =>
-        Math.Max(Math.Min(threads, Runs.Length) * (runs.Doubles + (symbolic.Nodes.Length / 2)), top.Doubles + (symbolic.Nodes.Length / 2))
-        + (2L * symbolic.Count);
+    // Beside the blocks, 4 bytes a node and thread for local numbers and 16 a front for addresses and logarithms.
+    private long Shared(int threads, FrontSpace runs, FrontSpace top)
+    {
+        long local = symbolic.Nodes.Length / 2;
+        return Math.Max(Math.Min(threads, Subtrees.Length) * (runs.Doubles + local), top.Doubles + local) + (2L * symbolic.Count);
+    }
 
     /// <summary>Whether a front's block is held apart from the stacks.</summary>
     public bool IsHeld(int front) => !above[front] && symbolic.Parent[front] >= 0 && above[symbolic.Parent[front]];

@@ -64,7 +64,7 @@ internal sealed unsafe class SelectedInverse
         }
         FrontTeam alone = new(1);
         FrontTeam.WorkOff(
-            schedule.Runs, threads,
+            schedule.Subtrees, threads,
             () => new FrontalInversion(factor, inverse.diagonal, inverse.between, fronts, schedule.InversionOfRuns, alone),
             (worker, run) =>
             {

@@ -9,11 +9,11 @@ public unsafe class CholeskyKernelTwinTests
     [Fact]
     public void Dense_products_equal_their_scalar_twin_entry_by_entry()
     {
-        foreach (int m in Sizes(34, 64, 71, 100))
+        foreach (int m in Sizes(34, 71))
         {
-            foreach (int n in Sizes(17, 24, 30))
+            foreach (int n in Sizes(9, 16, 27))
             {
-                foreach (int k in new[] { 1, 2, 3, 8, 13, 64, 65, 130 })
+                foreach (int k in new[] { 1, 2, 8, 65, 130 })
                 {
                     Product(m, n, k, lower: false);
                     if (m >= n)
@@ -32,7 +32,10 @@ public unsafe class CholeskyKernelTwinTests
         for (int j = 0; j < n; j++)
         {
             for (int i = lower ? j : 0; i < m; i++)
-                Assert.True(c.Pointer[i + (j * stride)].Equals(twin.Pointer[i + (j * stride)]), $"{m} x {n} x {k}: {i}, {j}");
+            {
+                if (!c.Pointer[i + (j * stride)].Equals(twin.Pointer[i + (j * stride)]))
+                    Assert.Fail($"{m} x {n} x {k}: {i}, {j}");
+            }
         }
     }
 
