@@ -17,6 +17,7 @@ public sealed class CertifiedPairs
     private const double FirstTolerance = 4e-6;
     private const double WidthWanted = 1e-8;
     private const double Tightening = 0.01;
+    private const int MostRounds = 3;
 
     private readonly Network network;
     private readonly LaplacianSolver solver;
@@ -99,14 +100,16 @@ public sealed class CertifiedPairs
             System.Runtime.ExceptionServices.ExceptionDispatchInfo.Throw(first);
     }
 
-    // Once more where the tree's stretch is larger than foreseen.
+    // Again, and more tightly, where the tree's stretch is larger than foreseen.
     private void Enclose(int component, Column[] columns, Workspace workspace, CancellationToken cancel)
     {
-        double widest = EncloseOnce(component, columns, FirstTolerance, workspace, cancel);
-        if (!(widest <= WidthWanted))
+        double tolerance = FirstTolerance;
+        for (int round = 0; round < MostRounds; round++)
         {
-            double share = double.IsFinite(widest) ? Math.Max(Tightening, 0.5 * Math.Sqrt(WidthWanted / widest)) : Tightening;
-            EncloseOnce(component, columns, FirstTolerance * share, workspace, cancel);
+            double widest = EncloseOnce(component, columns, tolerance, workspace, cancel);
+            if (widest <= WidthWanted)
+                return;
+            tolerance *= double.IsFinite(widest) ? Math.Max(Tightening, 0.5 * Math.Sqrt(WidthWanted / widest)) : Tightening;
         }
     }
 

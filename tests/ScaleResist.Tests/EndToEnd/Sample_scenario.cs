@@ -156,7 +156,8 @@ public sealed class Sample_scenario(TwoNights nights) : IClassFixture<TwoNights>
         // Of the 40 pairs, 2 lie across components and 7 are joined by a link.
         Assert.Equal(2 * 31, rows.Count);
         Assert.All(rows, r => Assert.Equal((0.0, "solve"), ((double)r[1]!, (string)r[2]!)));
-        Assert.InRange(rows.Count(r => (double)r[0]! <= 2), 56, 62);
+        // Long pairs share most of their way, and so their errors.
+        Assert.InRange(rows.Count(r => (double)r[0]! <= 4), 60, 62);
     }
 
     [Fact]
