@@ -141,7 +141,7 @@ internal sealed class ComponentSolver
         return composed;
     }
 
-    private static Laplacian Renumbered(Laplacian laplacian, int[] order)
+    internal static Laplacian Renumbered(Laplacian laplacian, int[] order)
     {
         int n = order.Length;
         int[] place = new int[n];
