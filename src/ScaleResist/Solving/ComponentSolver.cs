@@ -40,7 +40,6 @@ public sealed class SolverWorkspace<T> : IDisposable
 /// <summary>Solves on one component of more than one node.</summary>
 internal sealed partial class ComponentSolver
 {
-
     private readonly Laplacian laplacian;
     private readonly Component component;
     private readonly EliminationStep[] steps = [];

@@ -21,10 +21,10 @@ internal sealed record PreconditionerChoice(string Name, string Reason, SampledF
     private const double MostSteps = 128; // beyond, the early pace foretells too few steps (226 on a grid that needs 1200)
     // A ball may look worse than the whole, since most of its nodes lie on its boundary: 103 steps against 31 on a small world of 10^6 nodes.
     private const double BallMargin = 2;
-    // On a grid of 10^6 nodes a second sample costs as much to set up as it saves in some 120 solves; on a cubic grid it costs 30 s and the
-    // solves become slower.
-    private const int ManySolves = 256;
-    private const double PlanarDegree = 4.5;
+    // A second sample costs as much to set up as it saves in some 50 solves on a grid and on a road-like network of 10^6 nodes; on a cubic grid
+    // it saves nothing.
+    private const int ManySolves = 48;
+    private const double PlanarDegree = 5.5;
 
     /// <summary>For a core of one node, where nothing is left to solve.</summary>
     public static PreconditionerChoice None { get; } = new("elimination", "nothing is left to iterate on", null);
