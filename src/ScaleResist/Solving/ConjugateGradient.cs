@@ -6,7 +6,7 @@
 //   x += a p             r -= a L p          (Advance: gives the new r'M r)
 //   b = new r'M r / old
 //
-// How many passes over the panels this takes is the preconditioner's affair: GaussSeidel needs 2 of 12 panels in all, SampledElimination 3 of 14.
+// How many passes this takes is the preconditioner's affair: GaussSeidel makes 2 that move 11 panels, SampledElimination 3 that move 13.
 //
 // When to stop. A residual small beside b says little: a weak cut's mode may hold most of x and next to nothing of b. What counts is the error in
 // the energy norm, |x - x*|_L^2 = r' L+ r <= r'M r / m with m the least eigenvalue of M L on vectors that sum to zero; the energy x'b = sum a r's
