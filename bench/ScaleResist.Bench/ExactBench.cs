@@ -39,9 +39,9 @@ internal static class ExactBench
 
     private static void Row(string name, Network network, int rounds)
     {
-        double[][] one = [.. Enumerable.Range(0, rounds).Select(_ => Round(network, 1, out _))];
+        double[][] one = [.. Enumerable.Range(0, rounds).Select(round => Round(network, 1, out _))];
         SymbolicCholesky symbolic = null!;
-        double[][] two = [.. Enumerable.Range(0, rounds).Select(_ => Round(network, 2, out symbolic))];
+        double[][] two = [.. Enumerable.Range(0, rounds).Select(round => Round(network, 2, out symbolic))];
         double flop = symbolic.Operations / 1e9, all = flop + (symbolic.InversionOperations / 1e9);
         Console.WriteLine($"| {name} | {network.NodeCount:N0} | {network.LinkCount:N0} | {Both(Order)} | {One(Analysis)} | {Both(Factorisation)} "
             + $"| {Both(Inverse)} | {symbolic.Entries / (double)network.NodeCount:0.0} | {flop:0.0} + {all - flop:0.0} "
