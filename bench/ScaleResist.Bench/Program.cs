@@ -32,8 +32,15 @@ switch (args)
     case ["setup", string family]:
         SetUpBench.Run(family);
         return 0;
+    case ["exact"]:
+        ExactBench.Run(null);
+        return 0;
+    case ["exact", string family]:
+        ExactBench.Run(family == "all" ? null : family);
+        return 0;
     default:
         Console.Error.WriteLine(
-            "say: kernels [BenchmarkDotNet options] | traffic | job FILE [PROBES] | solver [FAMILY | all [SOLVES]] | setup [FAMILY]");
+            "say: kernels [BenchmarkDotNet options] | traffic | job FILE [PROBES] | solver [FAMILY | all [SOLVES]] | setup [FAMILY] "
+            + "| exact [FAMILY | all]");
         return 2;
 }

@@ -85,6 +85,8 @@ internal sealed class ExactPart
         for (int i = 0; i < rows; i++)
         {
             Span<int> row = neighbours.AsSpan((int)start[i], (int)(start[i + 1] - start[i]));
+            if (Ascends(row))
+                continue; // all but the neighbours of the ground, as a rule
             if (conductances is null)
                 row.Sort();
             else
@@ -99,6 +101,16 @@ internal sealed class ExactPart
                 conductances[write[from]] = c;
             neighbours[write[from]++] = to;
         }
+    }
+
+    private static bool Ascends(ReadOnlySpan<int> row)
+    {
+        for (int k = 1; k < row.Length; k++)
+        {
+            if (row[k - 1] > row[k])
+                return false;
+        }
+        return true;
     }
 
     private bool Ends(int u, int v, out int one, out int other)

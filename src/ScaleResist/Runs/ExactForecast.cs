@@ -14,15 +14,22 @@ namespace ScaleResist.Runs;
 /// <param name="Bytes">Peak resident memory.</param>
 public sealed record ExactForecast(long Entries, double Operations, double Seconds, long Bytes)
 {
-    internal const double SecondsPerOperation = 1 / 6e9;
-    internal const double SecondsPerEntry = 60e-9;
-    internal const double BaseBytes = 200e6;
+    internal const double SecondsPerOperation = 2.9e-11; // on two threads
+    internal const double SecondsPerEntry = 20e-9;
+    private const double FixedSeconds = 0.48; // the first rows of every table: most of a small run
+    private const double SecondsPerNode = 0.4e-6;
+    private const double SecondsPerLink = 0.1e-6;
+    private const double BaseBytes = 75e6; // the runtime
+    private const double BytesPerNode = 300; // blocks, labels and rows on their way to the tables
+    private const double BytesPerLink = 120;
 
     internal static ExactForecast Of(Network network, SymbolicCholesky symbolic, EstimatePlan plan)
     {
         double operations = (double)symbolic.Operations + symbolic.InversionOperations;
-        double seconds = (operations * SecondsPerOperation) + (symbolic.StoredEntries * SecondsPerEntry) + RunCost.WritingSeconds(network, plan);
-        double bytes = BaseBytes + RunCost.NetworkBytes(network) + symbolic.PeakBytes(plan.Threads);
+        double seconds = FixedSeconds + (network.NodeCount * SecondsPerNode) + (network.LinkCount * SecondsPerLink)
+            + (symbolic.StoredEntries * SecondsPerEntry) + (operations * SecondsPerOperation) + RunCost.WritingSeconds(network, plan);
+        double bytes = BaseBytes + RunCost.NetworkBytes(network) + (network.NodeCount * BytesPerNode)
+            + (network.LinkCount * BytesPerLink) + symbolic.PeakBytes(plan.Threads);
         return new ExactForecast(symbolic.Entries, operations, seconds, (long)bytes);
     }
 }

@@ -10,15 +10,15 @@ namespace ScaleResist.Runs;
 /// <summary>What a run costs, foreseen.</summary>
 internal static class RunCost
 {
-    private const double SecondsPerLinkRow = 0.55e-6;
-    private const double SecondsPerNodeRow = 1e-6;
+    private const double SecondsPerLinkRow = 0.75e-6;
+    private const double SecondsPerNodeRow = 1.4e-6;
     private const double BaseBytes = 200e6;
     private const int PanelsPerThread = 6; // right-hand sides, solutions, and those of an iteration
 
     /// <summary>Seconds that writing the wanted tables takes.</summary>
     public static double WritingSeconds(Network network, EstimatePlan plan)
     {
-        double nodeTables = (plan.Want.HasFlag(Want.Nodes) ? 1 : 0) + (plan.Want.HasFlag(Want.Components) ? 0.3 : 0);
+        double nodeTables = (plan.Want.HasFlag(Want.Nodes) ? 1 : 0) + (plan.Want.HasFlag(Want.Components) ? 0.1 : 0);
         return (plan.Want.HasFlag(Want.Links) ? network.LinkCount * SecondsPerLinkRow : 0) + (nodeTables * network.NodeCount * SecondsPerNodeRow);
     }
 

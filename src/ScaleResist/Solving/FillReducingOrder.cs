@@ -23,7 +23,7 @@ internal static class FillReducingOrder
 
     /// <summary>
     /// The same, or null where the factor would exceed the limits. Hopeless graphs are given up on as soon as a bound on the entries to come
-    /// says so, or when the search has read more list entries than the factor may have.
+    /// says so, or when the search has read more list entries than half of what the factor may have and a few times the graph.
     /// </summary>
     public static int[]? Of(Laplacian laplacian, OrderLimits limits, int threads, CancellationToken cancel)
     {

@@ -95,7 +95,7 @@ internal sealed class MinimumDegree
     {
         int[] order = new int[free];
         int ordered = 0;
-        long mostWork = limits.Entries == long.MaxValue ? long.MaxValue : limits.Entries + (16L * list.Length);
+        long mostWork = limits.Entries == long.MaxValue ? long.MaxValue : (limits.Entries / 2) + (4L * list.Length);
         for (int pivots = 0; ordered < free; pivots++)
         {
             if ((pivots & 4095) == 0)

@@ -48,6 +48,16 @@ internal sealed class SmallDegrees
         CoreNodes = [];
     }
 
+    // Nothing to eliminate: the pattern is its own core.
+    private SmallDegrees(Laplacian laplacian, int[] nodes)
+    {
+        this.laplacian = laplacian;
+        to = twin = degree = pendant = chain = order = [];
+        gone = [];
+        CoreNodes = nodes;
+        Core = new OrderGraph(Array.ConvertAll(laplacian.RowStart, start => checked((int)start)), laplacian.Neighbours[..(int)laplacian.RowStart[^1]]);
+    }
+
     /// <summary>The nodes eliminated, in order.</summary>
     public ReadOnlySpan<int> Order => order.AsSpan(0, ordered);
 
@@ -63,6 +73,9 @@ internal sealed class SmallDegrees
     /// <summary>Eliminates what can be, down to nothing on forests and series-parallel networks. At most 2^31 arcs.</summary>
     public static SmallDegrees Of(Laplacian laplacian)
     {
+        int[] nodes = [.. Enumerable.Range(0, laplacian.NodeCount)];
+        if (Array.TrueForAll(nodes, u => laplacian.RowStart[u + 1] - laplacian.RowStart[u] > 2))
+            return new SmallDegrees(laplacian, nodes);
         SmallDegrees run = new(laplacian);
         run.Run();
         run.BuildCore();

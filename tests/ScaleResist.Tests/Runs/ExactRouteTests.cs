@@ -155,7 +155,7 @@ public sealed class ExactRouteTests
     public void What_does_not_fit_is_refused_with_the_figures()
     {
         Network cube = TestNetworks.Of(Family.Cube, 8000);
-        string memory = Assert.Throws<BudgetException>(() => Run(cube, Exact with { MemoryBudget = 201_000_000 }, out _)).Message;
+        string memory = Assert.Throws<BudgetException>(() => Run(cube, Exact with { MemoryBudget = 80_000_000 }, out _)).Message;
         Assert.Contains("--memory-budget", memory);
         Assert.Contains("GB", memory);
         string time = Assert.Throws<BudgetException>(() => Run(cube, Exact with { TimeBudget = TimeSpan.FromMilliseconds(20) }, out _)).Message;
