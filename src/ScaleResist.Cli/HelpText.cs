@@ -39,14 +39,17 @@ internal static class HelpText
                                 factor is affordable, else 64 probes
           --probes K            probe with 4 to 4096 random probes; four times the
                                 probes halve the error and take four times as long
-          --time-budget T       4h, 90m, 30s: refuse a run foreseen to take longer
+          --target-error E      or as many as it takes for 95 % of the relative
+                                standard errors to be below E, such as 0.02
+          --time-budget T       4h, 90m, 30s: at most as many as fit; with --probes
+                                refuse a run foreseen to take longer
           --memory-budget M     16GiB, 500MB: refuse a run foreseen to need more
           --confidence P        of the intervals (0.95 unless said)
           --seed S              of the random signs (1 unless said)
           --threads T           1 to 256 (all cores unless said); results are the same
           --restart             discard what an unfinished run of this id left
           --verbose             show the stack of a fault
-        Not in this version: --target-error, --shard, --terminals.
+        Not in this version: --shard, --terminals.
 
         Example: scaleresist estimate roads.csv --lake lake --columns from,to,km
                  --weights resistance --want index,links --probes 64

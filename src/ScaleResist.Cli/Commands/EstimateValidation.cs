@@ -12,7 +12,7 @@ namespace ScaleResist.Cli.Commands;
 internal static class EstimateValidation
 {
     public const int FewestProbes = 4;
-    public const int MostProbes = 4096;
+    public const int MostProbes = EstimatePlan.LargestProbes;
     public const int MostThreads = 256;
 
     private static readonly Dictionary<string, Want> Tables = new(StringComparer.Ordinal)
@@ -59,8 +59,10 @@ internal static class EstimateValidation
             return routeProblem;
         if (BudgetProblem(options.TimeBudget, options.MemoryBudget, out TimeSpan? time, out long? memory) is string budgetProblem)
             return budgetProblem;
-        if (CountsProblem(options.Probes, options.Threads, out int probes, out int threads) is string countsProblem)
+        if (CountsProblem(options.Probes, options.Threads, out int? probes, out int threads) is string countsProblem)
             return countsProblem;
+        if (TargetProblem(options, out double? target) is string targetProblem)
+            return targetProblem;
         if (!TryFraction(options.Confidence ?? "0.95", out double confidence))
             return $"--confidence '{InputException.Show(options.Confidence)}' is not a number between 0 and 1, such as 0.95";
         if (!ulong.TryParse(options.Seed ?? "1", NumberStyles.None, CultureInfo.InvariantCulture, out ulong seed))
@@ -77,6 +79,7 @@ internal static class EstimateValidation
                 Want = want,
                 Route = route,
                 Probes = probes,
+                TargetError = target,
                 Confidence = confidence,
                 Seed = seed,
                 Threads = threads,
@@ -90,15 +93,21 @@ internal static class EstimateValidation
         return null;
     }
 
+    private static string? TargetProblem(EstimateOptions options, out double? target)
+    {
+        target = null;
+        if (options.TargetError is not string text)
+            return null;
+        if (options.Probes is not null)
+            return "--probes and --target-error both say how many probes there are; choose one";
+        if (!TryFraction(text, out double error))
+            return $"--target-error '{InputException.Show(text)}' is not a number between 0 and 1; write 0.01 for one per cent";
+        target = error;
+        return null;
+    }
+
     private static string? NotInThisVersion(EstimateOptions options)
     {
-        if (options.TargetError is string error)
-        {
-            return TryFraction(error, out _)
-                ? "--target-error is not in this version; choose --probes (four times the probes halve the error)"
-                : $"--target-error '{InputException.Show(error)}' is not a number between 0 and 1, such as 0.01; "
-                    + "and it is not in this version: choose --probes";
-        }
         if (options.Shard is not null)
             return "--shard is not in this version; run the whole estimate on one machine";
         if (options.Terminals is not null)
@@ -141,11 +150,13 @@ internal static class EstimateValidation
         return null;
     }
 
-    /// <summary>The numbers of probes and threads, or what is wrong with them.</summary>
-    public static string? CountsProblem(string? probesText, string? threadsText, out int probes, out int threads)
+    /// <summary>The numbers of probes (null where not given) and threads, or what is wrong with them.</summary>
+    public static string? CountsProblem(string? probesText, string? threadsText, out int? probes, out int threads)
     {
-        threads = 0;
-        if (!TryWhole(probesText, EstimatePlan.DefaultProbes, FewestProbes, MostProbes, out probes))
+        (probes, threads) = (null, 0);
+        bool good = TryWhole(probesText, 0, FewestProbes, MostProbes, out int count);
+        probes = probesText is null ? null : count;
+        if (!good)
             return $"--probes '{InputException.Show(probesText)}' is not a number from {FewestProbes} to {MostProbes}";
         if (!TryWhole(threadsText, Math.Min(Environment.ProcessorCount, MostThreads), 1, MostThreads, out threads))
             return $"--threads '{InputException.Show(threadsText)}' is not a number from 1 to {MostThreads}";

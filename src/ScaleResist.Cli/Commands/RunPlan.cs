@@ -18,13 +18,15 @@ internal static class RunPlan
     {
         ["verb"] = "estimate",
         ["want"] = string.Join(',', EstimateValidation.NamesOf(request.Plan.Want)),
-        ["probes"] = request.Plan.Probes,
+        // Nobody's number and no dial: what the default is.
+        ["probes"] = request.Plan is { TargetError: null, TimeBudget: null } ? request.Plan.MostProbes : request.Plan.Probes,
+        ["target_error"] = request.Plan.TargetError,
         ["route"] = request.Plan.Route.ToString().ToLowerInvariant(),
         ["confidence"] = request.Plan.Confidence,
         ["seed"] = request.Plan.Seed,
         ["time_budget"] = request.Plan.TimeBudget?.TotalSeconds,
         ["memory_budget"] = request.Plan.MemoryBudget,
-        ["mode_error"] = request.Plan.EffectiveModeError,
+        ["mode_error"] = request.Plan.ModeErrorOf(0),
         // Without --weights a third column is refused, so a run that finished had none.
         ["weights"] = request.Reading.Weights is WeightMeaning.Unsaid
             ? "none"

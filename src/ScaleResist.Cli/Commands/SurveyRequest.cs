@@ -41,7 +41,7 @@ internal sealed record SurveyRequest
         {
             return budgetProblem;
         }
-        if (EstimateValidation.CountsProblem(line["probes"], line["threads"], out int probes, out int threads) is string countsProblem)
+        if (EstimateValidation.CountsProblem(line["probes"], line["threads"], out int? probes, out int threads) is string countsProblem)
             return countsProblem;
         request = new SurveyRequest
         {

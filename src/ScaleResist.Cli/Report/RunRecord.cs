@@ -57,6 +57,10 @@ internal sealed record RunRecord
 
     public required SolverFacts? Solver { get; init; }
 
+    public required ProbingFacts? Probing { get; init; }
+
+    public required AuditFacts? Audit { get; init; }
+
     /// <summary>Foster's theorem as a check, or null where nothing was probed.</summary>
     public required FosterCheck? Foster { get; init; }
 
@@ -89,6 +93,8 @@ internal sealed record RunRecord
             Phases = phases,
             Exact = outcome.Summary.Exact,
             Solver = outcome.Summary.Solver,
+            Probing = outcome.Summary.Probing,
+            Audit = outcome.Summary.Audit,
             Foster = FosterCheck.Of(outcome.Summary),
             Index = [.. outcome.Summary.Index.Take(MostIndexRows)],
             CriticalLinks = outcome.Summary.CriticalLinks,

@@ -65,6 +65,14 @@ internal static class SummaryText
                 + $"error {Numbers.Value(solver.LargestEnergyError, 2)}, residual {Numbers.Value(solver.LargestResidual, 2)}"
                 + (solver.Retried > 0 ? $", {Numbers.Count(solver.Retried)} again in doubles" : ""));
         }
+        if (record.Probing is ProbingFacts probing)
+            yield return Entry("probes", Probes(probing));
+        if (record.Audit is AuditFacts { Compared: > 0 } audit)
+        {
+            yield return Entry("audit", $"{Numbers.Many(audit.Compared, "random link")} and pairs solved: relative error "
+                + $"{Numbers.Value(audit.MedianError!.Value, 2)} (median), {Numbers.Value(audit.Percentile95Error!.Value, 2)} (95 %), "
+                + $"{Numbers.Value(audit.WorstError!.Value, 2)} (worst); {audit.Held} of {Numbers.Many(audit.Intervals, "interval")} held");
+        }
         yield return Entry("time", $"{Numbers.Duration((record.Finished - record.Started).TotalSeconds)}: "
             + string.Join(", ", ShortPhases(record.Phases).Select(p => $"{p.Name} {Numbers.Duration(p.Seconds)}")));
         yield return Entry("memory",
@@ -72,6 +80,8 @@ internal static class SummaryText
         yield return Entry("tables", published + ": "
             + string.Join(", ", record.Rows.Select(t => $"{t.Key} {Numbers.Count(t.Value)}")));
         yield return Entry("query", Query(published, record.Rows.Keys));
+        if (record.Audit?.Warning is string warning)
+            yield return Entry("warning", $"{warning}; do not trust the error bars of this run, and report it");
     }
 
     /// <summary>What was read and cleaned.</summary>
@@ -97,6 +107,14 @@ internal static class SummaryText
         return table == "links"
             ? $"FROM '{files}' ORDER BY spanning_probability DESC LIMIT 20;"
             : $"FROM '{files}' LIMIT 20;";
+    }
+
+    private static string Probes(ProbingFacts probing)
+    {
+        string target = probing is { TargetError: double wanted, RelativeStandardError: double reached }
+            ? $"; relative standard errors: 95 % below {Numbers.Value(reached, 2)}, target {Numbers.Value(wanted, 3)}"
+            : "";
+        return $"{Numbers.Count(probing.Probes)}, stopped by {probing.StoppedBy}{target}";
     }
 
     // The tables' writing in one sum; run.json has them one by one.

@@ -14,19 +14,22 @@ namespace ScaleResist.Estimating;
 public sealed class CertifiedPairs
 {
     // The width is the square of the energy error times the stretch of the tree: 10 to 50 on meshes and roads of 10^5 nodes.
-    private const double FirstTolerance = 4e-6;
-    private const double WidthWanted = 1e-8;
+    private const double ToleranceOfWidth = 0.04; // times the root of the width
+    private const double WidthOfPairs = 1e-8;
     private const double Tightening = 0.01;
     private const int MostRounds = 3;
 
     private readonly Network network;
     private readonly LaplacianSolver solver;
     private readonly RoutingTree tree;
+    private readonly double width;
     private readonly int[] place; // of a pair's enclosure
     private readonly Enclosure[] enclosures;
 
-    private CertifiedPairs(Network network, LaplacianSolver solver, IReadOnlyList<(int U, int V)> pairs, int threads, CancellationToken cancel)
+    private CertifiedPairs(
+        Network network, LaplacianSolver solver, IReadOnlyList<(int U, int V)> pairs, double width, int threads, CancellationToken cancel)
     {
+        this.width = width;
         this.network = network;
         this.solver = solver;
         tree = new RoutingTree(network);
@@ -63,7 +66,7 @@ public sealed class CertifiedPairs
     public int Count => place.Length;
 
     /// <summary>
-    /// Where the resistance of a pair lies: 0 for a node and itself, +infinity between components, else bounds that are at most 1e-8 apart, relative,
+    /// Where the resistance of a pair lies: 0 for a node and itself, +infinity between components, else bounds that are at most the width apart, relative,
     /// as far as doubles let the solver get there.
     /// </summary>
     public Enclosure this[int pair] => enclosures[place[pair]];
@@ -74,9 +77,10 @@ public sealed class CertifiedPairs
     /// <param name="pairs">Internal nodes, in any components.</param>
     /// <param name="threads">Threads to use, each with panels of its own: some 13 panels of n rows.</param>
     /// <param name="cancel">Checked once an iteration.</param>
+    /// <param name="width">Upper - Lower wanted, relative.</param>
     public static CertifiedPairs Solve(
-        Network network, LaplacianSolver solver, IReadOnlyList<(int U, int V)> pairs, int threads = 1, CancellationToken cancel = default) =>
-        new(network, solver, pairs, threads, cancel);
+        Network network, LaplacianSolver solver, IReadOnlyList<(int U, int V)> pairs, int threads = 1, CancellationToken cancel = default,
+        double width = WidthOfPairs) => new(network, solver, pairs, width, threads, cancel);
 
     private void Work((int Component, Column[] Columns)[] panels, int threads, CancellationToken cancel)
     {
@@ -103,13 +107,13 @@ public sealed class CertifiedPairs
     // Again, and more tightly, where the tree's stretch is larger than foreseen.
     private void Enclose(int component, Column[] columns, Workspace workspace, CancellationToken cancel)
     {
-        double tolerance = FirstTolerance;
+        double tolerance = ToleranceOfWidth * Math.Sqrt(width);
         for (int round = 0; round < MostRounds; round++)
         {
             double widest = EncloseOnce(component, columns, tolerance, workspace, cancel);
-            if (widest <= WidthWanted)
+            if (widest <= width)
                 return;
-            tolerance *= double.IsFinite(widest) ? Math.Max(Tightening, 0.5 * Math.Sqrt(WidthWanted / widest)) : Tightening;
+            tolerance *= double.IsFinite(widest) ? Math.Max(Tightening, 0.5 * Math.Sqrt(width / widest)) : Tightening;
         }
     }
 
@@ -136,8 +140,8 @@ public sealed class CertifiedPairs
                 enclosures[columns[j].Place] = before.Upper > 0
                     ? new Enclosure(Math.Max(before.Lower, found.Lower), Math.Min(before.Upper, found.Upper))
                     : found;
-                double width = enclosures[columns[j].Place].RelativeWidth;
-                widest = Math.Max(widest, double.IsNaN(width) ? double.PositiveInfinity : width);
+                double apart = enclosures[columns[j].Place].RelativeWidth;
+                widest = Math.Max(widest, double.IsNaN(apart) ? double.PositiveInfinity : apart);
             }
         }
         return widest;

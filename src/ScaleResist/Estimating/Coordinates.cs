@@ -9,12 +9,14 @@ namespace ScaleResist.Estimating;
 
 /// <summary>n x K coordinates, row-major.</summary>
 /// <param name="network">The network.</param>
-/// <param name="probes">K.</param>
-public sealed class Coordinates(Network network, int probes)
+public sealed class Coordinates(Network network)
 {
-    private readonly float[][] byPanel = new float[ProbePanel.CountFor(probes)][];
+    private readonly List<float[]> byPanel = [];
 
-    /// <summary>Takes a solved panel.</summary>
+    /// <summary>K, the probes added so far.</summary>
+    public int Probes { get; private set; }
+
+    /// <summary>Takes a solved panel. Panels are added in order of their numbers.</summary>
     public void Add(ProbePanel panel)
     {
         float[] values = new float[(long)network.NodeCount * panel.Probes];
@@ -28,7 +30,8 @@ public sealed class Coordinates(Network network, int probes)
             for (int j = 0; j < to.Length; j++)
                 to[j] = z[j] - (b[j] * inverse);
         }
-        byPanel[panel.Number] = values;
+        byPanel.Add(values);
+        Probes += panel.Probes;
     }
 
     /// <summary>Copies the K coordinates of a node.</summary>

@@ -51,7 +51,7 @@ public sealed class LinkResistances
     /// </summary>
     public void Fill(long first, Span<LinkResult> into)
     {
-        int u = NodeOfLink(first);
+        int u = network.NodeOfLink(first);
         int nextBridge = bridges.FirstFrom(first);
         for (int i = 0; i < into.Length; i++)
         {
@@ -74,20 +74,5 @@ public sealed class LinkResistances
                 into[i] = new LinkResult(u, v, c, sums!.Estimate(link, arc, u, quantile), ResistanceMethod.Probe, 0);
             }
         }
-    }
-
-    private int NodeOfLink(long link)
-    {
-        // The last node whose links begin at or before this one and that has any.
-        int low = 0, high = network.NodeCount - 1;
-        while (low < high)
-        {
-            int middle = low + ((high - low + 1) / 2);
-            if (network.LinkStart[middle] <= link)
-                low = middle;
-            else
-                high = middle - 1;
-        }
-        return low;
     }
 }

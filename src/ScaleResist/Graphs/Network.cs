@@ -121,6 +121,22 @@ public sealed class Network
         return arc < 0 ? -1 : linkStart[from] + (arc - FirstLaterArc(from));
     }
 
+    /// <summary>The smaller node of a link. O(log n).</summary>
+    public int NodeOfLink(long link)
+    {
+        // The last node whose links begin at or before this one and that has any.
+        int low = 0, high = NodeCount - 1;
+        while (low < high)
+        {
+            int middle = low + ((high - low + 1) / 2);
+            if (linkStart[middle] <= link)
+                low = middle;
+            else
+                high = middle - 1;
+        }
+        return low;
+    }
+
     /// <summary>The number of links within a component.</summary>
     public long LinksOf(Component component) => linkStart[component.End] - linkStart[component.Start];
 

@@ -1,5 +1,7 @@
 // A validated plan of an estimate run: what is wanted and how. Raw options are the command line's affair.
 
+using ScaleResist.Estimating;
+
 namespace ScaleResist.Runs;
 
 /// <summary>The tables an estimate can write.</summary>
@@ -47,14 +49,31 @@ public sealed record EstimatePlan
     /// <summary>The probes used where the user names no number.</summary>
     public const int DefaultProbes = 64;
 
+    /// <summary>The most probes that a target error may take.</summary>
+    public const int LargestProbes = 4096;
+
     /// <summary>The tables wanted.</summary>
     public Want Want { get; init; } = Want.Index | Want.Components | Want.Nodes | Want.Links;
 
     /// <summary>How.</summary>
     public Route Route { get; init; } = Route.Auto;
 
-    /// <summary>The number of probes K, at least 4, where anything is probed.</summary>
-    public int Probes { get; init; } = DefaultProbes;
+    /// <summary>
+    /// The number of probes K, at least 4, where anything is probed; null: as many as the target error takes and the time budget allows, without a
+    /// target at most <see cref="DefaultProbes"/>.
+    /// </summary>
+    public int? Probes { get; init; }
+
+    /// <summary>
+    /// The relative standard error, in (0, 1), that 95 % of the probed rows of each table stay below; null: no target. Not with <see cref="Probes"/>.
+    /// </summary>
+    public double? TargetError { get; init; }
+
+    /// <summary>The most probes the run can take.</summary>
+    public int MostProbes => Probes ?? (TargetError is null ? DefaultProbes : LargestProbes);
+
+    /// <summary>About how many it will take: with a target E, 0.1 / E^2, from a relative standard error of 0.22 sqrt(2/K).</summary>
+    public int ForeseenProbes => TargetError is double error ? (int)Math.Clamp(0.1 / (error * error), 2 * ProbePanel.Width, LargestProbes) : MostProbes;
 
     /// <summary>The confidence of the intervals, in (0, 1).</summary>
     public double Confidence { get; init; } = 0.95;
@@ -68,7 +87,7 @@ public sealed record EstimatePlan
     /// <summary>Seconds that the automatic route gives to exactness: what is foreseen to take longer is probed.</summary>
     public double AffordableSeconds { get; init; } = 120;
 
-    /// <summary>Time that the run may be foreseen to take; null: as long as it takes.</summary>
+    /// <summary>Time that the run may take; null: as long as it takes. Probes that nobody named end in time; what else is foreseen not to fit is refused.</summary>
     public TimeSpan? TimeBudget { get; init; }
 
     /// <summary>Memory in bytes that the run may be foreseen to need; null: what the machine has.</summary>
@@ -80,6 +99,10 @@ public sealed record EstimatePlan
     /// </summary>
     public double? ModeError { get; init; }
 
-    /// <summary>The mode error in force.</summary>
-    public double EffectiveModeError => ModeError ?? 0.05 * Math.Sqrt(2.0 / Probes);
+    /// <summary>
+    /// The mode error in force for a panel. With a target error, where K is known only at the end, panel i gets half of what K = 16 (i+1) would:
+    /// the sum of (i+1)^(-1/2) over P panels is below 2 P^(1/2), so that the mean over the panels keeps to the twentieth wherever the run stops.
+    /// </summary>
+    public double ModeErrorOf(int panel) => ModeError
+        ?? (TargetError is null ? 0.05 * Math.Sqrt(2.0 / MostProbes) : 0.025 * Math.Sqrt(2.0 / (ProbePanel.Width * (panel + 1.0))));
 }

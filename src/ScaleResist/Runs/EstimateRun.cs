@@ -35,6 +35,8 @@ public static class EstimateRun
         Network network, EstimatePlan plan, EstimateInputs inputs, ITableSink sink, IRunObserver observer,
         CancellationToken cancel)
     {
+        if (plan.Probes is not null && plan.TargetError is not null)
+            throw new ArgumentException("A plan has a number of probes or a target error, not both.", nameof(plan));
         long begin = Stopwatch.GetTimestamp();
         Phases phases = new(observer);
         Dictionary<string, long> rows = [];
@@ -48,6 +50,8 @@ public static class EstimateRun
         ExactPairs? exactPairs = null;
         LaplacianSolver? solver = null;
         ProbedEstimates? probed = null;
+        Audit? audit = null;
+        AuditFacts? audited = null;
         NodeSums? nodes = null;
         LinkRows? links = null;
         List<IndexEntry> index = [];
@@ -66,11 +70,18 @@ public static class EstimateRun
             left = route.AllExact ? plan.Want & (exact is null ? Want.Pairs | Want.Coordinates : Want.Coordinates) : plan.Want;
             if (left != Want.None)
             {
-                RunCost.CheckMemory(network, plan with { Want = left });
+                RunCost.CheckMemory(network, plan with { Want = left }, plan.ForeseenProbes);
                 solver = phases.Do("preparing", network.LinkCount, "links",
-                    () => new LaplacianSolver(network, plan.Probes, plan.Seed, cancel));
-                probed = phases.Do("solving", plan.Probes, "probes",
-                    () => ProbedEstimates.Run(blocks, Left(), inputs, exact?.ExactBlocks, exactPairs is null ? null : exactPairs.Holds, !route.AllExact, solver, observer, cancel));
+                    () => new LaplacianSolver(network, plan.ForeseenProbes, plan.Seed, cancel));
+                if ((left & (Want.Links | Want.Pairs)) != 0)
+                {
+                    audit = phases.Do("solving an audit", Audit.CountFor(plan), "pairs",
+                        () => Audit.Solve(blocks, plan, exact?.Part, !route.AllExact, solver, cancel));
+                }
+                probed = phases.Do("solving", plan.TargetError is null ? plan.MostProbes : null, "probes",
+                    () => ProbedEstimates.Run(
+                        blocks, Left(), inputs, exact?.ExactBlocks, exactPairs is null ? null : exactPairs.Holds, !route.AllExact, audit?.Pairs, solver,
+                        observer, cancel));
             }
             if ((plan.Want & (Want.Index | Want.Nodes)) != 0)
                 nodes = probed?.Nodes ?? new NodeSums(blocks, inputs.NodeWeights, exact?.ExactBlocks);
@@ -98,7 +109,12 @@ public static class EstimateRun
         if (plan.Want.HasFlag(Want.Coordinates))
         {
             Write("coordinates", Tables.Coordinates(label), network.NodeCount,
-                w => NodeRows.WriteCoordinates(network, probed!.Coordinates!, plan.Probes, w, cancel));
+                w => NodeRows.WriteCoordinates(network, probed!.Coordinates!, w, cancel));
+        }
+        if (audit is not null)
+        {
+            Write("audit", Tables.Audit(label), Audit.CountFor(plan),
+                w => audited = audit.Write(blocks.Bridges, probed!.Links, plan.Confidence, w));
         }
         return new EstimateSummary
         {
@@ -130,6 +146,8 @@ public static class EstimateRun
                 LargestEnergyError = solver.Statistics.LargestEnergyError,
                 Retried = solver.Statistics.Retried,
             },
+            Probing = probed?.Facts,
+            Audit = audited,
             Phases = phases.Times,
             Rows = rows,
         };
@@ -163,7 +181,7 @@ public static class EstimateRun
     {
         public List<PhaseTime> Times { get; } = [];
 
-        public T Do<T>(string name, double total, string unit, Func<T> work)
+        public T Do<T>(string name, double? total, string unit, Func<T> work)
         {
             observer.Begin(name, total, unit);
             long start = Stopwatch.GetTimestamp();

@@ -97,6 +97,75 @@ public sealed record SolverFacts
     public required long Retried { get; init; }
 }
 
+/// <summary>What ended the probes.</summary>
+public enum StoppedBy
+{
+    /// <summary>Their number was reached: the one asked for, or the most that a run takes.</summary>
+    Probes,
+
+    /// <summary>The target error was.</summary>
+    Target,
+
+    /// <summary>Another batch of panels would not have fitted the time budget.</summary>
+    Time,
+}
+
+/// <summary>How many probes there were, and why not more.</summary>
+public sealed record ProbingFacts
+{
+    /// <summary>K.</summary>
+    public required int Probes { get; init; }
+
+    /// <summary>Why K and no more: <c>probes</c>, <c>target</c> or <c>time</c>.</summary>
+    public required string StoppedBy { get; init; }
+
+    /// <summary>The target error; null without one.</summary>
+    public required double? TargetError { get; init; }
+
+    /// <summary>With a target: what it was compared with at the end, the largest 95th percentile of relative standard errors over the tables.</summary>
+    public required double? RelativeStandardError { get; init; }
+}
+
+/// <summary>Probed links and pairs against certified enclosures.</summary>
+public sealed record AuditFacts
+{
+    /// <summary>Links and pairs whose enclosure is narrow enough to compare with.</summary>
+    public required int Compared { get; init; }
+
+    /// <summary>Those whose enclosure is not, where conductances lie too far apart; they count nowhere.</summary>
+    public required int TooWide { get; init; }
+
+    /// <summary>Median of the relative error, without sign; null where nothing was compared, as the next two.</summary>
+    public required double? MedianError { get; init; }
+
+    /// <summary>95th percentile of the relative error.</summary>
+    public required double? Percentile95Error { get; init; }
+
+    /// <summary>Largest relative error.</summary>
+    public required double? WorstError { get; init; }
+
+    /// <summary>Intervals that surely hold the true value or surely do not; one that cuts its enclosure counts as neither.</summary>
+    public required int Intervals { get; init; }
+
+    /// <summary>Of them, those that hold it.</summary>
+    public required int Held { get; init; }
+
+    /// <summary>Held / Intervals; null without any.</summary>
+    public double? ShareHeld => Intervals == 0 ? null : (double)Held / Intervals;
+
+    /// <summary>Of <see cref="Intervals"/>, those of links, whose errors are nearly independent.</summary>
+    public required int LinkIntervals { get; init; }
+
+    /// <summary>Of them, those that hold the true value.</summary>
+    public required int LinksHeld { get; init; }
+
+    /// <summary>Links and pairs further from the truth than six standard errors.</summary>
+    public required int FarOff { get; init; }
+
+    /// <summary>What speaks against the error bars, in words; null where nothing does.</summary>
+    public required string? Warning { get; init; }
+}
+
 /// <summary>How the exact part went.</summary>
 public sealed record ExactFacts
 {
@@ -153,6 +222,12 @@ public sealed record EstimateSummary
 
     /// <summary>Solver statistics, or null where nothing was solved.</summary>
     public required SolverFacts? Solver { get; init; }
+
+    /// <summary>The probes, or null where nothing was probed.</summary>
+    public required ProbingFacts? Probing { get; init; }
+
+    /// <summary>The audit of the probes, or null without one.</summary>
+    public required AuditFacts? Audit { get; init; }
 
     /// <summary>Phases in order.</summary>
     public required IReadOnlyList<PhaseTime> Phases { get; init; }

@@ -112,17 +112,17 @@ public sealed record NetworkSurvey
     private static ProbeForecast Try(Network network, Blocks blocks, EstimatePlan plan, CancellationToken cancel)
     {
         long begin = Stopwatch.GetTimestamp();
-        LaplacianSolver solver = new(network, plan.Probes, plan.Seed, cancel);
+        LaplacianSolver solver = new(network, plan.ForeseenProbes, plan.Seed, cancel);
         double prepared = Stopwatch.GetElapsedTime(begin).TotalSeconds;
         begin = Stopwatch.GetTimestamp();
         ProbedEstimates.Run(
-            blocks, plan with { Probes = ProbePanel.Width, ModeError = plan.EffectiveModeError }, new EstimateInputs(), null, null, true, solver,
-            new Silent(), cancel);
+            blocks, plan with { Probes = ProbePanel.Width, ModeError = plan.ModeErrorOf(0), TimeBudget = null }, new EstimateInputs(), null, null,
+            true, null, solver, new Silent(), cancel);
         double panel = Stopwatch.GetElapsedTime(begin).TotalSeconds;
-        int panels = ProbePanel.CountFor(plan.Probes), rounds = (panels + plan.Threads - 1) / plan.Threads;
+        int panels = ProbePanel.CountFor(plan.ForeseenProbes), rounds = (panels + plan.Threads - 1) / plan.Threads;
         return new ProbeForecast(
-            plan.Probes, solver.Preconditioner, solver.Reason, solver.Eliminated, solver.Statistics.MostIterations,
-            prepared + (rounds * panel) + RunCost.WritingSeconds(network, plan), RunCost.ProbedBytes(network, plan));
+            plan.ForeseenProbes, solver.Preconditioner, solver.Reason, solver.Eliminated, solver.Statistics.MostIterations,
+            prepared + (rounds * panel) + RunCost.WritingSeconds(network, plan), RunCost.ProbedBytes(network, plan, plan.ForeseenProbes));
     }
 
     private sealed class Silent : IRunObserver

@@ -73,8 +73,9 @@ internal static class NodeRows
 
     /// <summary>The coordinates table.</summary>
     public static void WriteCoordinates(
-        Network network, Coordinates coordinates, int probes, ITableWriter writer, CancellationToken cancel)
+        Network network, Coordinates coordinates, ITableWriter writer, CancellationToken cancel)
     {
+        int probes = coordinates.Probes;
         int batch = Math.Max(1, BatchRows * 16 / probes); // about 64 MB of coordinates at a time
         InBatches(network.NodeCount, Math.Min(batch, BatchRows), cancel, (start, count) =>
         {

@@ -1,5 +1,5 @@
 // The probed route: draws panels, solves them side by side, and adds each to the sums in the order of its number.
-// Invariant: results depend on network, seed and number of probes; not on threads.
+// Invariant: results depend on network, seed and number of probes; not on threads. A panel solved beyond the last one wanted is not added.
 
 using System.Diagnostics;
 using ScaleResist.Estimating;
@@ -19,13 +19,17 @@ internal sealed class ProbedEstimates
 
     public Coordinates? Coordinates { get; init; }
 
-    /// <summary>Draws, solves and adds all panels of a plan.</summary>
+    /// <summary>How many probes there were, and why not more.</summary>
+    public ProbingFacts? Facts { get; private set; }
+
+    /// <summary>Draws, solves and adds the panels of a plan: all, or as many as target and time ask for.</summary>
     /// <param name="blocks">Of the network.</param>
     /// <param name="plan">What is wanted of the probes.</param>
     /// <param name="inputs">Pairs and node weights.</param>
     /// <param name="exact">Blocks that need no probes, or null.</param>
     /// <param name="isExact">Whether a pair needs no probes; null: all do.</param>
     /// <param name="links">Whether links are probed.</param>
+    /// <param name="audited">Pairs of an audit, which take every panel too; or null.</param>
     /// <param name="solver">Prepared for the network.</param>
     /// <param name="observer">Hears of every batch.</param>
     /// <param name="cancel">Ends the run.</param>
@@ -36,6 +40,7 @@ internal sealed class ProbedEstimates
         ExactBlocks? exact,
         Func<int, int, bool>? isExact,
         bool links,
+        PairSums? audited,
         LaplacianSolver solver,
         IRunObserver observer,
         CancellationToken cancel)
@@ -46,34 +51,51 @@ internal sealed class ProbedEstimates
             Links = links ? new LinkSums(network, blocks.Bridges) : null,
             Nodes = (plan.Want & (Want.Index | Want.Nodes)) != 0 ? new NodeSums(blocks, inputs.NodeWeights, exact) : null,
             Pairs = plan.Want.HasFlag(Want.Pairs) ? new PairSums(network, blocks.Bridges, inputs.Pairs ?? [], isExact) : null,
-            Coordinates = plan.Want.HasFlag(Want.Coordinates) ? new Coordinates(network, plan.Probes) : null,
+            Coordinates = plan.Want.HasFlag(Want.Coordinates) ? new Coordinates(network) : null,
         };
-        sums.Pairs?.SolveFew(solver, plan.Probes, plan.Threads, cancel);
-        int panels = ProbePanel.CountFor(plan.Probes);
+        ProbeDial dial = new(blocks, plan, sums, exact, inputs.Pairs ?? [], isExact);
+        sums.Pairs?.SolveFew(solver, plan.ForeseenProbes, plan.Threads, cancel);
+        int panels = ProbePanel.CountFor(plan.MostProbes), added = 0;
         Slot[] slots = new Slot[Math.Min(plan.Threads, panels)];
         try
         {
             for (int i = 0; i < slots.Length; i++)
                 slots[i] = new Slot(new ProbePanel(network, plan.Seed), solver.NewWorkspace<float>());
             long begin = Stopwatch.GetTimestamp();
-            for (int first = 0; first < panels; first += slots.Length)
+            for (int first = 0; dial.Stopped is null; first += slots.Length)
             {
                 int count = Math.Min(slots.Length, panels - first);
                 List<Action> work = [];
                 for (int i = 0; i < count; i++)
                 {
                     (Slot slot, int number) = (slots[i], first + i);
-                    slot.Panel.Draw(number, plan.Probes, plan.Threads);
+                    slot.Panel.Draw(number, plan.MostProbes, plan.Threads);
                     work.Add(() => solver.SolveProbes(
-                        slot.Panel.B, slot.Panel.Z, slot.Panel.Probes, plan.EffectiveModeError, slot.Workspace, cancel));
+                        slot.Panel.B, slot.Panel.Z, slot.Panel.Probes, plan.ModeErrorOf(number), slot.Workspace, cancel));
                 }
                 Together(work, plan.Threads);
-                for (int i = 0; i < count; i++)
+                if (sums.Coordinates is not null)
+                    RunCost.CheckMemory(network, plan, added + (count * ProbePanel.Width));
+                for (int i = 0; i < count && dial.Stopped is null; i++)
+                {
                     sums.Add(slots[i].Panel, plan.Threads);
-                if (first == 0)
+                    audited?.Add(slots[i].Panel);
+                    dial.ForCoordinates?.Add(slots[i].Panel);
+                    added += slots[i].Panel.Probes;
+                    dial.AfterPanel();
+                }
+                if (first == 0 && plan.Probes is not null)
                     RunCost.CheckTime(network, plan, (panels + slots.Length - 1) / slots.Length, Stopwatch.GetElapsedTime(begin));
-                observer.Report(Math.Min(plan.Probes, (first + count) * ProbePanel.Width));
+                dial.AfterBatch(Math.Min(plan.MostProbes, added + (slots.Length * ProbePanel.Width)));
+                observer.Report(added);
             }
+            sums.Facts = new ProbingFacts
+            {
+                Probes = added,
+                StoppedBy = dial.Stopped!.Value.ToString().ToLowerInvariant(),
+                TargetError = plan.TargetError,
+                RelativeStandardError = dial.Error(),
+            };
         }
         finally
         {

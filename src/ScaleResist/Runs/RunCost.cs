@@ -12,6 +12,9 @@ internal static class RunCost
 {
     private const double SecondsPerLinkRow = 0.75e-6;
     private const double SecondsPerNodeRow = 1.4e-6;
+    private const double SecondsPerCoordinate = 1e-8;
+    private const double SecondsToEnd = 0.3;
+    private const double Margin = 1.2;
     private const double BaseBytes = 200e6;
     private const int PanelsPerThread = 6; // right-hand sides, solutions, and those of an iteration
 
@@ -22,33 +25,40 @@ internal static class RunCost
         return (plan.Want.HasFlag(Want.Links) ? network.LinkCount * SecondsPerLinkRow : 0) + (nodeTables * network.NodeCount * SecondsPerNodeRow);
     }
 
+    /// <summary>Seconds to keep for what comes after the last probe, with a margin.</summary>
+    public static double SecondsAfter(Network network, EstimatePlan plan, int probes)
+    {
+        double coordinates = plan.Want.HasFlag(Want.Coordinates) ? SecondsPerCoordinate * network.NodeCount * probes : 0;
+        return SecondsToEnd + (Margin * (WritingSeconds(network, plan) + coordinates));
+    }
+
     /// <summary>Bytes of a network in memory, with what building it leaves and what is kept by node.</summary>
     public static double NetworkBytes(Network network) =>
         (2.0 * network.LinkCount * (network.Conductances is null ? 12 : 20)) + (120.0 * network.NodeCount);
 
-    /// <summary>Peak resident memory of the probed route.</summary>
-    public static long ProbedBytes(Network network, EstimatePlan plan)
+    /// <summary>Peak resident memory of the probed route with so many probes.</summary>
+    public static long ProbedBytes(Network network, EstimatePlan plan, int probes)
     {
-        int slots = Math.Min(plan.Threads, ProbePanel.CountFor(plan.Probes));
+        int slots = Math.Min(plan.Threads, ProbePanel.CountFor(plan.MostProbes));
         double panels = (double)slots * PanelsPerThread * network.NodeCount * Panel<float>.Width * sizeof(float);
-        double coordinates = plan.Want.HasFlag(Want.Coordinates) ? (double)network.NodeCount * plan.Probes * sizeof(float) : 0;
+        double coordinates = plan.Want.HasFlag(Want.Coordinates) ? (double)network.NodeCount * probes * sizeof(float) : 0;
         return (long)(BaseBytes + NetworkBytes(network) + (16.0 * network.LinkCount) + panels + coordinates);
     }
 
     /// <summary>Refuses the probed route where it is foreseen to need more memory than the budget.</summary>
     /// <exception cref="BudgetException">It does not fit.</exception>
-    public static void CheckMemory(Network network, EstimatePlan plan)
+    public static void CheckMemory(Network network, EstimatePlan plan, int probes)
     {
-        long bytes = ProbedBytes(network, plan);
+        long bytes = ProbedBytes(network, plan, probes);
         if (bytes > plan.MemoryBudget)
         {
             throw new BudgetException(string.Create(CultureInfo.InvariantCulture,
-                $"the probes need about {bytes / 1e9:0.0} GB, and --memory-budget is {plan.MemoryBudget / 1e9:0.0} GB; use fewer --threads, "
+                $"{probes} probes need about {bytes / 1e9:0.0} GB, and --memory-budget is {plan.MemoryBudget / 1e9:0.0} GB; use fewer --threads, "
                 + $"fewer tables in --want or a larger budget"));
         }
     }
 
-    /// <summary>Refuses the probed route where, after the first batch of panels, the rest is foreseen to take longer than the budget.</summary>
+    /// <summary>Refuses a named number of probes where, after the first batch of panels, the rest is foreseen to take longer than the budget.</summary>
     /// <exception cref="BudgetException">It does not fit.</exception>
     public static void CheckTime(Network network, EstimatePlan plan, int batches, TimeSpan batch)
     {
@@ -57,9 +67,11 @@ internal static class RunCost
         double writing = WritingSeconds(network, plan), all = (batches * batch.TotalSeconds) + writing;
         if (all <= budget.TotalSeconds)
             return;
-        int affordable = (int)Math.Min(int.MaxValue, Math.Max(0, (budget.TotalSeconds - writing) / batch.TotalSeconds * plan.Probes / batches));
-        string mend = affordable >= 4 ? $"use --probes {affordable}, or a larger budget" : "use a larger budget";
-        throw new BudgetException(string.Create(CultureInfo.InvariantCulture,
-            $"{plan.Probes} probes would take about {all:N0} s, and {budget.TotalSeconds:N0} s of --time-budget are left; {mend}"));
+        int affordable = (int)Math.Min(int.MaxValue, Math.Max(0, (budget.TotalSeconds - writing) / batch.TotalSeconds * plan.MostProbes / batches));
+        throw TooLong(plan.MostProbes, all, budget, affordable >= 4 ? $"use --probes {affordable}, or a larger budget" : "use a larger budget");
     }
+
+    /// <summary>That a number of probes does not fit the time left.</summary>
+    public static BudgetException TooLong(int probes, double seconds, TimeSpan budget, string mend) => new(string.Create(CultureInfo.InvariantCulture,
+        $"{probes} probes would take about {seconds:N1} s, and {budget.TotalSeconds:N1} s of --time-budget are left; {mend}"));
 }

@@ -92,4 +92,15 @@ public static class Tables
         new("strength", ColumnKind.Double),
         new("r", ColumnKind.FloatList),
     ]);
+
+    /// <summary>One row a link or pair that an audit solved.</summary>
+    public static TableDefinition Audit(ColumnKind label) => new("audit",
+    [
+        new("source", label),
+        new("target", label),
+        new("resistance", ColumnKind.Double),
+        new("reference_lower", ColumnKind.Double),
+        new("reference_upper", ColumnKind.Double),
+        new("relative_error", ColumnKind.Double),
+    ]);
 }

@@ -19,7 +19,7 @@ public sealed class Estimate_requests
     {
         EstimateRequest request = Valid(Least);
         Assert.Equal(Want.Index | Want.Components | Want.Nodes | Want.Links, request.Plan.Want);
-        Assert.Equal(64, request.Plan.Probes);
+        Assert.Equal((null, null, 64), (request.Plan.Probes, request.Plan.TargetError, request.Plan.MostProbes));
         Assert.Equal(0.95, request.Plan.Confidence);
         Assert.Equal(1ul, request.Plan.Seed);
         Assert.Equal(WeightMeaning.Unsaid, request.Reading.Weights);
@@ -32,6 +32,14 @@ public sealed class Estimate_requests
     {
         Assert.Equal(Want.Links | Want.Pairs, Valid(Least with { Want = "links", Pairs = "p.csv" }).Plan.Want);
         Assert.True(Valid(Least with { Pairs = "p.csv" }).Plan.Want.HasFlag(Want.Pairs | Want.Index));
+    }
+
+    [Fact]
+    public void A_target_error_leaves_the_number_of_probes_open_and_the_route_automatic()
+    {
+        EstimatePlan plan = Valid(Least with { TargetError = "0.02", TimeBudget = "4h" }).Plan;
+        Assert.Equal((null, 0.02, 4096, Route.Auto), (plan.Probes, plan.TargetError, plan.MostProbes, plan.Route));
+        Assert.Equal(TimeSpan.FromHours(4), plan.TimeBudget);
     }
 
     [Fact]
@@ -54,7 +62,7 @@ public sealed class Estimate_requests
         Assert.Equal(WeightMeaning.Resistance, request.Reading.Weights);
         Assert.Equal(["from", "to", "km"], request.Reading.Columns!);
         Assert.Equal((4096, 0.9, ulong.MaxValue, 256),
-            (request.Plan.Probes, request.Plan.Confidence, request.Plan.Seed, request.Plan.Threads));
+            (request.Plan.Probes!.Value, request.Plan.Confidence, request.Plan.Seed, request.Plan.Threads));
         Assert.Equal("x", request.RunId);
         Assert.Equal("w.csv", request.NodeWeights);
     }

@@ -22,6 +22,9 @@ internal sealed class FakeEngine : IEstimateEngine
     /// <summary>Called after each batch of links, with the interruption.</summary>
     public Action<CancellationToken> AfterBatch { get; init; } = token => token.ThrowIfCancellationRequested();
 
+    /// <summary>What an audit found; null writes none.</summary>
+    public AuditFacts? Audit { get; init; }
+
     public Exception? FailAfterLinks { get; init; }
 
     public int Runs { get; private set; }
@@ -52,7 +55,7 @@ internal sealed class FakeEngine : IEstimateEngine
         observer.End();
         ITableSink sink = openSink(facts);
         ColumnKind label = TextLabels ? ColumnKind.Text : ColumnKind.Int64;
-        observer.Begin("solving", request.Plan.Probes, "probes");
+        observer.Begin("solving", request.Plan.MostProbes, "probes");
         Dictionary<string, long> rows = [];
         foreach ((Want want, TableDefinition table, int count) in new[]
         {
@@ -62,9 +65,10 @@ internal sealed class FakeEngine : IEstimateEngine
             (Want.Links, Tables.Links(label), Links),
             (Want.Pairs, Tables.Pairs(label), 3),
             (Want.Coordinates, Tables.Coordinates(label), Nodes),
+            (Want.None, Tables.Audit(label), 16),
         })
         {
-            if (!request.Plan.Want.HasFlag(want))
+            if (want == Want.None ? Audit is null : !request.Plan.Want.HasFlag(want))
                 continue;
             ITableWriter writer = sink.Open(table);
             for (int from = 0; from < count; from += BatchRows)
@@ -81,6 +85,22 @@ internal sealed class FakeEngine : IEstimateEngine
         observer.End();
         return new EstimateOutcome(facts, new CleaningFacts(1, 2), Summary(rows));
     }
+
+    /// <summary>An audit of 16 links and pairs, of which so many intervals held.</summary>
+    public static AuditFacts AuditOf(int held, string? warning) => new()
+    {
+        Compared = 16,
+        TooWide = 0,
+        MedianError = 0.01,
+        Percentile95Error = 0.03,
+        WorstError = 0.04,
+        Intervals = 16,
+        Held = held,
+        LinkIntervals = 8,
+        LinksHeld = held / 2,
+        FarOff = 0,
+        Warning = warning,
+    };
 
     /// <summary>Rows whose values follow from the row's number and the column's place.</summary>
     public RowBatch Batch(TableDefinition table, int from, int count) =>
@@ -171,6 +191,8 @@ internal sealed class FakeEngine : IEstimateEngine
             LargestEnergyError = 1e-5,
             Retried = 0,
         },
+        Probing = new ProbingFacts { Probes = 64, StoppedBy = "probes", TargetError = null, RelativeStandardError = null },
+        Audit = Audit,
         Phases = [],
         Rows = rows,
     };

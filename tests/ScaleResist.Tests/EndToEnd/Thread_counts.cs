@@ -17,8 +17,17 @@ public sealed class Thread_counts
         using Place place = new();
         string pairs = Path.Combine(place.Folder, "pairs.csv");
         File.WriteAllLines(pairs, Enumerable.Range(1, 500).Select(i => $"{i},{(i * 7919) % 22963}"));
-        SameBytes(TestData.Path("as-22july06.tsv"), "index,nodes,links,pairs", 4, "--pairs", pairs, "--probes", "40");
+        SameBytes(TestData.Path("as-22july06.tsv"), "index,nodes,links,pairs", 5, "--pairs", pairs, "--probes", "40");
     }
+
+    // Two threads solve panels side by side, some of them beyond the last one that is wanted.
+    [Theory]
+    [InlineData("0.06")]
+    [InlineData("0.05")]
+    [InlineData("0.04")]
+    public void One_and_two_threads_write_the_same_bytes_with_a_target(string target) =>
+        SameBytes(Command.Sample("links.csv"), "index,nodes,links,pairs", 5, "--route", "probe",
+            "--weights", "conductance", "--pairs", Command.Sample("pairs.csv"), "--target-error", target);
 
     private static void SameBytes(string network, string want, int files, params string[] more)
     {

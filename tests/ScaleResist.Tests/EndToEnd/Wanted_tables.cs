@@ -7,22 +7,22 @@ namespace ScaleResist.Tests.EndToEnd;
 
 public sealed class Wanted_tables
 {
-    // The sample has three components, and a right-hand side counts once in each.
+    // The sample has three components, and a probe counts once in each; the 16 links and pairs of an audit count once.
     [Theory]
     [InlineData("components", null, "finding bridges,writing components")]
-    [InlineData("links", 48, "finding bridges,choosing a route,preparing,solving,writing links")]
+    [InlineData("links", 64, "finding bridges,choosing a route,preparing,solving an audit,solving,writing links,writing audit")]
     [InlineData("nodes", 48, "finding bridges,choosing a route,preparing,solving,checking,writing nodes")]
     [InlineData("coordinates", 48, "finding bridges,choosing a route,preparing,solving,checking,writing coordinates")]
-    [InlineData("pairs", 48, "finding bridges,choosing a route,preparing,solving,checking,writing pairs")]
+    [InlineData("pairs", 64, "finding bridges,choosing a route,preparing,solving an audit,solving,checking,writing pairs,writing audit")]
     [InlineData("index", 48, "finding bridges,choosing a route,preparing,solving,checking,writing index")]
-    [InlineData("index,links", 48, "finding bridges,choosing a route,preparing,solving,writing links,writing index")]
+    [InlineData("index,links", 64, "finding bridges,choosing a route,preparing,solving an audit,solving,writing links,writing index,writing audit")]
     public void Only_the_wanted_tables_are_computed_and_written(string want, int? columns, string phases)
     {
         using Place place = new();
         string[] pairs = want == "pairs" ? ["--pairs", Command.Sample("pairs.csv")] : [];
         Command.Succeed(Command.Sample("links.csv"), place.Lake,
             ["--run-id", "a", "--weights", "conductance", "--probes", "16", "--want", want, .. pairs]);
-        string[] tables = want.Split(',');
+        string[] tables = [.. want.Split(','), .. want.Contains("links") || want == "pairs" ? ["audit"] : Array.Empty<string>()];
         Assert.Equal(tables.Order(), Directory.GetDirectories(place.Run("a")).Select(Path.GetFileName).Order());
         Assert.Equal(["_SUCCESS", "run.json"], Directory.GetFiles(place.Run("a")).Select(Path.GetFileName).Order());
         Assert.Equal(["run=a"], Directory.GetFileSystemEntries(place.Lake).Select(Path.GetFileName));

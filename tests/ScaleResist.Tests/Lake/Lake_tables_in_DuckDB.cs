@@ -22,7 +22,7 @@ public sealed class Lake_tables_in_DuckDB
 
     private static TableDefinition[] All(ColumnKind label) =>
         [Tables.Index, Tables.Components(label), Tables.Nodes(label), Tables.Links(label), Tables.Pairs(label),
-            Tables.Coordinates(label)];
+            Tables.Coordinates(label), Tables.Audit(label)];
 
     [Theory]
     [MemberData(nameof(Labels))]
@@ -31,7 +31,7 @@ public sealed class Lake_tables_in_DuckDB
         using Place place = new();
         string pairs = Path.Combine(place.Folder, "pairs.csv");
         File.WriteAllText(pairs, "1,2\n");
-        FakeEngine engine = new() { TextLabels = texts };
+        FakeEngine engine = new() { TextLabels = texts, Audit = FakeEngine.AuditOf(16, null) };
         foreach (string run in (string[])["a", "b-2"])
         {
             CliResult result = CliRun.InProcess(engine,
@@ -45,7 +45,7 @@ public sealed class Lake_tables_in_DuckDB
             Assert.Equal([.. table.Columns.Select(c => (c.Name, Types[c.Kind])), ("run", "VARCHAR")],
                 described.Select(d => ((string)d[0]!, (string)d[1]!)));
             List<object?[]> runs = DuckLake.Query($"SELECT run, count(*) FROM {source} GROUP BY run ORDER BY run");
-            long rows = table.Name switch { "index" => 2, "pairs" => 3, "links" => engine.Links, _ => engine.Nodes };
+            long rows = table.Name switch { "index" => 2, "pairs" => 3, "audit" => 16, "links" => engine.Links, _ => engine.Nodes };
             Assert.Equal([("a", rows), ("b-2", rows)], runs.Select(r => ((string)r[0]!, (long)r[1]!)));
         }
     }
@@ -182,7 +182,7 @@ public sealed class Lake_tables_in_DuckDB
         })];
         string[] files = [.. Directory.GetFiles(folders[0], "*", SearchOption.AllDirectories)
             .Select(f => Path.GetRelativePath(folders[0], f))];
-        Assert.Equal(60, files.Length);
+        Assert.Equal(70, files.Length);
         foreach (string file in files)
         {
             byte[] wanted = File.ReadAllBytes(Path.Combine(folders[0], file));

@@ -1,0 +1,152 @@
+// The audit: random links and pairs solved to certified enclosures before the first probe, and what the probes say of them held against those.
+// Invariant: an audit changes no other number. It is drawn by seed and blames the error bars only where chance would do so in one run of a
+// thousand: by the binomial test on links, whose errors are nearly independent; and by a single value six standard errors off, which counts
+// whatever the dependence (pairs share the slow modes of a network, so that all their intervals may miss together).
+
+using System.Globalization;
+using MathNet.Numerics.Distributions;
+using ScaleResist.Estimating;
+using ScaleResist.Graphs;
+using ScaleResist.Solving;
+
+namespace ScaleResist.Runs;
+
+/// <summary>References of random links and pairs, and the comparison.</summary>
+internal sealed class Audit
+{
+    /// <summary>Links and pairs of an audit, half of each.</summary>
+    public const int Few = 16;
+
+    // From so many probes on, twice as many are a small part of the run.
+    private const int Many = 32;
+    private const int ProbesForMany = 256;
+    private const double ReferenceWidth = 1e-6;
+    private const double WidestReference = 1e-3;
+    private const double ChanceOfBlame = 1e-3;
+    private const double SixStandardErrors = 1 - 2e-9; // as the confidence of an interval
+    private const uint Purpose = 1;
+
+    private readonly Network network;
+    private readonly List<(long Link, int U, int V)> links;
+    private readonly List<(int U, int V)> pairs;
+    private readonly CertifiedPairs references; // links, then pairs
+
+    private Audit(Blocks blocks, EstimatePlan plan, ExactPart? exact, bool linksAreProbed, LaplacianSolver solver, CancellationToken cancel)
+    {
+        network = blocks.Network;
+        int count = CountFor(plan);
+        RandomPairs random = new(blocks, exact, plan.Seed, Purpose);
+        links = linksAreProbed ? random.Links(count / 2) : [];
+        pairs = random.Pairs(count - links.Count);
+        references = CertifiedPairs.Solve(
+            network, solver, [.. links.Select(link => (link.U, link.V)), .. pairs], plan.Threads, cancel, ReferenceWidth);
+        Pairs = new PairSums(network, blocks.Bridges, pairs);
+    }
+
+    /// <summary>What the probes say of the pairs; takes every panel.</summary>
+    public PairSums Pairs { get; }
+
+    /// <summary>How many links and pairs the audit of a plan solves.</summary>
+    public static int CountFor(EstimatePlan plan) => plan.ForeseenProbes >= ProbesForMany ? Many : Few;
+
+    /// <summary>Draws and solves.</summary>
+    /// <param name="blocks">Of the network.</param>
+    /// <param name="plan">Seed, threads and probes.</param>
+    /// <param name="exact">What needs no probes, or null.</param>
+    /// <param name="linksAreProbed">Whether links are, so that they have numbers to be audited.</param>
+    /// <param name="solver">Of the network.</param>
+    /// <param name="cancel">Ends the solves.</param>
+    public static Audit Solve(
+        Blocks blocks, EstimatePlan plan, ExactPart? exact, bool linksAreProbed, LaplacianSolver solver, CancellationToken cancel) =>
+        new(blocks, plan, exact, linksAreProbed, solver, cancel);
+
+    /// <summary>Compares, and writes the rows that could be compared.</summary>
+    /// <param name="bridges">Of the network.</param>
+    /// <param name="sums">Of links; null where none is probed.</param>
+    /// <param name="confidence">Of the intervals.</param>
+    /// <param name="writer">Takes the rows.</param>
+    public AuditFacts Write(Bridges bridges, LinkSums? sums, double confidence, ITableWriter writer)
+    {
+        LinkResistances inside = new(network, bridges, sums, null, confidence), near = new(network, bridges, sums, null, SixStandardErrors);
+        List<Row> rows = [];
+        for (int i = 0; i < links.Count; i++)
+            Add(links[i].U, links[i].V, references[i], true, OfLink(inside, links[i].Link), OfLink(near, links[i].Link));
+        for (int i = 0; i < pairs.Count; i++)
+        {
+            Add(pairs[i].U, pairs[i].V, references[links.Count + i], false,
+                Pairs.Estimate(i, Quantiles.Normal(confidence)).Resistance, Pairs.Estimate(i, Quantiles.Normal(SixStandardErrors)).Resistance);
+        }
+        writer.Write(ToBatch(rows));
+        return Facts(rows, links.Count + pairs.Count - rows.Count, confidence);
+
+        void Add(int u, int v, Enclosure reference, bool isLink, Estimate estimate, Estimate wide)
+        {
+            if (reference.RelativeWidth <= WidestReference)
+                rows.Add(new Row(u, v, reference, isLink, estimate.Value, Holds(estimate, reference), Holds(wide, reference) == false));
+        }
+
+        static Estimate OfLink(LinkResistances resistances, long link)
+        {
+            Span<LinkResult> one = stackalloc LinkResult[1];
+            resistances.Fill(link, one);
+            return one[0].Resistance;
+        }
+
+        static bool? Holds(Estimate interval, Enclosure truth) => interval.Lower <= truth.Lower && truth.Upper <= interval.Upper ? true
+            : truth.Upper < interval.Lower || interval.Upper < truth.Lower ? false : null;
+    }
+
+    private readonly record struct Row(int U, int V, Enclosure Reference, bool IsLink, double Resistance, bool? Held, bool FarOff)
+    {
+        public double RelativeError => (Resistance / Reference.Middle) - 1;
+    }
+
+    private RowBatch ToBatch(List<Row> rows)
+    {
+        Array source = LabelColumns.New(network.Labels, rows.Count), target = LabelColumns.New(network.Labels, rows.Count);
+        for (int i = 0; i < rows.Count; i++)
+        {
+            bool ascending = network.Labels.Compare(rows[i].U, rows[i].V) < 0;
+            LabelColumns.Put(network.Labels, source, i, ascending ? rows[i].U : rows[i].V);
+            LabelColumns.Put(network.Labels, target, i, ascending ? rows[i].V : rows[i].U);
+        }
+        return new RowBatch(rows.Count,
+        [
+            source, target, Column(row => row.Resistance), Column(row => row.Reference.Lower), Column(row => row.Reference.Upper),
+            Column(row => row.RelativeError),
+        ]);
+
+        double[] Column(Func<Row, double> value) => [.. rows.Select(value)];
+    }
+
+    private static AuditFacts Facts(List<Row> rows, int tooWide, double confidence)
+    {
+        double[] errors = [.. rows.Select(row => Math.Abs(row.RelativeError)).Order()];
+        int intervals = rows.Count(row => row.Held is not null), held = rows.Count(row => row.Held == true);
+        int ofLinks = rows.Count(row => row.IsLink && row.Held is not null), linksHeld = rows.Count(row => row.IsLink && row.Held == true);
+        int farOff = rows.Count(row => row.FarOff);
+        return new AuditFacts
+        {
+            Compared = rows.Count,
+            TooWide = tooWide,
+            MedianError = Quantile(0.5),
+            Percentile95Error = Quantile(0.95),
+            WorstError = Quantile(1),
+            Intervals = intervals,
+            Held = held,
+            LinkIntervals = ofLinks,
+            LinksHeld = linksHeld,
+            FarOff = farOff,
+            Warning = ChanceOf(ofLinks - linksHeld, ofLinks, 1 - confidence) <= ChanceOfBlame
+                ? string.Create(CultureInfo.InvariantCulture,
+                    $"{linksHeld} of {ofLinks} audited links lie within their intervals, where {100 * confidence:0.####} % should")
+                : farOff > 0 ? $"{farOff} of {rows.Count} audited links and pairs lie more than six standard errors from the truth" : null,
+        };
+
+        double? Quantile(double share) => errors.Length == 0 ? null : errors[ProbeDial.PlaceOf(share, errors.Length)];
+    }
+
+    // That at least so many of n intervals miss, each with the given probability.
+    private static double ChanceOf(int missed, int n, double probability) =>
+        missed == 0 ? 1 : 1 - Binomial.CDF(probability, n, missed - 1);
+}

@@ -1,0 +1,179 @@
+// When the probes are enough: after every panel, in the order of their numbers, by the target error; after every batch by the clock.
+// Invariant: without a time budget the decision depends on the panels alone, so that threads do not move it.
+//
+// The target is met where, in every table wanted, 95 % of the probed rows have a relative standard error below it. Rows are sampled by stride. All
+// standard errors but that of the Kirchhoff index fall as 1/sqrt(K) and change little else from panel to panel; a table that was above the target by
+// some factor is looked at again when four fifths of the probes that this factor foretells are in.
+
+using System.Diagnostics;
+using ScaleResist.Estimating;
+using ScaleResist.Graphs;
+
+namespace ScaleResist.Runs;
+
+/// <summary>Follows the sums of a run and says when to stop.</summary>
+internal sealed class ProbeDial
+{
+    private const int FewestPanels = 2;
+    private const int MostRows = 8192;
+    private const int PairsForCoordinates = 256;
+    private const double Percentile = 0.95;
+    private const double ShareForetold = 0.8;
+    private const double LeastShareOfNodes = 0.01; // of a component whose index counts
+    private const double BatchMargin = 1.1;
+    private const uint Purpose = 2;
+
+    private readonly Network network;
+    private readonly EstimatePlan plan;
+    private readonly List<Measure> measures = [];
+    private readonly long begin = Stopwatch.GetTimestamp();
+    private double lastBatch;
+    private double lastEnd;
+    private int panels;
+
+    /// <summary>Prepares the samples.</summary>
+    /// <param name="blocks">Of the network.</param>
+    /// <param name="plan">What is wanted of the probes.</param>
+    /// <param name="sums">Where panels are added.</param>
+    /// <param name="exact">Blocks that need no probes, or null.</param>
+    /// <param name="pairs">The requested pairs.</param>
+    /// <param name="isExact">Whether a pair needs no probes; null: all do.</param>
+    public ProbeDial(
+        Blocks blocks, EstimatePlan plan, ProbedEstimates sums, ExactBlocks? exact, IReadOnlyList<(int U, int V)> pairs, Func<int, int, bool>? isExact)
+    {
+        network = blocks.Network;
+        this.plan = plan;
+        if (plan.TargetError is null)
+            return;
+        if (plan.Want.HasFlag(Want.Index))
+            measures.Add(new Measure(() => IndexErrors(sums.Nodes!), Share: 1) { Steady = false });
+        if (plan.Want.HasFlag(Want.Links) && sums.Links is not null)
+        {
+            List<(long Link, long Arc, int U)> sample = SampleLinks(blocks, exact);
+            measures.Add(new Measure(() => sample.Select(at => sums.Links.Estimate(at.Link, at.Arc, at.U, 0)), Percentile));
+        }
+        if (sums.Pairs is not null)
+        {
+            int[] sample = [.. Sample(pairs.Count).Select(i => (int)i).Where(i => isExact?.Invoke(pairs[i].U, pairs[i].V) != true)];
+            measures.Add(new Measure(
+                () => sample.Select(i => sums.Pairs.Estimate(i, 0)).Where(found => found.Method == "probe").Select(found => found.Resistance), Percentile));
+        }
+        if (plan.Want.HasFlag(Want.Coordinates))
+        {
+            List<(int U, int V)> sample = new RandomPairs(blocks, null, plan.Seed, Purpose).Pairs(PairsForCoordinates);
+            ForCoordinates = new PairSums(network, blocks.Bridges, sample);
+            measures.Add(new Measure(() => Enumerable.Range(0, sample.Count).Select(i => ForCoordinates.Estimate(i, 0).Resistance), Percentile));
+        }
+        if (plan.Want.HasFlag(Want.Nodes)) // the dearest comes last
+            measures.Add(new Measure(() => NodeErrors(sums.Nodes!), Percentile));
+    }
+
+    /// <summary>Random pairs by which coordinates are judged; take every panel. Null where nobody asks.</summary>
+    public PairSums? ForCoordinates { get; }
+
+    /// <summary>Why no more panels are wanted; null while they are.</summary>
+    public StoppedBy? Stopped { get; private set; }
+
+    /// <summary>The place of a quantile in n sorted values: at least that share lie there or below.</summary>
+    public static int PlaceOf(double share, int n) => Math.Clamp((int)Math.Ceiling(share * n) - 1, 0, n - 1);
+
+    /// <summary>The largest of the percentiles that the target is compared with, of all panels so far; null without a target.</summary>
+    public double? Error() => plan.TargetError is null ? null : measures.Select(measure => measure.Of()).Append(0).Max();
+
+    /// <summary>Decides after a panel, by probes and target.</summary>
+    public void AfterPanel()
+    {
+        panels++;
+        if (plan.TargetError is double target && panels >= FewestPanels && IsMet(target))
+            Stopped = StoppedBy.Target;
+        else if (panels == ProbePanel.CountFor(plan.MostProbes))
+            Stopped = StoppedBy.Probes;
+    }
+
+    /// <summary>Decides after a batch of panels, by the clock, unless the number of probes was asked for.</summary>
+    /// <param name="next">Probes after another batch.</param>
+    /// <exception cref="BudgetException">Not even the first batch leaves time to write.</exception>
+    public void AfterBatch(int next)
+    {
+        if (plan.TimeBudget is not TimeSpan budget || plan.Probes is not null || Stopped is not null)
+            return;
+        bool first = lastEnd == 0;
+        double now = Stopwatch.GetElapsedTime(begin).TotalSeconds, batch = now - lastEnd;
+        int probes = panels * ProbePanel.Width;
+        if (first && now + RunCost.SecondsAfter(network, plan, probes) > budget.TotalSeconds)
+            throw RunCost.TooLong(probes, now + RunCost.SecondsAfter(network, plan, probes), budget, "use a larger budget");
+        double foreseen = now + (BatchMargin * Math.Max(batch, lastBatch)) + RunCost.SecondsAfter(network, plan, next);
+        if (foreseen > budget.TotalSeconds)
+            Stopped = StoppedBy.Time;
+        (lastEnd, lastBatch) = (now, first ? 0 : batch); // the first one compiles
+    }
+
+    private bool IsMet(double target)
+    {
+        if (measures.Exists(measure => panels < measure.NotBefore))
+            return false;
+        foreach (Measure measure in measures)
+        {
+            double error = measure.Of();
+            if (error < target)
+                continue;
+            if (measure.Steady)
+                measure.NotBefore = (int)Math.Min(int.MaxValue, ShareForetold * panels * (error / target) * (error / target));
+            return false;
+        }
+        return true;
+    }
+
+    private IEnumerable<Estimate> IndexErrors(NodeSums nodes)
+    {
+        for (int c = 0; c < network.Components.Count && (c == 0 || network.Components[c].Nodes >= LeastShareOfNodes * network.NodeCount); c++)
+        {
+            if (!nodes.IsExact(c))
+                yield return nodes.KirchhoffIndex(c, 0.5);
+        }
+    }
+
+    private IEnumerable<Estimate> NodeErrors(NodeSums nodes)
+    {
+        Estimate[] diagonals = nodes.Diagonals(0);
+        bool[] exact = [.. Enumerable.Range(0, network.Components.Count).Select(nodes.IsExact)];
+        int[] componentOf = network.ComponentOfNodes();
+        return Sample(network.NodeCount).Where(u => !exact[componentOf[u]]).Select(u => diagonals[u]);
+    }
+
+    private List<(long Link, long Arc, int U)> SampleLinks(Blocks blocks, ExactBlocks? exact)
+    {
+        List<(long, long, int)> sample = [];
+        foreach (long link in Sample(network.LinkCount))
+        {
+            int u = network.NodeOfLink(link);
+            long arc = network.FirstLaterArc(u) + (link - network.LinkStart[u]);
+            if (!blocks.Bridges.Contains(link) && exact?.Has(blocks.BlockOf(u, network.Neighbours[arc])) != true)
+                sample.Add((link, arc, u));
+        }
+        return sample;
+    }
+
+    private static IEnumerable<long> Sample(long count)
+    {
+        long rows = Math.Min(count, MostRows);
+        for (long i = 0; i < rows; i++)
+            yield return i * count / rows;
+    }
+
+    // A quantile of relative standard errors over some rows; 0 where there is none.
+    private sealed record Measure(Func<IEnumerable<Estimate>> Rows, double Share)
+    {
+        // Whether it falls as 1/sqrt(K), so that a value foretells when to look again; and when.
+        public bool Steady { get; init; } = true;
+
+        public int NotBefore { get; set; }
+
+        public double Of()
+        {
+            double[] errors = [.. Rows().Select(row => row.StandardError == 0 ? 0 : row.StandardError / row.Value)];
+            Array.Sort(errors);
+            return errors.Length == 0 ? 0 : errors[PlaceOf(Share, errors.Length)];
+        }
+    }
+}
