@@ -48,7 +48,7 @@ internal sealed unsafe class Deflation
     public const int Columns = ProbePanel.Width;
 
     /// <summary>The least block that is deflated.</summary>
-    public const int LeastNodes = 256;
+    public const int LeastNodes = 64;
 
     private const int MembersPerPiece = 1 << 12;
     private const int Square = Columns * Columns;
@@ -139,6 +139,12 @@ internal sealed unsafe class Deflation
                 }
             }
         });
+        double[][] ofBlocks = [.. chosen.Select(_ => new double[indices.Count])];
+        for (int i = 0; i < pieces.Count; i++)
+        {
+            for (int k = 0; k < indices.Count; k++)
+                ofBlocks[pieces[i].Slot][k] += sums[i][k];
+        }
         double* headRow = stackalloc double[Columns];
         float* zero = stackalloc float[Columns];
         new Span<float>(zero, Columns).Clear();
@@ -150,10 +156,7 @@ internal sealed unsafe class Deflation
             {
                 (double share, double part) = Split(slot, zero, centres[k][slot], headRow);
                 indices[k].OfHeads[block] = (float)share;
-                double sum = indices[k].Hanging.OfHead(block) * part;
-                for (int i = 0; i < pieces.Count; i++)
-                    sum += pieces[i].Slot == slot ? sums[i][k] : 0;
-                indices[k].Parts[block] = sum;
+                indices[k].Parts[block] = ofBlocks[slot][k] + (indices[k].Hanging.OfHead(block) * part);
                 if (k == 0)
                     headParts[slot] = part;
             }

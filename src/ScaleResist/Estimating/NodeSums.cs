@@ -47,7 +47,7 @@ internal struct RunningMoments
 public sealed unsafe class NodeSums
 {
     private const int MembersPerChunk = 1 << 12;
-    private const int MostDeflationSteps = 2; // a third gained nothing that mattered on grids, roads and the sample
+    private const int MostDeflationSteps = 2; // panels of solves
     private const double WorthDeflating = 0.003; // relative standard error foreseen of an index, above which it is
     private readonly Blocks blocks;
     private readonly Network network;
