@@ -63,7 +63,8 @@ internal static class SummaryText
             yield return Entry("solver", $"{Numbers.Count(solver.Eliminated)} nodes eliminated, {solver.Preconditioner}, "
                 + $"{Numbers.Many(solver.Columns, "right-hand side")}, at most {Numbers.Many(solver.MostIterations, "iteration")}, "
                 + $"error {Numbers.Value(solver.LargestEnergyError, 2)}, residual {Numbers.Value(solver.LargestResidual, 2)}"
-                + (solver.Retried > 0 ? $", {Numbers.Count(solver.Retried)} again in doubles" : ""));
+                + (solver.Retried > 0 ? $", {Numbers.Count(solver.Retried)} again in doubles" : "")
+                + (solver.DeflationSolves > 0 ? $"; {Numbers.Count(solver.DeflationSolves)} more, rough, to deflate the index and the nodes" : ""));
         }
         if (record.Probing is ProbingFacts probing)
             yield return Entry("probes", Probes(probing));

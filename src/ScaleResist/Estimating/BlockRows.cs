@@ -58,8 +58,8 @@ internal sealed class BlockRows
             ProbeKernels.AddLink(row, (float)Math.Sqrt(c), panel.Signs(node, to), panel.Lanes);
     }
 
-    // The links of a node in one of its blocks. A hub may head many small blocks: those look it up from their side.
-    private void Find(int block, int node, List<(int To, double C)> links)
+    /// <summary>The links of a node in one of its blocks. A hub may head many small blocks: those look it up from their side.</summary>
+    public void Find(int block, int node, List<(int To, double C)> links)
     {
         links.Clear();
         Network network = blocks.Network;

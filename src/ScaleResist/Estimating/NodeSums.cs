@@ -9,9 +9,12 @@
 // On a bridge x = 0: its part s (W - s) / c needs no probe, and the noise of weak bridges stays out of every sample.
 // With w = 1 the diagonal of L+ is l_u = sum over blocks of E y^2 at the node of the block nearest to u, for n l_u + Kf/n is the sum
 // of all resistances from u.
+// Where a few smooth modes carry most of the spread, they are taken out of large blocks and added exactly (Deflation): y gives way to
+// y - X a, k_u to k_u less its shift, and the part of X is known.
 
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
+using ScaleResist.Solving;
 
 namespace ScaleResist.Estimating;
 
@@ -26,7 +29,10 @@ internal struct RunningMoments
     public int Count { get; private set; }
 
     /// <summary>Standard error of the mean.</summary>
-    public readonly double StandardError => Math.Sqrt(spread / Count / (Count - 1));
+    public readonly double StandardError => StandardErrorOf(Count);
+
+    /// <summary>Standard error that the mean of so many samples is foreseen to have.</summary>
+    public readonly double StandardErrorOf(int samples) => Math.Sqrt(spread / samples / (Count - 1));
 
     public void Add(double sample)
     {
@@ -41,6 +47,8 @@ internal struct RunningMoments
 public sealed unsafe class NodeSums
 {
     private const int MembersPerChunk = 1 << 12;
+    private const int MostDeflationSteps = 2; // panels of solves
+    private const double WorthDeflating = 0.003; // relative standard error foreseen of an index, above which it is
     private readonly Blocks blocks;
     private readonly Network network;
     private readonly ExactBlocks? exact;
@@ -52,6 +60,7 @@ public sealed unsafe class NodeSums
     private readonly double[] headSquares; // of heads, by block
     private readonly List<Chunk>[] chunks; // of the components that several threads share; of the others together
     private readonly int sharedComponents;
+    private Deflation? deflation;
 
     /// <summary>Empty sums.</summary>
     /// <param name="blocks">Of the network.</param>
@@ -66,6 +75,8 @@ public sealed unsafe class NodeSums
         plain = NewSamples(HangingWeights.Of(blocks, null), known => known.Plain);
         byStrength = NewSamples(HangingWeights.Of(blocks, network.Strengths), known => known.ByStrength);
         byWeight = weights is null ? null : NewSamples(HangingWeights.Of(blocks, weights), known => known.ByWeight);
+        foreach (Samples samples in Indices())
+            FillKnown(samples);
         squares = new double[network.NodeCount];
         headSquares = new double[blocks.Count];
         while (sharedComponents < network.Components.Count && network.Components[sharedComponents].Nodes > MembersPerChunk)
@@ -78,6 +89,57 @@ public sealed unsafe class NodeSums
 
     /// <summary>Probes added so far.</summary>
     public int Probes { get; private set; }
+
+    /// <summary>Right-hand sides solved to deflate; 0 where nothing was.</summary>
+    public int DeflationSolves => (deflation?.Steps ?? 0) * Deflation.Columns;
+
+    /// <summary>
+    /// Takes a few smooth modes out of the large blocks of those components whose index the probes would leave with a relative standard
+    /// error above 0.3 %, judged by the first panel: one panel of solves, a second where the first was not enough. Estimates stay unbiased
+    /// for any directions; the panel's spread decides only whether the solves are spent.
+    /// </summary>
+    /// <param name="pilot">The first panel, solved; it is not added.</param>
+    /// <param name="probes">K, the probes of the whole run.</param>
+    /// <param name="solver">Prepared for the network.</param>
+    /// <param name="workspace">Of the solver.</param>
+    /// <param name="seed">Of the directions' signs.</param>
+    /// <param name="threads">Threads for all but the solves.</param>
+    /// <param name="cancel">Ends the solves.</param>
+    public void Deflate(
+        ProbePanel pilot, int probes, LaplacianSolver solver, SolverWorkspace<float> workspace, ulong seed, int threads, CancellationToken cancel)
+    {
+        if (Probes > 0)
+            throw new InvalidOperationException("deflation comes before the first panel");
+        int steps = Math.Min(MostDeflationSteps, probes / Deflation.Columns);
+        int[] large = [.. Enumerable.Range(0, blocks.Count).Where(b => blocks.NodesOf(b) >= Deflation.LeastNodes && IsProbed(b))];
+        if (steps == 0 || large.Length == 0)
+            return;
+        int[] chosen = Wide(large);
+        for (int step = 0; step < steps && chosen.Length > 0; step++)
+        {
+            deflation ??= new Deflation(blocks, rows, plain.Hanging, chosen);
+            deflation.Step(solver, workspace, seed, threads, cancel);
+            DeflatedShares[] shares = [.. Indices().Select(samples => samples.Deflate(network.NodeCount, blocks.Count))];
+            deflation.Fill(shares, threads);
+            foreach (Samples samples in Indices())
+                FillKnown(samples);
+            if (step + 1 < steps)
+                chosen = Wide(chosen);
+        }
+
+        // The blocks of components that this many probes would leave too uncertain.
+        int[] Wide(int[] among)
+        {
+            Add(pilot, threads);
+            int[] wide = [.. among.Where(b => plain.RelativeError(blocks.ComponentOf(b), probes) > WorthDeflating)];
+            foreach (Samples samples in Indices())
+                samples.Clear();
+            Array.Clear(squares);
+            Array.Clear(headSquares);
+            Probes = 0;
+            return wide;
+        }
+    }
 
     /// <summary>Adds a solved panel. Panels are added in order of their numbers.</summary>
     public void Add(ProbePanel panel, int threads)
@@ -148,7 +210,7 @@ public sealed unsafe class NodeSums
     {
         int n = network.NodeCount;
         double[] ofMembers = new double[n], ofHeads = new double[blocks.Count];
-        double[] known = Around((share, strength, _) => share * share / strength, value => value);
+        double[] known = Around((share, strength, _) => share * share / strength, value => value, deflated: true);
         double count = Math.Max(1, Probes); // without probes all sums are 0
         double[] probed = Around((_, _, sum) => sum / count, _ => 0);
         double[] variance = Around((_, _, sum) => sum / count * (sum / count) * 2 / count, _ => 0);
@@ -163,7 +225,7 @@ public sealed unsafe class NodeSums
         return diagonals;
 
         // The part of a block from k, d and the sum of x^2, or from the exact value.
-        double[] Around(Func<double, double, double, double> part, Func<double, double> ofExact)
+        double[] Around(Func<double, double, double, double> part, Func<double, double> ofExact, bool deflated = false)
         {
             for (int c = 0; c < network.Components.Count; c++)
             {
@@ -174,6 +236,11 @@ public sealed unsafe class NodeSums
                     ofHeads[b] = known ? ofExact(exact!.OfHead(b)) : part(plain.HeadShare(b, c), rows.OfHead(b), headSquares[b]);
                     foreach (int v in blocks.Members(b))
                         ofMembers[v] = known ? ofExact(exact!.OfMember(v)) : part(plain.MemberShare(v, c), rows.OfMember(v), squares[v]);
+                    if (!deflated || deflation?.Has(b) != true)
+                        continue;
+                    ofHeads[b] += deflation.OfHead(b);
+                    foreach (int v in blocks.Members(b))
+                        ofMembers[v] += deflation.OfMember(v);
                 }
             }
             BlockTree sums = BlockTree.Of(blocks, null, ofMembers, ofHeads);
@@ -183,27 +250,31 @@ public sealed unsafe class NodeSums
 
     private bool IsProbed(int block) => !blocks.IsBridge(block) && exact?.Has(block) != true;
 
-    private Samples NewSamples(HangingWeights hanging, Func<(double Plain, double ByStrength, double ByWeight), double> choose)
+    private IEnumerable<Samples> Indices() => byWeight is null ? [plain, byStrength] : [plain, byStrength, byWeight];
+
+    private Samples NewSamples(HangingWeights hanging, Func<(double Plain, double ByStrength, double ByWeight), double> choose) =>
+        new(hanging, new double[network.Components.Count], choose);
+
+    private void FillKnown(Samples samples)
     {
-        double[] known = new double[network.Components.Count];
-        Samples samples = new(hanging, known);
-        for (int c = 0; c < known.Length; c++)
+        HangingWeights hanging = samples.Hanging;
+        for (int c = 0; c < samples.Known.Length; c++)
         {
             (int first, int end) = blocks.OfComponent(c);
+            samples.Known[c] = 0;
             for (int b = first; b < end; b++)
             {
                 if (exact?.Has(b) == true)
                 {
-                    known[c] += choose(exact.Index(b));
+                    samples.Known[c] += samples.Choose(exact.Index(b));
                     continue;
                 }
                 double sum = hanging.OfHead(b) * Square(samples.HeadShare(b, c)) / rows.OfHead(b);
                 foreach (int v in blocks.Members(b))
                     sum += hanging.OfMember(v) * Square(samples.MemberShare(v, c)) / rows.OfMember(v);
-                known[c] += hanging.Total(c) * sum;
+                samples.Known[c] += hanging.Total(c) * (sum + samples.Deflated(b));
             }
         }
-        return samples;
 
         static double Square(double k) => k * k;
     }
@@ -249,14 +320,29 @@ public sealed unsafe class NodeSums
         int block = parts[first].First, pieces = parts[first].Pieces;
         if (!IsProbed(block))
             return;
+        float[]? coefficients = null;
+        if (deflation?.Has(block) == true)
+        {
+            double[][] products = new double[pieces][];
+            Parallel.For(0, pieces, options, i =>
+                deflation.AddProducts(panel, block, parts[first + i].From, parts[first + i].To, products[i] = new double[16 * 16]));
+            for (int i = 1; i < pieces; i++)
+            {
+                for (int j = 0; j < products[0].Length; j++)
+                    products[0][j] += products[i][j];
+            }
+            coefficients = deflation.Coefficients(block, products[0]);
+        }
         NodeSquareSums[] offsets = new NodeSquareSums[pieces];
-        Parallel.For(0, pieces, options, i => AddOffsets(panel, block, parts[first + i].From, parts[first + i].To, ref offsets[i]));
+        Parallel.For(0, pieces, options, i =>
+            AddOffsets(panel, block, parts[first + i].From, parts[first + i].To, coefficients, new Scratch(), ref offsets[i]));
         NodeSquareSums offset = default;
         foreach (ref readonly NodeSquareSums piece in offsets.AsSpan())
             offset.Add(piece);
         float[] centres = Centres(panel, component, block, offset, new float[3 * ProbePanel.Width]);
         Parallel.For(0, pieces, options, i =>
-            AddSquares(panel, component, block, parts[first + i].From, parts[first + i].To, centres, new Scratch(), ref sums[first + i]));
+            AddSquares(
+                panel, component, block, parts[first + i].From, parts[first + i].To, coefficients, centres, new Scratch(), ref sums[first + i]));
     }
 
     private void AddBlocks(ProbePanel panel, int component, int first, int end, Scratch scratch, ref NodeSquareSums sums)
@@ -266,24 +352,44 @@ public sealed unsafe class NodeSums
             if (!IsProbed(b))
                 continue;
             int count = blocks.NodesOf(b) - 1;
+            float[]? coefficients = null;
+            if (deflation?.Has(b) == true)
+            {
+                double[] products = new double[16 * 16];
+                deflation.AddProducts(panel, b, 0, count, products);
+                coefficients = deflation.Coefficients(b, products);
+            }
             NodeSquareSums offset = default;
-            AddOffsets(panel, b, 0, count, ref offset);
-            AddSquares(panel, component, b, 0, count, Centres(panel, component, b, offset, scratch.Centres), scratch, ref sums);
+            AddOffsets(panel, b, 0, count, coefficients, scratch, ref offset);
+            float[] centres = Centres(panel, component, b, offset, scratch.Centres);
+            AddSquares(panel, component, b, 0, count, coefficients, centres, scratch, ref sums);
         }
     }
 
-    // Sums of w (z - z of the head).
-    private void AddOffsets(ProbePanel panel, int block, int from, int to, ref NodeSquareSums sums)
+    // Sums of w (z - z of the head), z less its deflated part, which is 0 at the head.
+    private void AddOffsets(
+        ProbePanel panel, int block, int from, int to, float[]? coefficients, Scratch scratch, ref NodeSquareSums sums)
     {
         float* origin = Row(panel.Z, blocks.Head(block));
-        foreach (int v in blocks.Members(block)[from..to])
+        fixed (float* reduced = scratch.Reduced)
         {
-            float* z = Row(panel.Z, v);
-            NodeKernels.AddOffsets(z, origin, plain.Hanging.OfMember(v), ref sums.Plain);
-            NodeKernels.AddOffsets(z, origin, byStrength.Hanging.OfMember(v), ref sums.ByStrength);
-            if (byWeight is not null)
-                NodeKernels.AddOffsets(z, origin, byWeight.Hanging.OfMember(v), ref sums.ByWeight);
+            foreach (int v in blocks.Members(block)[from..to])
+            {
+                float* z = RowOfZ(panel, v, coefficients, reduced);
+                NodeKernels.AddOffsets(z, origin, plain.Hanging.OfMember(v), ref sums.Plain);
+                NodeKernels.AddOffsets(z, origin, byStrength.Hanging.OfMember(v), ref sums.ByStrength);
+                if (byWeight is not null)
+                    NodeKernels.AddOffsets(z, origin, byWeight.Hanging.OfMember(v), ref sums.ByWeight);
+            }
         }
+    }
+
+    private float* RowOfZ(ProbePanel panel, int member, float[]? coefficients, float* reduced)
+    {
+        if (coefficients is null)
+            return Row(panel.Z, member);
+        deflation!.Reduce(panel, member, coefficients, reduced);
+        return reduced;
     }
 
     // sum w_B z / W, for each of the weights.
@@ -302,9 +408,9 @@ public sealed unsafe class NodeSums
     }
 
     private void AddSquares(
-        ProbePanel panel, int component, int block, int from, int to, float[] centres, Scratch scratch, ref NodeSquareSums sums)
+        ProbePanel panel, int component, int block, int from, int to, float[]? coefficients, float[] centres, Scratch scratch, ref NodeSquareSums sums)
     {
-        fixed (float* centre = centres, own = scratch.Row)
+        fixed (float* centre = centres, own = scratch.Row, reduced = scratch.Reduced)
         {
             if (from == 0)
             {
@@ -323,7 +429,7 @@ public sealed unsafe class NodeSums
             }
             foreach (int u in blocks.Members(block)[from..to])
             {
-                float* z = Row(panel.Z, u), b = RowOfB(u, own);
+                float* z = RowOfZ(panel, u, coefficients, reduced), b = RowOfB(u, own);
                 double d = rows.OfMember(u);
                 squares[u] += NodeKernels.AddSquares(
                     z, centre, b, (float)(plain.MemberShare(u, component) / d), plain.Hanging.OfMember(u), ref sums.Plain);
@@ -365,22 +471,44 @@ public sealed unsafe class NodeSums
     {
         public readonly float[] Centres = new float[3 * ProbePanel.Width];
         public readonly float[] Row = new float[ProbePanel.Width];
+        public readonly float[] Reduced = new float[ProbePanel.Width];
         public readonly List<(int To, double C)> Links = [];
     }
 
     // One index: its weights, and by component its samples W sum w x^2 beside what is known.
-    private sealed class Samples(HangingWeights hanging, double[] known)
+    private sealed class Samples(
+        HangingWeights hanging, double[] known, Func<(double Plain, double ByStrength, double ByWeight), double> choose)
     {
         private readonly RunningMoments[] moments = new RunningMoments[known.Length];
+        private DeflatedShares? deflated;
 
         public HangingWeights Hanging => hanging;
 
-        // k = 1 - w_B / W
-        public double MemberShare(int node, int component) => Share(hanging.OfMember(node), hanging.Total(component));
+        public double[] Known => known;
 
-        public double HeadShare(int block, int component) => Share(hanging.OfHead(block), hanging.Total(component));
+        public Func<(double Plain, double ByStrength, double ByWeight), double> Choose => choose;
+
+        // k = 1 - w_B / W, less what a deflation takes
+        public double MemberShare(int node, int component) =>
+            Share(hanging.OfMember(node), hanging.Total(component)) - (deflated?.OfMembers[node] ?? 0);
+
+        public double HeadShare(int block, int component) =>
+            Share(hanging.OfHead(block), hanging.Total(component)) - (deflated?.OfHeads[block] ?? 0);
+
+        public double Deflated(int block) => deflated is not null && deflated.Parts.TryGetValue(block, out double part) ? part : 0;
+
+        public DeflatedShares Deflate(int nodes, int blocks) => deflated ??= new DeflatedShares(hanging, nodes, blocks);
+
+        public void Clear() => Array.Clear(moments);
 
         public void Add(int component, double sum) => moments[component].Add(hanging.Total(component) * sum);
+
+        // Standard error over value, foreseen for so many probes.
+        public double RelativeError(int component, int probes)
+        {
+            double error = moments[component].StandardErrorOf(probes);
+            return error > 0 ? error / (known[component] + moments[component].Mean) : 0;
+        }
 
         public Estimate Estimate(int component, double confidence)
         {

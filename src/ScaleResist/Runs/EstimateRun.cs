@@ -145,6 +145,7 @@ public static class EstimateRun
                 LargestResidual = solver.Statistics.LargestResidual,
                 LargestEnergyError = solver.Statistics.LargestEnergyError,
                 Retried = solver.Statistics.Retried,
+                DeflationSolves = probed?.Nodes?.DeflationSolves ?? 0,
             },
             Probing = probed?.Facts,
             Audit = audited,

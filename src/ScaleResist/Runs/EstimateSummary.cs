@@ -95,6 +95,9 @@ public sealed record SolverFacts
 
     /// <summary>Columns solved again in doubles because floats did not reach the tolerance.</summary>
     public required long Retried { get; init; }
+
+    /// <summary>Further right-hand sides, solved roughly, to deflate the Kirchhoff index and the diagonals; 0 where that was not worth it.</summary>
+    public int DeflationSolves { get; init; }
 }
 
 /// <summary>What ended the probes.</summary>

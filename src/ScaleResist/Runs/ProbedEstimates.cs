@@ -74,6 +74,8 @@ internal sealed class ProbedEstimates
                         slot.Panel.B, slot.Panel.Z, slot.Panel.Probes, plan.ModeErrorOf(number), slot.Workspace, cancel));
                 }
                 Together(work, plan.Threads);
+                if (first == 0)
+                    begin += sums.Deflate(slots[0], plan, solver, cancel);
                 if (sums.Coordinates is not null)
                     RunCost.CheckMemory(network, plan, added + (count * ProbePanel.Width));
                 for (int i = 0; i < count && dial.Stopped is null; i++)
@@ -103,6 +105,14 @@ internal sealed class ProbedEstimates
                 slot?.Dispose();
         }
         return sums;
+    }
+
+    // Once for all panels: the ticks it took are not a batch's.
+    private long Deflate(Slot slot, EstimatePlan plan, LaplacianSolver solver, CancellationToken cancel)
+    {
+        long begin = Stopwatch.GetTimestamp();
+        Nodes?.Deflate(slot.Panel, plan.ForeseenProbes, solver, slot.Workspace, plan.Seed, plan.Threads, cancel);
+        return Stopwatch.GetTimestamp() - begin;
     }
 
     private void Add(ProbePanel panel, int threads)

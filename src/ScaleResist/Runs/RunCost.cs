@@ -17,6 +17,7 @@ internal static class RunCost
     private const double Margin = 1.2;
     private const double BaseBytes = 200e6;
     private const int PanelsPerThread = 6; // right-hand sides, solutions, and those of an iteration
+    private const int DeflationPanels = 2; // directions, and their right-hand sides
 
     /// <summary>Seconds that writing the wanted tables takes.</summary>
     public static double WritingSeconds(Network network, EstimatePlan plan)
@@ -40,7 +41,8 @@ internal static class RunCost
     public static long ProbedBytes(Network network, EstimatePlan plan, int probes)
     {
         int slots = Math.Min(plan.Threads, ProbePanel.CountFor(plan.MostProbes));
-        double panels = (double)slots * PanelsPerThread * network.NodeCount * Panel<float>.Width * sizeof(float);
+        int deflation = (plan.Want & (Want.Index | Want.Nodes)) != 0 ? DeflationPanels : 0;
+        double panels = (double)((slots * PanelsPerThread) + deflation) * network.NodeCount * Panel<float>.Width * sizeof(float);
         double coordinates = plan.Want.HasFlag(Want.Coordinates) ? (double)network.NodeCount * probes * sizeof(float) : 0;
         return (long)(BaseBytes + NetworkBytes(network) + (16.0 * network.LinkCount) + panels + coordinates);
     }

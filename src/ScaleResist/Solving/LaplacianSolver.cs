@@ -96,7 +96,7 @@ public sealed partial class LaplacianSolver
         Panel<float> b, Panel<float> z, int columns, double modeError, SolverWorkspace<float> workspace, CancellationToken cancel)
     {
         for (int c = 0; c < solvers.Length; c++)
-            SolveInFloats(c, b, z, columns, modeError / Math.Sqrt(network.Components[c].Nodes - 1), workspace, cancel);
+            SolveInFloats(c, b, z, columns, modeError / Math.Sqrt(network.Components[c].Nodes - 1), workspace, Statistics, cancel);
         ClearSingles(z);
     }
 
@@ -108,10 +108,15 @@ public sealed partial class LaplacianSolver
     /// <param name="workspace">From <see cref="NewWorkspace"/>.</param>
     /// <param name="cancel">Checked once an iteration.</param>
     /// <exception cref="SolveException">A column did not reach the tolerance, in doubles either.</exception>
-    public void Solve(Panel<float> b, Panel<float> z, int columns, double tolerance, SolverWorkspace<float> workspace, CancellationToken cancel)
+    public void Solve(Panel<float> b, Panel<float> z, int columns, double tolerance, SolverWorkspace<float> workspace, CancellationToken cancel) =>
+        Solve(b, z, columns, tolerance, workspace, Statistics, cancel);
+
+    /// <summary>The same, with counts of its own: for rough solves that are no part of any estimate's error.</summary>
+    internal void Solve(
+        Panel<float> b, Panel<float> z, int columns, double tolerance, SolverWorkspace<float> workspace, SolveStatistics statistics, CancellationToken cancel)
     {
         for (int c = 0; c < solvers.Length; c++)
-            SolveInFloats(c, b, z, columns, tolerance, workspace, cancel);
+            SolveInFloats(c, b, z, columns, tolerance, workspace, statistics, cancel);
         ClearSingles(z);
     }
 
@@ -120,12 +125,13 @@ public sealed partial class LaplacianSolver
     public void Solve(Panel<double> b, Panel<double> z, int columns, double tolerance, SolverWorkspace<double> workspace, CancellationToken cancel)
     {
         for (int c = 0; c < solvers.Length; c++)
-            SolveInDoubles(c, b, z, columns, tolerance, workspace, retried: 0, cancel);
+            SolveInDoubles(c, b, z, columns, tolerance, workspace, Statistics, retried: 0, cancel);
         ClearSingles(z);
     }
 
     private void SolveInFloats(
-        int number, Panel<float> b, Panel<float> z, int columns, double tolerance, SolverWorkspace<float> workspace, CancellationToken cancel)
+        int number, Panel<float> b, Panel<float> z, int columns, double tolerance, SolverWorkspace<float> workspace, SolveStatistics statistics,
+        CancellationToken cancel)
     {
         solvers[number].Solve(b, z, tolerance, workspace, cancel);
         SolveReport report = workspace.Report;
@@ -133,12 +139,12 @@ public sealed partial class LaplacianSolver
         for (int column = 0; column < columns; column++)
         {
             if (report.EnergyErrors[column] <= tolerance)
-                Statistics.Add(1, 0, report.Iterations, report.Residuals[column], report.EnergyErrors[column]);
+                statistics.Add(1, 0, report.Iterations, report.Residuals[column], report.EnergyErrors[column]);
             else
                 failed.Add(column);
         }
         if (failed.Count > 0)
-            SolveAgainInDoubles(number, b, z, failed, tolerance, cancel);
+            SolveAgainInDoubles(number, b, z, failed, tolerance, statistics, cancel);
     }
 
     private void ClearSingles<T>(Panel<T> z)
@@ -149,7 +155,7 @@ public sealed partial class LaplacianSolver
     }
 
     private void SolveAgainInDoubles(
-        int number, Panel<float> b, Panel<float> z, List<int> failed, double tolerance, CancellationToken cancel)
+        int number, Panel<float> b, Panel<float> z, List<int> failed, double tolerance, SolveStatistics statistics, CancellationToken cancel)
     {
         Component component = network.Components[number];
         using Panel<double> b2 = new(network.NodeCount), z2 = new(network.NodeCount);
@@ -166,7 +172,7 @@ public sealed partial class LaplacianSolver
                     to[j] = b.Row(u)[failed[first + j]];
             }
             PanelKernels.Centre(b2, component.Start, component.End);
-            SolveInDoubles(number, b2, z2, count, tolerance, workspace, count, cancel);
+            SolveInDoubles(number, b2, z2, count, tolerance, workspace, statistics, count, cancel);
             for (int u = component.Start; u < component.End; u++)
             {
                 for (int j = 0; j < count; j++)
@@ -182,6 +188,7 @@ public sealed partial class LaplacianSolver
         int columns,
         double tolerance,
         SolverWorkspace<double> workspace,
+        SolveStatistics statistics,
         int retried,
         CancellationToken cancel)
     {
@@ -196,7 +203,7 @@ public sealed partial class LaplacianSolver
                     + $"where {tolerance:0.0e+0} was wanted ({report.Reasons[column]}, {report.Iterations:N0} iterations, "
                     + $"{solvers[number].Choice.Name}, component of {network.Components[number].Nodes:N0} nodes)");
             }
-            Statistics.Add(1, retried > 0 ? 1 : 0, report.Iterations, report.Residuals[column], report.EnergyErrors[column]);
+            statistics.Add(1, retried > 0 ? 1 : 0, report.Iterations, report.Residuals[column], report.EnergyErrors[column]);
         }
     }
 }

@@ -93,7 +93,7 @@ public sealed partial class LaplacianSolver
             if (certified)
                 solvers[number].Solve(b2, z2, tolerance, doubles, cancel);
             else
-                SolveInDoubles(number, b2, z2, some.Length, tolerance, doubles, some.Length, cancel);
+                SolveInDoubles(number, b2, z2, some.Length, tolerance, doubles, Statistics, some.Length, cancel);
             for (int u = component.Start; u < component.End; u++)
             {
                 for (int j = 0; j < some.Length; j++)

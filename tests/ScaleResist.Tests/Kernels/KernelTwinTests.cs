@@ -20,6 +20,37 @@ public unsafe class KernelTwinTests
     [MemberData(nameof(Spreads))]
     public void Double_kernels_equal_their_scalar_twins(double decades) => AllLengths<double>(decades);
 
+    [Fact]
+    public void Deflation_kernels_equal_their_scalar_twins()
+    {
+        using Panel<float> x = Filled<float>(300, 3);
+        double[] vector = All(), scalar = [];
+        WithScalar(() => scalar = All());
+        Assert.Equal(vector, scalar);
+        Assert.Contains(vector, value => value != 0);
+
+        double[] All()
+        {
+            double[] values = new double[(16 * 16) + 48];
+            float[] reduced = new float[16];
+            fixed (double* sums = values)
+            fixed (float* y = reduced)
+            {
+                double* row = sums + 256, combined = row + 16;
+                for (int u = 0; u < 299; u++)
+                {
+                    float* own = x.Pointer + (16 * u);
+                    DeflationKernels.AddDifference(own, own + 16, 0.1 + u, row);
+                    DeflationKernels.AddProducts(own, row, sums);
+                }
+                DeflationKernels.Combine(row, sums, combined);
+                DeflationKernels.Reduce(x.Pointer, x.Pointer + 16, x.Pointer + 32, y);
+                DeflationKernels.Widen(y, combined + 16);
+            }
+            return values;
+        }
+    }
+
     [Theory]
     [MemberData(nameof(Spreads))]
     public void Probe_kernels_equal_their_scalar_twins(double decades)
