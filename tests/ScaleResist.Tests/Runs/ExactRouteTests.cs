@@ -57,6 +57,34 @@ public sealed class ExactRouteTests
             sink["pairs"].Column<double>("resistance").Order(), (a, b) => Math.Abs(a - b) < 1e-10);
     }
 
+    public static TheoryData<string, double> Published => new()
+    {
+        // van Steenwijk, Am. J. Phys. 66:90, 1998 (from memory; the values are rational): tetrahedron, octahedron; Petersen's graph (rational).
+        { "0-1 0-2 0-3 1-2 1-3 2-3", 3 },
+        { "0-2 0-3 0-4 0-5 1-2 1-3 1-4 1-5 2-4 2-5 3-4 3-5", 13.0 / 2 },
+        { "0-1 1-2 2-3 3-4 4-0 0-5 1-6 2-7 3-8 4-9 5-7 7-9 9-6 6-8 8-5", 33 },
+        // The icosahedron likewise, and the Clebsch graph (rational, from its parameters).
+        { "0-1 0-2 0-3 0-4 0-5 1-2 2-3 3-4 4-5 5-1 11-6 11-7 11-8 11-9 11-10 6-7 7-8 8-9 9-10 10-6 1-6 2-7 3-8 4-9 5-10 1-7 2-8 3-9 4-10 5-6", 28 },
+        { "0-1 0-2 0-4 0-8 0-15 1-3 1-5 1-9 1-14 2-3 2-6 2-10 2-13 3-7 3-11 3-12 4-5 4-6 4-11 4-12 "
+            + "5-7 5-10 5-13 6-7 6-9 6-14 7-8 7-15 8-9 8-10 8-12 9-11 9-13 10-11 10-14 11-15 12-13 12-14 13-15 14-15", 50 },
+        // K_{3,4}; wheels of 4 and 5 rim nodes; a fan of a path of 4 (rational); two hexagons in a row (Yang & Zhang 2008, from memory).
+        { "0-3 0-4 0-5 0-6 1-3 1-4 1-5 1-6 2-3 2-4 2-5 2-6", 23.0 / 2 },
+        { "0-1 0-2 0-3 0-4 1-2 2-3 3-4 4-1", 16.0 / 3 },
+        { "0-1 0-2 0-3 0-4 0-5 1-2 2-3 3-4 4-5 5-1", 95.0 / 11 },
+        { "0-1 0-2 0-3 0-4 1-2 2-3 3-4", 146.0 / 21 },
+        { "0-1 1-2 2-3 3-4 4-5 5-0 2-6 6-7 7-8 8-9 9-3", 465.0 / 7 },
+        // The Moebius ladder of eight nodes (Baigonakova & Mednykh 2019).
+        { "0-1 1-2 2-3 3-4 4-5 5-6 6-7 7-0 0-4 1-5 2-6 3-7", 134.0 / 7 },
+    };
+
+    [Theory]
+    [MemberData(nameof(Published))]
+    public void Small_graphs_have_their_published_index(string links, double index)
+    {
+        Network network = TestNetworks.Unit([.. links.Split(' ').Select(link => link.Split('-')).Select(ends => (long.Parse(ends[0]), long.Parse(ends[1])))]);
+        Assert.Equal(1, Run(network, Exact, out _)["index"].Column<double>("kirchhoff_index")[0] / index, 1e-10);
+    }
+
     // Kirchhoff indices of the open networks as their note in tests/data gives them; power and netscience to ten digits by dense inverses.
     [Theory]
     [InlineData("karate.tsv", 470.268185)]
