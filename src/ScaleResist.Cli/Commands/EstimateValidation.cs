@@ -42,6 +42,8 @@ internal static class EstimateValidation
             return "no network is named; give its file: scaleresist estimate NETWORK --lake DIR";
         if (string.IsNullOrEmpty(options.Lake))
             return "no lake is named; say where the tables go: --lake DIR";
+        if (options.Pairs is "" || options.NodeWeights is "")
+            return $"{(options.Pairs is "" ? "--pairs" : "--node-weights")} names no file; give its path";
         if (NotInThisVersion(options) is string missing)
             return missing;
 

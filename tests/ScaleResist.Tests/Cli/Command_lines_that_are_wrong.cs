@@ -80,6 +80,16 @@ public sealed class Command_lines_that_are_wrong
         Assert.False(Directory.Exists("l"));
     }
 
+    [Theory]
+    [InlineData("--pairs")]
+    [InlineData("--node-weights")]
+    public void A_file_without_a_name_is_refused(string option)
+    {
+        CliResult result = CliRun.InProcess(new FakeEngine(), ["estimate", "n.csv", "--lake", "l", option, ""]);
+        Assert.Equal(2, result.Exit);
+        Assert.Equal($"scaleresist: {option} names no file; give its path", Assert.Single(result.ErrorLines));
+    }
+
     [Fact]
     public void No_command_line_is_a_fault()
     {
