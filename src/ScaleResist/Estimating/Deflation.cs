@@ -1,13 +1,9 @@
 // A few of the smoothest directions of large blocks, taken out of the probes and added exactly.
 // On a block with Laplacian L, for any X (n x 16) that is independent of the probes, with G = X'LX and a = G^-1 X'b:
 //     y = z - X a,     Cov(y) = L+ - X G^-1 X',     Cov(y_u, b_u) = 1 - 1/n - x_u G^-1 (LX)_u'     (x_u centred)
-// so that E z_u^2 = x_u G^-1 x_u' + E y_u^2, and the noise of span X is gone. Any X is right as long as G belongs to it; a good one holds
-// the lowest modes: X = L+ S g with random signs g, then X = L+ W X again (Halko, Martinsson & Tropp 2011), W the weights that hang
-// off the nodes, S their roots: the part of a block in the Kirchhoff index is W-weighted, and so are the modes that dominate it.
-// Invariant: x is 0 at a block's head (y is wanted but for a constant), so each node has one row of X, that of the block it is a member of;
-// G is summed in doubles from the rounded X; sums run over fixed pieces in order, so results do not depend on threads.
+// so that E z_u^2 = x_u G^-1 x_u' + E y_u^2, and the noise of span X is gone. Any X is right as long as G belongs to it; SmoothDirections finds a
+// good one, 0 at a block's head (y is wanted but for a constant).
 
-using MathNet.Numerics.LinearAlgebra;
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
 using ScaleResist.Solving;
@@ -45,53 +41,45 @@ internal sealed class DeflatedShares
 internal sealed unsafe class Deflation
 {
     /// <summary>Directions a block.</summary>
-    public const int Columns = ProbePanel.Width;
+    public const int Columns = SmoothDirections.Columns;
+
+    /// <summary>Entries of a matrix of directions.</summary>
+    public const int Square = SmoothDirections.Square;
 
     /// <summary>The least block that is deflated.</summary>
     public const int LeastNodes = 64;
 
-    private const int MembersPerPiece = 1 << 12;
-    private const int Square = Columns * Columns;
-    private const double Tolerance = 0.02; // of the solves for X: a rougher X is as unbiased, a finer one hardly better
-    private const uint Stream = 1; // of Philox: the probes have 0
-
     private readonly Blocks blocks;
     private readonly BlockRows rows;
-    private readonly HangingWeights weights;
     private readonly int[] chosen;
     private readonly Dictionary<int, int> slots = [];
-    private readonly List<Piece> pieces = [];
-    private readonly double[][] inverses; // G^-1 by slot
-    private readonly Panel<float> x;
+    private readonly SmoothDirections directions;
     private readonly double[] parts; // x_u G^-1 x_u' by member, centred for w = 1
     private readonly double[] headParts; // by slot
 
     /// <summary>No directions yet.</summary>
-    /// <param name="rows">Strengths and right-hand sides within blocks.</param>
     /// <param name="blocks">Of the network.</param>
+    /// <param name="rows">Strengths and right-hand sides within blocks.</param>
     /// <param name="weights">What hangs off the nodes, 1 each.</param>
     /// <param name="chosen">The blocks to deflate, ascending.</param>
     public Deflation(Blocks blocks, BlockRows rows, HangingWeights weights, int[] chosen)
     {
         this.blocks = blocks;
         this.rows = rows;
-        this.weights = weights;
         this.chosen = chosen;
         for (int slot = 0; slot < chosen.Length; slot++)
-        {
             slots[chosen[slot]] = slot;
-            int members = blocks.NodesOf(chosen[slot]) - 1;
-            for (int from = 0; from < members; from += MembersPerPiece)
-                pieces.Add(new Piece(slot, from, Math.Min(members, from + MembersPerPiece)));
-        }
-        inverses = new double[chosen.Length][];
-        x = new Panel<float>(blocks.Network.NodeCount);
+        directions = new SmoothDirections(blocks, rows, weights, chosen);
         parts = new double[blocks.Network.NodeCount];
         headParts = new double[chosen.Length];
     }
 
     /// <summary>Panels solved so far.</summary>
-    public int Steps { get; private set; }
+    public int Steps => directions.Steps;
+
+    /// <summary>One solve of 16 columns; <see cref="Fill"/> comes after.</summary>
+    public void Step(LaplacianSolver solver, SolverWorkspace<float> workspace, ulong seed, int threads, CancellationToken cancel) =>
+        directions.Step(solver, workspace, seed, threads, cancel);
 
     /// <summary>Whether a block is deflated.</summary>
     public bool Has(int block) => slots.ContainsKey(block);
@@ -102,36 +90,26 @@ internal sealed unsafe class Deflation
     /// <summary>The same for a block's head.</summary>
     public double OfHead(int block) => slots.TryGetValue(block, out int slot) ? headParts[slot] : 0;
 
-    /// <summary>One solve of 16 columns: the first from random signs, the next from W X.</summary>
-    public void Step(LaplacianSolver solver, SolverWorkspace<float> workspace, ulong seed, int threads, CancellationToken cancel)
-    {
-        ParallelOptions options = new() { MaxDegreeOfParallelism = threads };
-        using Panel<float> b = new(blocks.Network.NodeCount);
-        SetRightHandSides(b, seed, options);
-        solver.Solve(b, x, Columns, Tolerance, workspace, new SolveStatistics(), cancel);
-        Normalise(options);
-        Steps++;
-    }
-
     /// <summary>Fills the shares of each index; the first is that of w = 1.</summary>
     public void Fill(IReadOnlyList<DeflatedShares> indices, int threads)
     {
         ParallelOptions options = new() { MaxDegreeOfParallelism = threads };
-        double[][][] centres = [.. indices.Select(index => Centres(index.Hanging, options))];
+        double[][][] centres = [.. indices.Select(index => directions.Centres(index.Hanging, options))];
+        IReadOnlyList<BlockPiece> pieces = directions.Pieces;
         double[][] sums = new double[pieces.Count][];
         Parallel.For(0, pieces.Count, options, i =>
         {
-            Piece piece = pieces[i];
+            BlockPiece piece = pieces[i];
             int block = chosen[piece.Slot];
             List<(int To, double C)> links = [];
             double* row = stackalloc double[Columns];
             sums[i] = new double[indices.Count];
             foreach (int u in blocks.Members(block)[piece.From..piece.To])
             {
-                MultiplyRow(block, u, links, row);
+                directions.MultiplyRow(block, u, links, row);
                 for (int k = 0; k < indices.Count; k++)
                 {
-                    (double share, double part) = Split(piece.Slot, Row(x, u), centres[k][piece.Slot], row);
+                    (double share, double part) = Split(piece.Slot, directions.Row(u), centres[k][piece.Slot], row);
                     indices[k].OfMembers[u] = (float)share;
                     sums[i][k] += indices[k].Hanging.OfMember(u) * part;
                     if (k == 0)
@@ -151,7 +129,7 @@ internal sealed unsafe class Deflation
         for (int slot = 0; slot < chosen.Length; slot++)
         {
             int block = chosen[slot];
-            MultiplyRow(block, blocks.Head(block), [], headRow);
+            directions.MultiplyRow(block, blocks.Head(block), [], headRow);
             for (int k = 0; k < indices.Count; k++)
             {
                 (double share, double part) = Split(slot, zero, centres[k][slot], headRow);
@@ -185,7 +163,7 @@ internal sealed unsafe class Deflation
                     b = own;
                 }
                 DeflationKernels.Widen(b, row);
-                DeflationKernels.AddProducts(Row(x, u), row, total);
+                DeflationKernels.AddProducts(directions.Row(u), row, total);
             }
         }
     }
@@ -193,7 +171,7 @@ internal sealed unsafe class Deflation
     /// <summary>a = G^-1 X'b, 16 x 16 with a column a probe.</summary>
     public float[] Coefficients(int block, double[] products)
     {
-        double[] inverse = inverses[slots[block]];
+        double[] inverse = directions.Inverse(slots[block]);
         float[] a = new float[Square];
         for (int i = 0; i < Columns; i++)
         {
@@ -212,201 +190,7 @@ internal sealed unsafe class Deflation
     public void Reduce(ProbePanel panel, int node, float[] coefficients, float* row)
     {
         fixed (float* a = coefficients)
-            DeflationKernels.Reduce(Row(panel.Z, node), Row(x, node), a, row);
-    }
-
-    // b = P'S g, or P'W X, for P = I - 1 w'/W: what the weights leave of a block sums to zero.
-    private void SetRightHandSides(Panel<float> b, ulong seed, ParallelOptions options)
-    {
-        bool first = Steps == 0;
-        double[][] centres = first ? SignSums(seed, options) : Centres(weights, options);
-        double[][] sums = new double[pieces.Count][];
-        Parallel.For(0, pieces.Count, options, i =>
-        {
-            Piece piece = pieces[i];
-            double[] sum = sums[i] = new double[Columns];
-            foreach (int u in blocks.Members(chosen[piece.Slot])[piece.From..piece.To])
-            {
-                double w = weights.OfMember(u), root = Math.Sqrt(w);
-                uint signs = first ? Signs(u, seed) : 0;
-                float* from = Row(x, u), to = Row(b, u);
-                for (int j = 0; j < Columns; j++)
-                {
-                    double value = first ? ((signs >> j & 1) != 0 ? -root : root) : w * from[j];
-                    to[j] = (float)(value - (w * centres[piece.Slot][j]));
-                    sum[j] += to[j];
-                }
-            }
-        });
-        // A head may be a member of another of the blocks, and head several.
-        for (int i = 0; i < pieces.Count; i++)
-        {
-            float* head = Row(b, blocks.Head(chosen[pieces[i].Slot]));
-            for (int j = 0; j < Columns; j++)
-                head[j] -= (float)sums[i][j];
-        }
-    }
-
-    private double[][] SignSums(ulong seed, ParallelOptions options)
-    {
-        double[][] centres = Sums(Columns, options, (block, members, sum) =>
-        {
-            foreach (int u in members)
-            {
-                double root = Math.Sqrt(weights.OfMember(u));
-                uint signs = Signs(u, seed);
-                for (int j = 0; j < Columns; j++)
-                    sum[j] += (signs >> j & 1) != 0 ? -root : root;
-            }
-        });
-        for (int slot = 0; slot < chosen.Length; slot++)
-        {
-            int head = blocks.Head(chosen[slot]);
-            double root = Math.Sqrt(weights.OfHead(chosen[slot])), total = weights.Total(blocks.ComponentOf(chosen[slot]));
-            uint signs = Signs(head, seed);
-            for (int j = 0; j < Columns; j++)
-                centres[slot][j] = (centres[slot][j] + ((signs >> j & 1) != 0 ? -root : root)) / total;
-        }
-        return centres;
-    }
-
-    private uint Signs(int node, ulong seed)
-    {
-        ulong key = blocks.Network.NodeKeys[node];
-        return (uint)(Philox.Block((uint)key, (uint)(key >> 32), 0, Stream, seed).Low & 0xFFFF);
-    }
-
-    // sum of w x / W by slot; x is 0 at the head.
-    private double[][] Centres(HangingWeights hanging, ParallelOptions options)
-    {
-        double[][] centres = Sums(Columns, options, (block, members, sum) =>
-        {
-            foreach (int u in members)
-            {
-                double w = hanging.OfMember(u);
-                float* row = Row(x, u);
-                for (int j = 0; j < Columns; j++)
-                    sum[j] += w * row[j];
-            }
-        });
-        for (int slot = 0; slot < chosen.Length; slot++)
-        {
-            double total = hanging.Total(blocks.ComponentOf(chosen[slot]));
-            for (int j = 0; j < Columns; j++)
-                centres[slot][j] = total > 0 ? centres[slot][j] / total : 0;
-        }
-        return centres;
-    }
-
-    // Heads to 0, then columns that are orthonormal in L but for rounding, then G of what came out.
-    private void Normalise(ParallelOptions options)
-    {
-        float[][] origins = [.. chosen.Select(block => x.Row(blocks.Head(block)).ToArray())];
-        Parallel.ForEach(pieces, options, piece =>
-        {
-            foreach (int u in blocks.Members(chosen[piece.Slot])[piece.From..piece.To])
-            {
-                float* row = Row(x, u);
-                for (int j = 0; j < Columns; j++)
-                    row[j] -= origins[piece.Slot][j];
-            }
-        });
-        double[][] factors = [.. Gram(options).Select(Orthonormal)];
-        Parallel.ForEach(pieces, options, piece =>
-        {
-            double* row = stackalloc double[Columns];
-            fixed (double* factor = factors[piece.Slot])
-            {
-                foreach (int u in blocks.Members(chosen[piece.Slot])[piece.From..piece.To])
-                {
-                    float* to = Row(x, u);
-                    DeflationKernels.Widen(to, row);
-                    DeflationKernels.Combine(row, factor, row);
-                    for (int j = 0; j < Columns; j++)
-                        to[j] = (float)row[j];
-                }
-            }
-        });
-        double[][] gram = Gram(options);
-        for (int slot = 0; slot < chosen.Length; slot++)
-        {
-            for (int j = 0; j < Columns; j++)
-            {
-                if (gram[slot][(j * Columns) + j] == 0)
-                    gram[slot][(j * Columns) + j] = 1; // a column of zeros: nothing to take out
-            }
-            Matrix<double> inverse = Matrix<double>.Build.Dense(Columns, Columns, gram[slot]).Inverse();
-            inverses[slot] = ((inverse + inverse.Transpose()) / 2).ToColumnMajorArray();
-        }
-    }
-
-    // T with T'GT = I; columns are 0 for directions that G does not hold.
-    private static double[] Orthonormal(double[] gram)
-    {
-        MathNet.Numerics.LinearAlgebra.Factorization.Evd<double> modes =
-            Matrix<double>.Build.Dense(Columns, Columns, gram).Evd(Symmetricity.Symmetric);
-        double[] factor = new double[Square];
-        double least = 1e-13 * modes.EigenValues[Columns - 1].Real;
-        for (int j = 0; j < Columns; j++)
-        {
-            double value = modes.EigenValues[j].Real;
-            for (int i = 0; i < Columns; i++)
-                factor[(i * Columns) + j] = value > least ? modes.EigenVectors[i, j] / Math.Sqrt(value) : 0;
-        }
-        return factor;
-    }
-
-    // G = X'LX by slot.
-    private double[][] Gram(ParallelOptions options)
-    {
-        double[][] gram = Sums(Square, options, (block, members, sum) =>
-        {
-            List<(int To, double C)> links = [];
-            double* row = stackalloc double[Columns];
-            fixed (double* to = sum)
-            {
-                foreach (int u in members)
-                {
-                    MultiplyRow(block, u, links, row);
-                    DeflationKernels.AddProducts(Row(x, u), row, to);
-                }
-            }
-        });
-        foreach (double[] matrix in gram)
-        {
-            for (int i = 0; i < Columns; i++)
-            {
-                for (int j = 0; j < i; j++)
-                {
-                    double mean = (matrix[(i * Columns) + j] + matrix[(j * Columns) + i]) / 2;
-                    matrix[(i * Columns) + j] = matrix[(j * Columns) + i] = mean;
-                }
-            }
-        }
-        return gram;
-    }
-
-    // (LX)_u within a block.
-    private void MultiplyRow(int block, int node, List<(int To, double C)> links, double* row)
-    {
-        Network network = blocks.Network;
-        float* zero = stackalloc float[Columns];
-        new Span<float>(zero, Columns).Clear();
-        new Span<double>(row, Columns).Clear();
-        int head = blocks.Head(block);
-        float* own = node == head ? zero : Row(x, node);
-        if (blocks.IsCutNode(node))
-        {
-            rows.Find(block, node, links);
-            foreach ((int v, double c) in links)
-                DeflationKernels.AddDifference(own, v == head ? zero : Row(x, v), c, row);
-            return;
-        }
-        for (long k = network.RowStart[node]; k < network.RowStart[node + 1]; k++)
-        {
-            int v = network.Neighbours[k];
-            DeflationKernels.AddDifference(own, v == head ? zero : Row(x, v), network.Conductance(k), row);
-        }
+            DeflationKernels.Reduce(Row(panel.Z, node), directions.Row(node), a, row);
     }
 
     // (x_u - centre) G^-1 (LX)_u' and (x_u - centre) G^-1 (x_u - centre)'.
@@ -416,7 +200,7 @@ internal sealed unsafe class Deflation
         double* solved = stackalloc double[Columns];
         for (int j = 0; j < Columns; j++)
             offset[j] = own[j] - centre[j];
-        fixed (double* inverse = inverses[slot])
+        fixed (double* inverse = directions.Inverse(slot))
             DeflationKernels.Combine(offset, inverse, solved);
         double share = 0, part = 0;
         for (int j = 0; j < Columns; j++)
@@ -427,29 +211,5 @@ internal sealed unsafe class Deflation
         return (share, part);
     }
 
-    // Sums over the members of each block, piece by piece.
-    private double[][] Sums(int length, ParallelOptions options, PieceSum add)
-    {
-        double[][] ofPieces = new double[pieces.Count][];
-        Parallel.For(0, pieces.Count, options, i =>
-        {
-            int block = chosen[pieces[i].Slot];
-            ofPieces[i] = new double[length];
-            add(block, blocks.Members(block)[pieces[i].From..pieces[i].To], ofPieces[i]);
-        });
-        double[][] sums = [.. chosen.Select(_ => new double[length])];
-        for (int i = 0; i < pieces.Count; i++)
-        {
-            double[] total = sums[pieces[i].Slot];
-            for (int j = 0; j < length; j++)
-                total[j] += ofPieces[i][j];
-        }
-        return sums;
-    }
-
     private static float* Row(Panel<float> panel, int node) => panel.Pointer + ((long)node * Columns);
-
-    private delegate void PieceSum(int block, ReadOnlySpan<int> members, double[] sum);
-
-    private readonly record struct Piece(int Slot, int From, int To);
 }

@@ -18,48 +18,19 @@ using ScaleResist.Solving;
 
 namespace ScaleResist.Estimating;
 
-/// <summary>Mean and spread of independent samples (Welford 1962).</summary>
-internal struct RunningMoments
-{
-    private double mean;
-    private double spread;
-
-    public readonly double Mean => mean;
-
-    public int Count { get; private set; }
-
-    /// <summary>Standard error of the mean.</summary>
-    public readonly double StandardError => StandardErrorOf(Count);
-
-    /// <summary>Standard error that the mean of so many samples is foreseen to have.</summary>
-    public readonly double StandardErrorOf(int samples) => Math.Sqrt(spread / samples / (Count - 1));
-
-    public void Add(double sample)
-    {
-        Count++;
-        double step = sample - mean;
-        mean += step / Count;
-        spread += step * (sample - mean);
-    }
-}
-
 /// <summary>Diagonals by node and indices by component, panel by panel.</summary>
 public sealed unsafe class NodeSums
 {
-    private const int MembersPerChunk = 1 << 12;
     private const int MostDeflationSteps = 2; // panels of solves
     private const double WorthDeflating = 0.003; // relative standard error foreseen of an index, above which it is
     private readonly Blocks blocks;
     private readonly Network network;
     private readonly ExactBlocks? exact;
     private readonly BlockRows rows;
-    private readonly Samples plain;
-    private readonly Samples byStrength;
-    private readonly Samples? byWeight;
+    private readonly BlockChunks chunks;
+    private readonly IndexSamples[] indices; // by number of nodes, by strength, by node weight where there is one
     private readonly double[] squares; // of members, summed over probes
     private readonly double[] headSquares; // of heads, by block
-    private readonly List<Chunk>[] chunks; // of the components that several threads share; of the others together
-    private readonly int sharedComponents;
     private Deflation? deflation;
 
     /// <summary>Empty sums.</summary>
@@ -72,19 +43,19 @@ public sealed unsafe class NodeSums
         this.exact = exact;
         network = blocks.Network;
         rows = new BlockRows(blocks);
-        plain = NewSamples(HangingWeights.Of(blocks, null), known => known.Plain);
-        byStrength = NewSamples(HangingWeights.Of(blocks, network.Strengths), known => known.ByStrength);
-        byWeight = weights is null ? null : NewSamples(HangingWeights.Of(blocks, weights), known => known.ByWeight);
-        foreach (Samples samples in Indices())
-            FillKnown(samples);
+        chunks = new BlockChunks(blocks);
+        List<IndexSamples> list =
+        [
+            new(HangingWeights.Of(blocks, null), known => known.Plain),
+            new(HangingWeights.Of(blocks, network.Strengths), known => known.ByStrength),
+        ];
+        if (weights is not null)
+            list.Add(new(HangingWeights.Of(blocks, weights), known => known.ByWeight));
+        indices = [.. list];
+        foreach (IndexSamples index in indices)
+            index.FindKnown(blocks, rows, exact);
         squares = new double[network.NodeCount];
         headSquares = new double[blocks.Count];
-        while (sharedComponents < network.Components.Count && network.Components[sharedComponents].Nodes > MembersPerChunk)
-            sharedComponents++;
-        chunks = new List<Chunk>[sharedComponents + 1];
-        for (int c = 0; c < sharedComponents; c++)
-            chunks[c] = ChunksOf(c);
-        chunks[sharedComponents] = ChunksOfSmallComponents();
     }
 
     /// <summary>Probes added so far.</summary>
@@ -94,68 +65,65 @@ public sealed unsafe class NodeSums
     public int DeflationSolves => (deflation?.Steps ?? 0) * Deflation.Columns;
 
     /// <summary>
-    /// Takes a few smooth modes out of the large blocks of those components whose index the probes would leave with a relative standard
-    /// error above 0.3 %, judged by the first panel: one panel of solves, a second where the first was not enough. Estimates stay unbiased
-    /// for any directions; the panel's spread decides only whether the solves are spent.
+    /// Adds the first panel, once a few smooth modes are taken out of the large blocks of those components whose index the probes would leave
+    /// with a relative standard error above 0.3 %, judged by this panel: one panel of solves, a second where the first was not enough.
+    /// Estimates stay unbiased for any directions; the panel's spread decides only whether the solves are spent.
     /// </summary>
-    /// <param name="pilot">The first panel, solved; it is not added.</param>
+    /// <param name="panel">Drawn and solved.</param>
     /// <param name="probes">K, the probes of the whole run.</param>
     /// <param name="solver">Prepared for the network.</param>
     /// <param name="workspace">Of the solver.</param>
     /// <param name="seed">Of the directions' signs.</param>
     /// <param name="threads">Threads for all but the solves.</param>
     /// <param name="cancel">Ends the solves.</param>
-    public void Deflate(
-        ProbePanel pilot, int probes, LaplacianSolver solver, SolverWorkspace<float> workspace, ulong seed, int threads, CancellationToken cancel)
+    public void AddFirst(
+        ProbePanel panel, int probes, LaplacianSolver solver, SolverWorkspace<float> workspace, ulong seed, int threads, CancellationToken cancel)
     {
         if (Probes > 0)
             throw new InvalidOperationException("deflation comes before the first panel");
+        Add(panel, threads);
+        int[] chosen = [.. Enumerable.Range(0, blocks.Count).Where(b => blocks.NodesOf(b) >= Deflation.LeastNodes && IsProbed(b))];
         int steps = Math.Min(MostDeflationSteps, probes / Deflation.Columns);
-        int[] large = [.. Enumerable.Range(0, blocks.Count).Where(b => blocks.NodesOf(b) >= Deflation.LeastNodes && IsProbed(b))];
-        if (steps == 0 || large.Length == 0)
-            return;
-        int[] chosen = Wide(large);
-        for (int step = 0; step < steps && chosen.Length > 0; step++)
+        for (int step = 0; step < steps; step++)
         {
-            deflation ??= new Deflation(blocks, rows, plain.Hanging, chosen);
+            chosen = [.. chosen.Where(b => indices[0].RelativeError(blocks.ComponentOf(b), probes) > WorthDeflating)];
+            if (chosen.Length == 0)
+                break;
+            deflation ??= new Deflation(blocks, rows, indices[0].Hanging, chosen);
             deflation.Step(solver, workspace, seed, threads, cancel);
-            DeflatedShares[] shares = [.. Indices().Select(samples => samples.Deflate(network.NodeCount, blocks.Count))];
-            deflation.Fill(shares, threads);
-            foreach (Samples samples in Indices())
-                FillKnown(samples);
-            if (step + 1 < steps)
-                chosen = Wide(chosen);
+            deflation.Fill([.. indices.Select(index => index.Deflate(network.NodeCount, blocks.Count))], threads);
+            foreach (IndexSamples index in indices)
+                index.FindKnown(blocks, rows, exact);
+            Clear();
+            Add(panel, threads);
         }
+    }
 
-        // The blocks of components that this many probes would leave too uncertain.
-        int[] Wide(int[] among)
-        {
-            Add(pilot, threads);
-            int[] wide = [.. among.Where(b => plain.RelativeError(blocks.ComponentOf(b), probes) > WorthDeflating)];
-            foreach (Samples samples in Indices())
-                samples.Clear();
-            Array.Clear(squares);
-            Array.Clear(headSquares);
-            Probes = 0;
-            return wide;
-        }
+    /// <summary>Forgets all panels, but keeps the deflation.</summary>
+    internal void Clear()
+    {
+        foreach (IndexSamples index in indices)
+            index.Clear();
+        Array.Clear(squares);
+        Array.Clear(headSquares);
+        Probes = 0;
     }
 
     /// <summary>Adds a solved panel. Panels are added in order of their numbers.</summary>
     public void Add(ProbePanel panel, int threads)
     {
         ParallelOptions options = new() { MaxDegreeOfParallelism = threads };
-        for (int c = 0; c < sharedComponents; c++)
+        for (int c = 0; c < chunks.OfShared.Length; c++)
         {
-            List<Chunk> parts = chunks[c];
-            NodeSquareSums[] sums = new NodeSquareSums[parts.Count];
+            BlockChunk[] parts = chunks.OfShared[c];
+            NodeSquareSums[] sums = new NodeSquareSums[parts.Length];
             // A block cut in pieces is centred before its squares are taken; whole blocks come after, in one step.
-            for (int i = 0; i < parts.Count; i += parts[i].Pieces)
+            for (int i = 0; i < parts.Length; i += parts[i].Pieces)
             {
                 if (parts[i].Pieces > 1)
-                    AddInPieces(panel, c, parts, i, sums, options);
+                    AddInPieces(panel, c, parts.AsSpan(i, parts[i].Pieces).ToArray(), sums.AsMemory(i), options);
             }
-            Parallel.For(0, parts.Count, options, i =>
+            Parallel.For(0, parts.Length, options, i =>
             {
                 if (parts[i].Pieces == 1)
                     AddBlocks(panel, c, parts[i].First, parts[i].End, new Scratch(), ref sums[i]);
@@ -165,11 +133,10 @@ public sealed unsafe class NodeSums
                 total.Add(sum);
             AddSamples(c, panel.Probes, total);
         }
-        List<Chunk> small = chunks[sharedComponents];
-        Parallel.For(0, small.Count, options, i =>
+        Parallel.ForEach(chunks.SmallComponents, options, run =>
         {
             Scratch scratch = new();
-            for (int c = small[i].First; c < small[i].End; c++)
+            for (int c = run.First; c < run.End; c++)
             {
                 NodeSquareSums total = default;
                 (int first, int end) = blocks.OfComponent(c);
@@ -193,13 +160,14 @@ public sealed unsafe class NodeSums
     }
 
     /// <summary>Kf of a component, the sum of R over its pairs: Student t interval over the probes.</summary>
-    public Estimate KirchhoffIndex(int component, double confidence) => plain.Estimate(component, confidence);
+    public Estimate KirchhoffIndex(int component, double confidence) => indices[0].Estimate(component, confidence);
 
     /// <summary>The sum of d_u d_v R over pairs.</summary>
-    public Estimate DegreeKirchhoffIndex(int component, double confidence) => byStrength.Estimate(component, confidence);
+    public Estimate DegreeKirchhoffIndex(int component, double confidence) => indices[1].Estimate(component, confidence);
 
     /// <summary>The sum of w_u w_v R over pairs; null without node weights.</summary>
-    public Estimate? WeightedKirchhoffIndex(int component, double confidence) => byWeight?.Estimate(component, confidence);
+    public Estimate? WeightedKirchhoffIndex(int component, double confidence) =>
+        indices.Length > 2 ? indices[2].Estimate(component, confidence) : null;
 
     /// <summary>
     /// l_u of every node; 0 for a single node. The parts of the blocks are independent, with standard errors sqrt(2/K) E x^2 each; the
@@ -233,9 +201,9 @@ public sealed unsafe class NodeSums
                 for (int b = first; b < end; b++)
                 {
                     bool known = exact?.Has(b) == true;
-                    ofHeads[b] = known ? ofExact(exact!.OfHead(b)) : part(plain.HeadShare(b, c), rows.OfHead(b), headSquares[b]);
+                    ofHeads[b] = known ? ofExact(exact!.OfHead(b)) : part(indices[0].HeadShare(b, c), rows.OfHead(b), headSquares[b]);
                     foreach (int v in blocks.Members(b))
-                        ofMembers[v] = known ? ofExact(exact!.OfMember(v)) : part(plain.MemberShare(v, c), rows.OfMember(v), squares[v]);
+                        ofMembers[v] = known ? ofExact(exact!.OfMember(v)) : part(indices[0].MemberShare(v, c), rows.OfMember(v), squares[v]);
                     if (!deflated || deflation?.Has(b) != true)
                         continue;
                     ofHeads[b] += deflation.OfHead(b);
@@ -250,99 +218,32 @@ public sealed unsafe class NodeSums
 
     private bool IsProbed(int block) => !blocks.IsBridge(block) && exact?.Has(block) != true;
 
-    private IEnumerable<Samples> Indices() => byWeight is null ? [plain, byStrength] : [plain, byStrength, byWeight];
-
-    private Samples NewSamples(HangingWeights hanging, Func<(double Plain, double ByStrength, double ByWeight), double> choose) =>
-        new(hanging, new double[network.Components.Count], choose);
-
-    private void FillKnown(Samples samples)
+    private void AddInPieces(ProbePanel panel, int component, BlockChunk[] parts, Memory<NodeSquareSums> sums, ParallelOptions options)
     {
-        HangingWeights hanging = samples.Hanging;
-        for (int c = 0; c < samples.Known.Length; c++)
-        {
-            (int first, int end) = blocks.OfComponent(c);
-            samples.Known[c] = 0;
-            for (int b = first; b < end; b++)
-            {
-                if (exact?.Has(b) == true)
-                {
-                    samples.Known[c] += samples.Choose(exact.Index(b));
-                    continue;
-                }
-                double sum = hanging.OfHead(b) * Square(samples.HeadShare(b, c)) / rows.OfHead(b);
-                foreach (int v in blocks.Members(b))
-                    sum += hanging.OfMember(v) * Square(samples.MemberShare(v, c)) / rows.OfMember(v);
-                samples.Known[c] += hanging.Total(c) * (sum + samples.Deflated(b));
-            }
-        }
-
-        static double Square(double k) => k * k;
-    }
-
-    private List<Chunk> ChunksOf(int component)
-    {
-        (int first, int end) = blocks.OfComponent(component);
-        List<Chunk> list = [];
-        for (int b = first; b < end;)
-        {
-            int size = blocks.NodesOf(b) - 1, start = b++;
-            if (size > MembersPerChunk)
-            {
-                int pieces = (size + MembersPerChunk - 1) / MembersPerChunk;
-                for (int i = 0; i < pieces; i++)
-                    list.Add(new Chunk(start, b, pieces, i * MembersPerChunk, Math.Min(size, (i + 1) * MembersPerChunk)));
-                continue;
-            }
-            while (b < end && size + blocks.NodesOf(b) - 1 <= MembersPerChunk)
-                size += blocks.NodesOf(b++) - 1;
-            list.Add(new Chunk(start, b, 1, 0, 0));
-        }
-        return list;
-    }
-
-    // Chunks of whole components, numbered by component.
-    private List<Chunk> ChunksOfSmallComponents()
-    {
-        List<Chunk> list = [];
-        for (int c = sharedComponents; c < network.Components.Count && network.Components[c].Nodes > 1;)
-        {
-            int start = c, size = 0;
-            while (c < network.Components.Count && network.Components[c].Nodes > 1 && size < MembersPerChunk)
-                size += network.Components[c++].Nodes;
-            list.Add(new Chunk(start, c, 1, 0, 0));
-        }
-        return list;
-    }
-
-    private void AddInPieces(
-        ProbePanel panel, int component, List<Chunk> parts, int first, NodeSquareSums[] sums, ParallelOptions options)
-    {
-        int block = parts[first].First, pieces = parts[first].Pieces;
+        int block = parts[0].First;
         if (!IsProbed(block))
             return;
         float[]? coefficients = null;
         if (deflation?.Has(block) == true)
         {
-            double[][] products = new double[pieces][];
-            Parallel.For(0, pieces, options, i =>
-                deflation.AddProducts(panel, block, parts[first + i].From, parts[first + i].To, products[i] = new double[16 * 16]));
-            for (int i = 1; i < pieces; i++)
+            double[][] products = [.. parts.Select(_ => new double[Deflation.Square])];
+            Parallel.For(0, parts.Length, options, i => deflation.AddProducts(panel, block, parts[i].From, parts[i].To, products[i]));
+            for (int i = 1; i < parts.Length; i++)
             {
-                for (int j = 0; j < products[0].Length; j++)
+                for (int j = 0; j < Deflation.Square; j++)
                     products[0][j] += products[i][j];
             }
             coefficients = deflation.Coefficients(block, products[0]);
         }
-        NodeSquareSums[] offsets = new NodeSquareSums[pieces];
-        Parallel.For(0, pieces, options, i =>
-            AddOffsets(panel, block, parts[first + i].From, parts[first + i].To, coefficients, new Scratch(), ref offsets[i]));
+        NodeSquareSums[] offsets = new NodeSquareSums[parts.Length];
+        Parallel.For(0, parts.Length, options, i =>
+            AddOffsets(panel, block, parts[i].From, parts[i].To, coefficients, new Scratch(), ref offsets[i]));
         NodeSquareSums offset = default;
         foreach (ref readonly NodeSquareSums piece in offsets.AsSpan())
             offset.Add(piece);
-        float[] centres = Centres(panel, component, block, offset, new float[3 * ProbePanel.Width]);
-        Parallel.For(0, pieces, options, i =>
-            AddSquares(
-                panel, component, block, parts[first + i].From, parts[first + i].To, coefficients, centres, new Scratch(), ref sums[first + i]));
+        float[] centres = Centres(panel, component, block, offset, new Scratch());
+        Parallel.For(0, parts.Length, options, i => AddSquares(
+            panel, component, block, parts[i].From, parts[i].To, coefficients, centres, new Scratch(), ref sums.Span[i]));
     }
 
     private void AddBlocks(ProbePanel panel, int component, int first, int end, Scratch scratch, ref NodeSquareSums sums)
@@ -355,13 +256,13 @@ public sealed unsafe class NodeSums
             float[]? coefficients = null;
             if (deflation?.Has(b) == true)
             {
-                double[] products = new double[16 * 16];
+                double[] products = new double[Deflation.Square];
                 deflation.AddProducts(panel, b, 0, count, products);
                 coefficients = deflation.Coefficients(b, products);
             }
             NodeSquareSums offset = default;
             AddOffsets(panel, b, 0, count, coefficients, scratch, ref offset);
-            float[] centres = Centres(panel, component, b, offset, scratch.Centres);
+            float[] centres = Centres(panel, component, b, offset, scratch);
             AddSquares(panel, component, b, 0, count, coefficients, centres, scratch, ref sums);
         }
     }
@@ -376,10 +277,8 @@ public sealed unsafe class NodeSums
             foreach (int v in blocks.Members(block)[from..to])
             {
                 float* z = RowOfZ(panel, v, coefficients, reduced);
-                NodeKernels.AddOffsets(z, origin, plain.Hanging.OfMember(v), ref sums.Plain);
-                NodeKernels.AddOffsets(z, origin, byStrength.Hanging.OfMember(v), ref sums.ByStrength);
-                if (byWeight is not null)
-                    NodeKernels.AddOffsets(z, origin, byWeight.Hanging.OfMember(v), ref sums.ByWeight);
+                for (int k = 0; k < indices.Length; k++)
+                    NodeKernels.AddOffsets(z, origin, indices[k].Hanging.OfMember(v), ref sums[k]);
             }
         }
     }
@@ -393,18 +292,16 @@ public sealed unsafe class NodeSums
     }
 
     // sum w_B z / W, for each of the weights.
-    private float[] Centres(ProbePanel panel, int component, int block, in NodeSquareSums offsets, float[] centres)
+    private float[] Centres(ProbePanel panel, int component, int block, in NodeSquareSums offsets, Scratch scratch)
     {
         ReadOnlySpan<float> origin = panel.Z.Row(blocks.Head(block));
-        double n = plain.Hanging.Total(component), strength = byStrength.Hanging.Total(component);
-        double weight = byWeight?.Hanging.Total(component) ?? 0;
-        for (int lane = 0; lane < ProbePanel.Width; lane++)
+        for (int k = 0; k < indices.Length; k++)
         {
-            centres[lane] = (float)(origin[lane] + (offsets.Plain[lane] / n));
-            centres[16 + lane] = (float)(origin[lane] + (offsets.ByStrength[lane] / strength));
-            centres[32 + lane] = weight > 0 ? (float)(origin[lane] + (offsets.ByWeight[lane] / weight)) : 0;
+            double total = indices[k].Hanging.Total(component);
+            for (int lane = 0; lane < ProbePanel.Width; lane++)
+                scratch.Centres[(k * ProbePanel.Width) + lane] = total > 0 ? (float)(origin[lane] + (offsets[k][lane] / total)) : 0;
         }
-        return centres;
+        return scratch.Centres;
     }
 
     private void AddSquares(
@@ -414,112 +311,58 @@ public sealed unsafe class NodeSums
         {
             if (from == 0)
             {
-                int u = blocks.Head(block);
-                float* z = Row(panel.Z, u), b = RowOfB(u, own);
-                double d = rows.OfHead(block);
-                headSquares[block] += NodeKernels.AddSquares(
-                    z, centre, b, (float)(plain.HeadShare(block, component) / d), plain.Hanging.OfHead(block), ref sums.Plain);
-                NodeKernels.AddSquares(
-                    z, centre + 16, b, (float)(byStrength.HeadShare(block, component) / d), byStrength.Hanging.OfHead(block), ref sums.ByStrength);
-                if (byWeight is not null)
+                int head = blocks.Head(block);
+                float* z = Row(panel.Z, head), b = RowOfB(panel, block, head, own, scratch);
+                for (int k = 0; k < indices.Length; k++)
                 {
-                    NodeKernels.AddSquares(
-                        z, centre + 32, b, (float)(byWeight.HeadShare(block, component) / d), byWeight.Hanging.OfHead(block), ref sums.ByWeight);
+                    IndexSamples index = indices[k];
+                    double square = NodeKernels.AddSquares(
+                        z, centre + (k * ProbePanel.Width), b, (float)(index.HeadShare(block, component) / rows.OfHead(block)),
+                        index.Hanging.OfHead(block), ref sums[k]);
+                    if (k == 0)
+                        headSquares[block] += square;
                 }
             }
             foreach (int u in blocks.Members(block)[from..to])
             {
-                float* z = RowOfZ(panel, u, coefficients, reduced), b = RowOfB(u, own);
-                double d = rows.OfMember(u);
-                squares[u] += NodeKernels.AddSquares(
-                    z, centre, b, (float)(plain.MemberShare(u, component) / d), plain.Hanging.OfMember(u), ref sums.Plain);
-                NodeKernels.AddSquares(
-                    z, centre + 16, b, (float)(byStrength.MemberShare(u, component) / d), byStrength.Hanging.OfMember(u), ref sums.ByStrength);
-                if (byWeight is not null)
+                float* z = RowOfZ(panel, u, coefficients, reduced), b = RowOfB(panel, block, u, own, scratch);
+                for (int k = 0; k < indices.Length; k++)
                 {
-                    NodeKernels.AddSquares(
-                        z, centre + 32, b, (float)(byWeight.MemberShare(u, component) / d), byWeight.Hanging.OfMember(u), ref sums.ByWeight);
+                    IndexSamples index = indices[k];
+                    double square = NodeKernels.AddSquares(
+                        z, centre + (k * ProbePanel.Width), b, (float)(index.MemberShare(u, component) / rows.OfMember(u)),
+                        index.Hanging.OfMember(u), ref sums[k]);
+                    if (k == 0)
+                        squares[u] += square;
                 }
             }
         }
+    }
 
-        float* RowOfB(int u, float* own)
-        {
-            if (!blocks.IsCutNode(u))
-                return Row(panel.B, u);
-            rows.Gather(panel, block, u, own, scratch.Links);
-            return own;
-        }
+    private float* RowOfB(ProbePanel panel, int block, int u, float* own, Scratch scratch)
+    {
+        if (!blocks.IsCutNode(u))
+            return Row(panel.B, u);
+        rows.Gather(panel, block, u, own, scratch.Links);
+        return own;
     }
 
     private void AddSamples(int component, int probes, in NodeSquareSums sums)
     {
         for (int lane = 0; lane < probes; lane++)
         {
-            plain.Add(component, sums.Plain[lane]);
-            byStrength.Add(component, sums.ByStrength[lane]);
-            byWeight?.Add(component, sums.ByWeight[lane]);
+            for (int k = 0; k < indices.Length; k++)
+                indices[k].Add(component, sums[k][lane]);
         }
     }
 
     private static float* Row(Panel<float> panel, int node) => panel.Pointer + ((long)node * ProbePanel.Width);
 
-    // A run of whole blocks (or small components), or one of the pieces of a block's members.
-    private readonly record struct Chunk(int First, int End, int Pieces, int From, int To);
-
     private sealed class Scratch
     {
-        public readonly float[] Centres = new float[3 * ProbePanel.Width];
+        public readonly float[] Centres = new float[NodeSquareSums.Most * ProbePanel.Width];
         public readonly float[] Row = new float[ProbePanel.Width];
         public readonly float[] Reduced = new float[ProbePanel.Width];
         public readonly List<(int To, double C)> Links = [];
-    }
-
-    // One index: its weights, and by component its samples W sum w x^2 beside what is known.
-    private sealed class Samples(
-        HangingWeights hanging, double[] known, Func<(double Plain, double ByStrength, double ByWeight), double> choose)
-    {
-        private readonly RunningMoments[] moments = new RunningMoments[known.Length];
-        private DeflatedShares? deflated;
-
-        public HangingWeights Hanging => hanging;
-
-        public double[] Known => known;
-
-        public Func<(double Plain, double ByStrength, double ByWeight), double> Choose => choose;
-
-        // k = 1 - w_B / W, less what a deflation takes
-        public double MemberShare(int node, int component) =>
-            Share(hanging.OfMember(node), hanging.Total(component)) - (deflated?.OfMembers[node] ?? 0);
-
-        public double HeadShare(int block, int component) =>
-            Share(hanging.OfHead(block), hanging.Total(component)) - (deflated?.OfHeads[block] ?? 0);
-
-        public double Deflated(int block) => deflated is not null && deflated.Parts.TryGetValue(block, out double part) ? part : 0;
-
-        public DeflatedShares Deflate(int nodes, int blocks) => deflated ??= new DeflatedShares(hanging, nodes, blocks);
-
-        public void Clear() => Array.Clear(moments);
-
-        public void Add(int component, double sum) => moments[component].Add(hanging.Total(component) * sum);
-
-        // Standard error over value, foreseen for so many probes.
-        public double RelativeError(int component, int probes)
-        {
-            double error = moments[component].StandardErrorOf(probes);
-            return error > 0 ? error / (known[component] + moments[component].Mean) : 0;
-        }
-
-        public Estimate Estimate(int component, double confidence)
-        {
-            RunningMoments probed = moments[component];
-            if (probed.Count == 0 || probed.Mean == 0)
-                return Estimating.Estimate.Exact(known[component]);
-            double value = known[component] + probed.Mean;
-            double half = Quantiles.Student(confidence, probed.Count - 1) * probed.StandardError;
-            return new Estimate(value, probed.StandardError, value - half, value + half);
-        }
-
-        private static double Share(double weight, double total) => total > 0 ? Math.Max(0, 1 - (weight / total)) : 1;
     }
 }

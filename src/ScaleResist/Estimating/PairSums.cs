@@ -16,7 +16,7 @@ public sealed class PairSums
     private readonly Network network;
     private readonly Bridges bridges;
     private readonly IReadOnlyList<(int U, int V)> pairs;
-    private readonly Func<int, int, bool>? isExact;
+    private readonly ExactPairs? exact;
     private readonly int[] componentOf;
     private readonly double[] shorted;
     private readonly double[] single;
@@ -27,10 +27,15 @@ public sealed class PairSums
     /// <param name="network">The network.</param>
     /// <param name="bridges">Its bridges.</param>
     /// <param name="pairs">Internal nodes.</param>
-    /// <param name="isExact">Whether a pair is found exactly elsewhere, so that nothing is done for it here; null: none is.</param>
-    public PairSums(Network network, Bridges bridges, IReadOnlyList<(int U, int V)> pairs, Func<int, int, bool>? isExact = null)
+    public PairSums(Network network, Bridges bridges, IReadOnlyList<(int U, int V)> pairs)
+        : this(network, bridges, pairs, null)
     {
-        this.isExact = isExact;
+    }
+
+    /// <summary>Empty sums; what <paramref name="exact"/> holds needs neither probe nor solve.</summary>
+    internal PairSums(Network network, Bridges bridges, IReadOnlyList<(int U, int V)> pairs, ExactPairs? exact)
+    {
+        this.exact = exact;
         this.network = network;
         this.bridges = bridges;
         this.pairs = pairs;
@@ -38,6 +43,9 @@ public sealed class PairSums
         shorted = new double[pairs.Count];
         single = new double[pairs.Count];
     }
+
+    /// <summary>How many pairs there are.</summary>
+    internal int Count => pairs.Count;
 
     /// <summary>
     /// Solves and encloses the pairs that are not exact, if at most <paramref name="most"/> are: a solve costs as much as a probe, and tells all.
@@ -78,34 +86,39 @@ public sealed class PairSums
         probes += panel.Probes;
     }
 
-    /// <summary>What is known of a pair, and how it was found: <c>bridge</c>, <c>exact</c>, <c>solve</c> or <c>probe</c>.</summary>
-    public (Estimate Resistance, string Method) Estimate(int pair, double quantile)
+    /// <summary>What is known of a pair, and how it was found. Safe from several threads.</summary>
+    public (Estimate Resistance, ResistanceMethod Method) Estimate(int pair, double quantile)
     {
         if (Known(pair) is { } known)
             return known;
+        if (IsExact(pair))
+            return (Estimating.Estimate.Exact(exact!.Between(pairs[pair].U, pairs[pair].V)), ResistanceMethod.Exact);
         if (solved.TryGetValue(pair, out Enclosure enclosure))
-            return (new Estimate(enclosure.Middle, 0, enclosure.Lower, enclosure.Upper), "solve");
+            return (new Estimate(enclosure.Middle, 0, enclosure.Lower, enclosure.Upper), ResistanceMethod.Solve);
         (int u, int v) = pairs[pair];
         long arc = network.FindArc(u, v);
         LinkBounds bounds = BoundsOf(u, v, arc);
         return (arc < 0
             ? LinkLikelihood.EstimatePair(bounds, shorted[pair], probes, quantile)
-            : LinkLikelihood.Estimate(bounds, shorted[pair], single[pair], probes, quantile), "probe");
+            : LinkLikelihood.Estimate(bounds, shorted[pair], single[pair], probes, quantile), ResistanceMethod.Probe);
     }
 
-    private bool IsOpen(int pair) => Known(pair) is null && isExact?.Invoke(pairs[pair].U, pairs[pair].V) != true;
+    /// <summary>Whether a pair needs probes or a solve.</summary>
+    internal bool IsOpen(int pair) => Known(pair) is null && !IsExact(pair);
+
+    private bool IsExact(int pair) => exact?.Holds(pairs[pair].U, pairs[pair].V) == true;
 
     // What needs neither probe nor solve.
-    private (Estimate Resistance, string Method)? Known(int pair)
+    private (Estimate Resistance, ResistanceMethod Method)? Known(int pair)
     {
         (int u, int v) = pairs[pair];
         if (u == v)
-            return (Estimating.Estimate.Exact(0), "exact");
+            return (Estimating.Estimate.Exact(0), ResistanceMethod.Exact);
         if (componentOf[u] != componentOf[v])
-            return (Estimating.Estimate.Exact(double.PositiveInfinity), "exact");
+            return (Estimating.Estimate.Exact(double.PositiveInfinity), ResistanceMethod.Exact);
         long arc = network.FindArc(u, v);
         return arc >= 0 && bridges.Contains(network.LinkBetween(u, v))
-            ? (Estimating.Estimate.Exact(1 / network.Conductance(arc)), "bridge")
+            ? (Estimating.Estimate.Exact(1 / network.Conductance(arc)), ResistanceMethod.Bridge)
             : null;
     }
 

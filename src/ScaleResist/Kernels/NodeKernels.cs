@@ -1,30 +1,27 @@
 // What a probe says of nodes: x_u = z_u - centre - k b_u / d_u, its squares by node and their weighted sums by probe.
 // Reads a row of z and one of b, writes nothing; sums by probe go through doubles row by row.
 
+using System.Runtime.CompilerServices;
 using System.Runtime.Intrinsics;
 
 namespace ScaleResist.Kernels;
 
-/// <summary>Sums by probe over some nodes, for weights 1, strengths and node weights, each with what hangs off a node added.</summary>
+/// <summary>Sums by probe over some nodes for up to three indices, each with weights of its own.</summary>
+[InlineArray(Most)]
 internal struct NodeSquareSums
 {
-    /// <summary>Sum over nodes with weight 1 each.</summary>
-    public LaneSums Plain;
+    /// <summary>Indices there may be: by number, by strength, by node weight.</summary>
+    public const int Most = 3;
 
-    /// <summary>Sum with weights d.</summary>
-    public LaneSums ByStrength;
-
-    /// <summary>Sum with node weights w; 0 without.</summary>
-    public LaneSums ByWeight;
+    private LaneSums first;
 
     /// <summary>Adds the sums of other nodes.</summary>
     public void Add(in NodeSquareSums other)
     {
-        for (int lane = 0; lane < 16; lane++)
+        for (int index = 0; index < Most; index++)
         {
-            Plain[lane] += other.Plain[lane];
-            ByStrength[lane] += other.ByStrength[lane];
-            ByWeight[lane] += other.ByWeight[lane];
+            for (int lane = 0; lane < 16; lane++)
+                this[index][lane] += other[index][lane];
         }
     }
 }

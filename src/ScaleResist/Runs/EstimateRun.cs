@@ -64,8 +64,11 @@ public static class EstimateRun
                 exact = phases.Do("factorising", route.Forecast!.Entries, "entries",
                     () => ExactResults.Of(route.Part, route.Symbolic!, route.Laplacian!, inputs.NodeWeights, plan.Threads, cancel));
             }
+            // Of the exact results only pairs still need the factor; its memory is free for the tables.
             if (exact is not null && plan.Want.HasFlag(Want.Pairs))
                 exactPairs = new ExactPairs(exact);
+            else
+                exact?.Dispose();
             // On the probed route a tree has exact links, nodes and index; its pairs are left.
             left = route.AllExact ? plan.Want & (exact is null ? Want.Pairs | Want.Coordinates : Want.Coordinates) : plan.Want;
             if (left != Want.None)
@@ -80,7 +83,7 @@ public static class EstimateRun
                 }
                 probed = phases.Do("solving", plan.TargetError is null ? plan.MostProbes : null, "probes",
                     () => ProbedEstimates.Run(
-                        blocks, Left(), inputs, exact?.ExactBlocks, exactPairs is null ? null : exactPairs.Holds, !route.AllExact, audit?.Pairs, solver,
+                        blocks, Left(), inputs, exact?.ExactBlocks, exactPairs, !route.AllExact, audit?.Pairs, solver,
                         observer, cancel));
             }
             if ((plan.Want & (Want.Index | Want.Nodes)) != 0)
@@ -102,9 +105,11 @@ public static class EstimateRun
         if (plan.Want.HasFlag(Want.Pairs))
         {
             IReadOnlyList<(int U, int V)> pairs = inputs.Pairs ?? [];
-            PairSums sums = probed?.Pairs ?? new PairSums(network, blocks.Bridges, pairs);
+            PairSums sums = probed?.Pairs ?? new PairSums(network, blocks.Bridges, pairs, exactPairs);
             Write("pairs", Tables.Pairs(label), pairs.Count,
-                w => PairRows.Write(network, pairs, sums, exactPairs, plan.Confidence, plan.Threads, w));
+                w => PairRows.Write(network, pairs, sums, plan.Confidence, plan.Threads, w));
+            exactPairs?.Dispose();
+            exact?.Dispose();
         }
         if (plan.Want.HasFlag(Want.Coordinates))
         {

@@ -44,7 +44,7 @@ internal sealed record ExactBudget(double Seconds, double Bytes)
     /// <summary>Bounds on the order that are worth no closer look.</summary>
     public OrderLimits Limits { get; private init; }
 
-    // A large network of more entries a node than this would miss the two minutes; the search for its order should not cost half as much.
+    // The search for an order that does not exist costs the more the more entries are allowed: for large networks so many a node.
     private static double WorthOrdering(Network network) => Math.Max(5e7, 100.0 * network.NodeCount);
 
     public static ExactBudget Of(EstimatePlan plan, Network network)

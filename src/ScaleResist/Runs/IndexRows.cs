@@ -33,7 +33,7 @@ internal static class IndexRows
                 NodeWeightedKirchhoffIndex = sums.WeightedKirchhoffIndex(c, confidence)?.Value,
                 FosterSum = fosterSums[c],
                 LogSpanningTrees = logSpanningTrees is not null && double.IsFinite(logSpanningTrees[c]) ? logSpanningTrees[c] : null,
-                Method = exact ? "exact" : "probe",
+                Method = (exact ? ResistanceMethod.Exact : ResistanceMethod.Probe).Name(),
                 Probes = exact ? 0 : sums.Probes,
             });
         }

@@ -64,7 +64,7 @@ internal static class NodeRows
                 rank[i] = ranks.Rank[u];
                 rankLower[i] = ranks.Lower[u];
                 rankUpper[i] = ranks.Upper[u];
-                method[i] = exact[c] ? "exact" : "probe";
+                method[i] = (exact[c] ? ResistanceMethod.Exact : ResistanceMethod.Probe).Name();
             }
             writer.Write(new RowBatch(
                 count, [node, component, degree, strength, value, error, total, closeness, rank, rankLower, rankUpper, method]));

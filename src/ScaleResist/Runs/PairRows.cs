@@ -10,7 +10,7 @@ internal static class PairRows
 {
     /// <summary>Writes all pairs, ends as the user gave them.</summary>
     public static void Write(
-        Network network, IReadOnlyList<(int U, int V)> pairs, PairSums sums, ExactPairs? exact, double confidence, int threads, ITableWriter writer)
+        Network network, IReadOnlyList<(int U, int V)> pairs, PairSums sums, double confidence, int threads, ITableWriter writer)
     {
         const int BatchRows = 1 << 20;
         double quantile = Quantiles.Normal(confidence);
@@ -25,9 +25,8 @@ internal static class PairRows
                 (int u, int v) = pairs[first + i];
                 LabelColumns.Put(network.Labels, source, i, u);
                 LabelColumns.Put(network.Labels, target, i, v);
-                (Estimate resistance, method[i]) = sums.Estimate(first + i, quantile);
-                if (method[i] == "probe" && exact?.Holds(u, v) == true)
-                    (resistance, method[i]) = (Estimate.Exact(exact.Between(u, v)), "exact");
+                (Estimate resistance, ResistanceMethod how) = sums.Estimate(first + i, quantile);
+                method[i] = how.Name();
                 (value[i], error[i], lower[i], upper[i]) = resistance;
             });
             writer.Write(new RowBatch(count, [source, target, value, error, lower, upper, method]));

@@ -36,10 +36,7 @@ internal sealed class ProbeDial
     /// <param name="plan">What is wanted of the probes.</param>
     /// <param name="sums">Where panels are added.</param>
     /// <param name="exact">Blocks that need no probes, or null.</param>
-    /// <param name="pairs">The requested pairs.</param>
-    /// <param name="isExact">Whether a pair needs no probes; null: all do.</param>
-    public ProbeDial(
-        Blocks blocks, EstimatePlan plan, ProbedEstimates sums, ExactBlocks? exact, IReadOnlyList<(int U, int V)> pairs, Func<int, int, bool>? isExact)
+    public ProbeDial(Blocks blocks, EstimatePlan plan, ProbedEstimates sums, ExactBlocks? exact)
     {
         network = blocks.Network;
         this.plan = plan;
@@ -54,9 +51,11 @@ internal sealed class ProbeDial
         }
         if (sums.Pairs is not null)
         {
-            int[] sample = [.. Sample(pairs.Count).Select(i => (int)i).Where(i => isExact?.Invoke(pairs[i].U, pairs[i].V) != true)];
+            int[] sample = [.. Sample(sums.Pairs.Count).Select(i => (int)i).Where(sums.Pairs.IsOpen)];
             measures.Add(new Measure(
-                () => sample.Select(i => sums.Pairs.Estimate(i, 0)).Where(found => found.Method == "probe").Select(found => found.Resistance), Percentile));
+                () => sample.Select(i => sums.Pairs.Estimate(i, 0)).Where(found => found.Method == ResistanceMethod.Probe)
+                    .Select(found => found.Resistance),
+                Percentile));
         }
         if (plan.Want.HasFlag(Want.Coordinates))
         {

@@ -27,7 +27,7 @@ internal sealed class ProbedEstimates
     /// <param name="plan">What is wanted of the probes.</param>
     /// <param name="inputs">Pairs and node weights.</param>
     /// <param name="exact">Blocks that need no probes, or null.</param>
-    /// <param name="isExact">Whether a pair needs no probes; null: all do.</param>
+    /// <param name="exactPairs">Pairs that need none, or null.</param>
     /// <param name="links">Whether links are probed.</param>
     /// <param name="audited">Pairs of an audit, which take every panel too; or null.</param>
     /// <param name="solver">Prepared for the network.</param>
@@ -38,7 +38,7 @@ internal sealed class ProbedEstimates
         EstimatePlan plan,
         EstimateInputs inputs,
         ExactBlocks? exact,
-        Func<int, int, bool>? isExact,
+        ExactPairs? exactPairs,
         bool links,
         PairSums? audited,
         LaplacianSolver solver,
@@ -50,10 +50,10 @@ internal sealed class ProbedEstimates
         {
             Links = links ? new LinkSums(network, blocks.Bridges) : null,
             Nodes = (plan.Want & (Want.Index | Want.Nodes)) != 0 ? new NodeSums(blocks, inputs.NodeWeights, exact) : null,
-            Pairs = plan.Want.HasFlag(Want.Pairs) ? new PairSums(network, blocks.Bridges, inputs.Pairs ?? [], isExact) : null,
+            Pairs = plan.Want.HasFlag(Want.Pairs) ? new PairSums(network, blocks.Bridges, inputs.Pairs ?? [], exactPairs) : null,
             Coordinates = plan.Want.HasFlag(Want.Coordinates) ? new Coordinates(network) : null,
         };
-        ProbeDial dial = new(blocks, plan, sums, exact, inputs.Pairs ?? [], isExact);
+        ProbeDial dial = new(blocks, plan, sums, exact);
         sums.Pairs?.SolveFew(solver, plan.ForeseenProbes, plan.Threads, cancel);
         int panels = ProbePanel.CountFor(plan.MostProbes), added = 0;
         Slot[] slots = new Slot[Math.Min(plan.Threads, panels)];
@@ -75,12 +75,12 @@ internal sealed class ProbedEstimates
                 }
                 Together(work, plan.Threads);
                 if (first == 0)
-                    begin += sums.Deflate(slots[0], plan, solver, cancel);
+                    begin += sums.AddFirst(slots[0], plan, solver, cancel);
                 if (sums.Coordinates is not null)
                     RunCost.CheckMemory(network, plan, added + (count * ProbePanel.Width));
                 for (int i = 0; i < count && dial.Stopped is null; i++)
                 {
-                    sums.Add(slots[i].Panel, plan.Threads);
+                    sums.Add(slots[i].Panel, first + i > 0, plan.Threads);
                     audited?.Add(slots[i].Panel);
                     dial.ForCoordinates?.Add(slots[i].Panel);
                     added += slots[i].Panel.Probes;
@@ -107,18 +107,19 @@ internal sealed class ProbedEstimates
         return sums;
     }
 
-    // Once for all panels: the ticks it took are not a batch's.
-    private long Deflate(Slot slot, EstimatePlan plan, LaplacianSolver solver, CancellationToken cancel)
+    // The first panel's nodes; a deflation is once for all panels: the ticks it took are not a batch's.
+    private long AddFirst(Slot slot, EstimatePlan plan, LaplacianSolver solver, CancellationToken cancel)
     {
         long begin = Stopwatch.GetTimestamp();
-        Nodes?.Deflate(slot.Panel, plan.ForeseenProbes, solver, slot.Workspace, plan.Seed, plan.Threads, cancel);
+        Nodes?.AddFirst(slot.Panel, plan.ForeseenProbes, solver, slot.Workspace, plan.Seed, plan.Threads, cancel);
         return Stopwatch.GetTimestamp() - begin;
     }
 
-    private void Add(ProbePanel panel, int threads)
+    private void Add(ProbePanel panel, bool nodes, int threads)
     {
         Links?.Add(panel, threads);
-        Nodes?.Add(panel, threads);
+        if (nodes)
+            Nodes?.Add(panel, threads);
         Pairs?.Add(panel);
         Coordinates?.Add(panel);
     }
