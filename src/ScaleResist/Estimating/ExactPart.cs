@@ -49,6 +49,18 @@ internal sealed class ExactPart
     /// <summary>The row of a node in an exact block that it lies in: the ground's if it is the head.</summary>
     public int RowIn(int block, int node) => Blocks.BlockOf(node) == block ? rowOf[node] : Ground;
 
+    /// <summary>What hangs off the members, by row; 0 at the ground.</summary>
+    public double[] ByRow(HangingWeights hanging)
+    {
+        double[] weights = new double[Ground + 1];
+        for (int u = 0; u < rowOf.Length; u++)
+        {
+            if (rowOf[u] >= 0)
+                weights[rowOf[u]] = hanging.OfMember(u);
+        }
+        return weights;
+    }
+
     /// <summary>The Laplacian of the part, (Ground + 1) x (Ground + 1). Rows keep the order of the nodes, which is breadth-first.</summary>
     public Laplacian BuildLaplacian()
     {

@@ -4,8 +4,11 @@
 //     R(u,v) = M_uu + M_vv - 2 M_uv
 //     Kf_w(B) = sum of w_u w_v R(u,v) over pairs = W sum w_u M_uu - w'M w
 //     sum_v w_v R(u,v) = W M_uu + sum w_v M_vv - 2 (M w)_u
+//     sum over pairs of w_u w_v R rises by c [W x'diag(w)x - (w'x)^2] / (1 - cR), x = M (e_u - e_v), where link (u,v) is lost (Sherman & Morrison)
 //     log of the number of spanning trees = log det (Kirchhoff 1847), a component's the sum over its blocks
-// The entries of M that this needs lie on the pattern of the factor (Takahashi, Fagan & Chin 1973); M w comes from one panel solve for all blocks.
+// The entries of M that this needs lie on the pattern of the factor (Takahashi, Fagan & Chin 1973), those of M diag(w) M are minus the derivatives of
+// (L + t diag(w))^-1 at t = 0 on it; M w comes from one panel solve for all blocks. w = 1: blocks stand for what hangs off them, so the rise within
+// the link's block is that of the whole component's Kirchhoff index.
 
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
@@ -20,9 +23,13 @@ internal sealed class ExactResults : IDisposable
     private readonly Network network;
     private readonly CholeskyFactor factor;
     private readonly SelectedInverse inverse;
+    private readonly HangingWeights hangingNodes;
+    private readonly double[]? pulls; // M w by row, w = 1
 
-    private ExactResults(ExactPart part, CholeskyFactor factor, SelectedInverse inverse)
+    private ExactResults(ExactPart part, CholeskyFactor factor, SelectedInverse inverse, HangingWeights hangingNodes, bool losses)
     {
+        this.hangingNodes = hangingNodes;
+        pulls = losses ? new double[part.Ground + 1] : null;
         this.part = part;
         this.factor = factor;
         this.inverse = inverse;
@@ -48,18 +55,24 @@ internal sealed class ExactResults : IDisposable
     /// <param name="symbolic">The analysis of the part's Laplacian.</param>
     /// <param name="laplacian">The part's Laplacian.</param>
     /// <param name="weights">Node weights of the network, or null.</param>
+    /// <param name="losses">Whether the loss of links is wanted.</param>
     /// <param name="threads">Threads; the results do not depend on them.</param>
     /// <param name="cancel">Ends the work.</param>
     public static ExactResults Of(
-        ExactPart part, SymbolicCholesky symbolic, Laplacian laplacian, double[]? weights, int threads, CancellationToken cancel)
+        ExactPart part, SymbolicCholesky symbolic, Laplacian laplacian, double[]? weights, bool losses, int threads,
+        CancellationToken cancel)
     {
         CholeskyFactor factor = CholeskyFactor.Of(symbolic, laplacian, threads, cancel);
-        SelectedInverse inverse = factor.Invert(threads, cancel);
-        ExactResults results = new(part, factor, inverse);
+        HangingWeights hanging = HangingWeights.Of(part.Blocks, null);
+        SelectedInverse inverse = losses ? factor.Invert(part.ByRow(hanging), threads, cancel) : factor.Invert(threads, cancel);
+        ExactResults results = new(part, factor, inverse, hanging, losses);
         results.AddBlocks(weights);
         results.AddLogarithms();
         return results;
     }
+
+    /// <summary>Whether the loss of links was computed.</summary>
+    public bool HasLosses => pulls is not null;
 
     /// <summary>Whether a link is in the exact part.</summary>
     public bool Holds(int u, int v) => !part.Probed[part.Blocks.BlockOf(u, v)];
@@ -73,6 +86,24 @@ internal sealed class ExactResults : IDisposable
         return one == part.Ground || other == part.Ground ? sum : sum - (2 * inverse.Between(one, other));
     }
 
+    /// <summary>
+    /// How much the Kirchhoff index of its component rises when a link of the part is lost: n c |L+ (e_u - e_v)|^2 / (1 - p). NaN where the link is a
+    /// bridge but for what rounding hides: 1 - p at most 1e-10.
+    /// </summary>
+    /// <param name="u">One end.</param>
+    /// <param name="v">The other.</param>
+    /// <param name="conductance">c.</param>
+    /// <param name="resistance">R.</param>
+    public double LossImpact(int u, int v, double conductance, double resistance)
+    {
+        const double Rounding = 1e-10;
+        int block = part.Blocks.BlockOf(u, v);
+        int one = part.RowIn(block, u), other = part.RowIn(block, v);
+        double rest = 1 - (conductance * resistance), pull = pulls![one] - pulls[other];
+        double spread = (hangingNodes.Total(part.Blocks.ComponentOf(block)) * inverse.Slope(one, other)) - (pull * pull);
+        return rest > Rounding ? conductance * Math.Max(0, spread) / rest : double.NaN;
+    }
+
     /// <summary>R between a member of an exact block and the block's head.</summary>
     public double ToHead(int member) => inverse.Diagonal(part.RowOf(member));
 
@@ -84,7 +115,7 @@ internal sealed class ExactResults : IDisposable
         Blocks blocks = part.Blocks;
         HangingWeights[] hanging =
         [
-            HangingWeights.Of(blocks, null), HangingWeights.Of(blocks, network.Strengths),
+            hangingNodes, HangingWeights.Of(blocks, network.Strengths),
             .. weights is null ? Array.Empty<HangingWeights>() : [HangingWeights.Of(blocks, weights)],
         ];
         using Panel<double> z = new(part.Ground + 1);
@@ -95,6 +126,8 @@ internal sealed class ExactResults : IDisposable
         }
         using (SubstitutionWorkspace workspace = factor.NewWorkspace(Panel<double>.Width))
             factor.Solve(z, z, workspace);
+        for (int row = 0; row < pulls?.Length; row++)
+            pulls[row] = z.Row(row)[0];
         double[] index = new double[3], spread = new double[3];
         List<double> diagonal = [];
         for (int c = 0; c < network.Components.Count; c++)

@@ -11,8 +11,12 @@ namespace ScaleResist.Estimating;
 /// <param name="Resistance">R with its error.</param>
 /// <param name="Method">How R was found.</param>
 /// <param name="NodesCutOff">For a bridge, the nodes on the smaller side; else 0.</param>
+/// <param name="LossImpact">
+/// How much the Kirchhoff index of the component rises when the link is lost: n c |L+ (e_u - e_v)|^2 / (1 - p). Null for bridges, for links that are
+/// bridges but for what rounding hides, and where it was not computed.
+/// </param>
 public readonly record struct LinkResult(
-    int Source, int Target, double Conductance, Estimate Resistance, ResistanceMethod Method, int NodesCutOff)
+    int Source, int Target, double Conductance, Estimate Resistance, ResistanceMethod Method, int NodesCutOff, Estimate? LossImpact = null)
 {
     /// <summary>Whether the link is a bridge; R = 1/c then, exactly.</summary>
     public bool IsBridge => Method == ResistanceMethod.Bridge;
@@ -67,7 +71,9 @@ public sealed class LinkResistances
             }
             else if (exact is not null && exact.Holds(u, v))
             {
-                into[i] = new LinkResult(u, v, c, Estimate.Exact(exact.Resistance(u, v)), ResistanceMethod.Exact, 0);
+                double r = exact.Resistance(u, v), rise = exact.HasLosses ? exact.LossImpact(u, v, c, r) : double.NaN;
+                into[i] = new LinkResult(
+                    u, v, c, Estimate.Exact(r), ResistanceMethod.Exact, 0, double.IsNaN(rise) ? null : Estimate.Exact(rise));
             }
             else
             {

@@ -62,7 +62,7 @@ public static class EstimateRun
             if (route.Part is not null && (plan.Want & ~(Want.Components | Want.Coordinates)) != 0)
             {
                 exact = phases.Do("factorising", route.Forecast!.Entries, "entries",
-                    () => ExactResults.Of(route.Part, route.Symbolic!, route.Laplacian!, inputs.NodeWeights, plan.Threads, cancel));
+                    () => ExactResults.Of(route.Part, route.Symbolic!, route.Laplacian!, inputs.NodeWeights, plan.Want.HasFlag(Want.Links), plan.Threads, cancel));
             }
             // Of the exact results only pairs still need the factor; its memory is free for the tables.
             if (exact is not null && plan.Want.HasFlag(Want.Pairs))

@@ -16,6 +16,7 @@ public sealed record ExactForecast(long Entries, double Operations, double Secon
 {
     internal const double SecondsPerOperation = 2.9e-11; // on two threads
     internal const double SecondsPerEntry = 20e-9;
+    private const double SecondsPerEntryWithLosses = 50e-9;
     private const double FixedSeconds = 0.48; // the first rows of every table: most of a small run
     private const double SecondsPerNode = 0.4e-6;
     private const double SecondsPerLink = 0.1e-6;
@@ -25,11 +26,13 @@ public sealed record ExactForecast(long Entries, double Operations, double Secon
 
     internal static ExactForecast Of(Network network, SymbolicCholesky symbolic, EstimatePlan plan)
     {
-        double operations = (double)symbolic.Operations + symbolic.InversionOperations;
+        // The loss of links: slopes of the factor and of the inverse, each twice the work of what they belong to.
+        bool losses = plan.Want.HasFlag(Want.Links);
+        double operations = ((double)symbolic.Operations + symbolic.InversionOperations) * (losses ? 3 : 1);
         double seconds = FixedSeconds + (network.NodeCount * SecondsPerNode) + (network.LinkCount * SecondsPerLink)
-            + (symbolic.StoredEntries * SecondsPerEntry) + (operations * SecondsPerOperation) + RunCost.WritingSeconds(network, plan);
+            + (symbolic.StoredEntries * (losses ? SecondsPerEntryWithLosses : SecondsPerEntry)) + (operations * SecondsPerOperation) + RunCost.WritingSeconds(network, plan);
         double bytes = BaseBytes + RunCost.NetworkBytes(network) + (network.NodeCount * BytesPerNode)
-            + (network.LinkCount * BytesPerLink) + symbolic.PeakBytes(plan.Threads);
+            + (network.LinkCount * BytesPerLink) + symbolic.PeakBytes(plan.Threads, losses);
         return new ExactForecast(symbolic.Entries, operations, seconds, (long)bytes);
     }
 }

@@ -101,6 +101,8 @@ internal sealed class LinkRows
         private readonly double[] spanning = new double[count];
         private readonly bool[] isBridge = new bool[count];
         private readonly long?[] cutOff = new long?[count];
+        private readonly double?[] impact = new double?[count];
+        private readonly double?[] impactError = new double?[count];
         private readonly string[] method = new string[count];
 
         public long[] Component { get; } = new long[count];
@@ -123,16 +125,17 @@ internal sealed class LinkRows
                 spanning[row] = link.SpanningProbability;
                 isBridge[row] = link.IsBridge;
                 cutOff[row] = link.IsBridge ? link.NodesCutOff : null;
+                impact[row] = link.LossImpact?.Value;
+                impactError[row] = link.LossImpact?.StandardError;
                 method[row] = link.Method.Name();
                 row++;
             }
         }
 
-        // The impact of a loss is not estimated by this version: both of its columns are null.
         public RowBatch ToRows() => new(count,
         [
             source, target, Component, conductance, resistance, error, lower, upper, spanning, isBridge, cutOff,
-            new double?[count], new double?[count], method,
+            impact, impactError, method,
         ]);
     }
 }

@@ -171,7 +171,10 @@ internal sealed unsafe class CholeskyFactor : IDisposable
     }
 
     /// <summary>M on the diagonal and between linked nodes. The factor stays as it is. The same bits whatever the number of threads.</summary>
-    public SelectedInverse Invert(int threads, CancellationToken cancel) => SelectedInverse.Of(this, threads, cancel);
+    public SelectedInverse Invert(int threads, CancellationToken cancel) => SelectedInverse.Of(this, null, threads, cancel);
+
+    /// <summary>M and M diag(w) M on the diagonal and between linked nodes, w by node and not negative; about three times the work.</summary>
+    public SelectedInverse Invert(double[] weights, int threads, CancellationToken cancel) => SelectedInverse.Of(this, weights, threads, cancel);
 
     /// <inheritdoc/>
     public void Dispose() => values.Dispose();

@@ -15,6 +15,9 @@ internal readonly record struct FrontSpace(long Even, long Odd, long Own)
 {
     public long Doubles => Even + Odd + (2 * Own);
 
+    /// <summary>Room for two blocks in place of each.</summary>
+    public FrontSpace Twice() => new(2 * Even, 2 * Odd, Own);
+
     public FrontSpace Max(FrontSpace other) =>
         new(Math.Max(Even, other.Even), Math.Max(Odd, other.Odd), Math.Max(Own, other.Own));
 }
@@ -81,7 +84,11 @@ internal sealed class FrontSchedule
     public long EliminationBytes(int threads) => sizeof(double) * (HeldUpdates + Shared(threads, EliminationOfRuns, EliminationOfTop));
 
     /// <summary>Bytes of all blocks of the inversion at their peak.</summary>
-    public long InversionBytes(int threads) => sizeof(double) * (HeldInverses + Shared(threads, InversionOfRuns, InversionOfTop));
+    /// <param name="threads">Threads.</param>
+    /// <param name="slopes">Whether slopes come along.</param>
+    public long InversionBytes(int threads, bool slopes) => sizeof(double) * (slopes
+        ? (2 * HeldInverses) + Shared(threads, InversionOfRuns.Twice(), InversionOfTop.Twice())
+        : HeldInverses + Shared(threads, InversionOfRuns, InversionOfTop));
 
     // Beside the blocks, 4 bytes a node and thread for local numbers and 16 a front for addresses and logarithms.
     private long Shared(int threads, FrontSpace runs, FrontSpace top)

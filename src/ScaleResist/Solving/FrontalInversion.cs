@@ -1,7 +1,9 @@
 // Selected inversion (Takahashi, Fagan & Chin 1973) front by front, parents first: of a front with own places J and rows N, M_NN is part of the
 // parent's front, and panels K of J, last to first, with L the places of the front after K, follow from the factor's G and W:
 //     M_LK = M_LL W          M_KK = G + W' M_LK
-// (supernodal forms: Lin et al., ACM TOMS 37:40, 2011). Invariant: M, G and W are not negative, so nothing cancels here either.
+// (supernodal forms: Lin et al., ACM TOMS 37:40, 2011). With the factor's slopes V and P (FrontalSlope), S = -dM/dt = M diag(w) M comes along:
+//     S_LK = S_LL W + M_LL P          S_KK = V + W' S_LK + P' M_LK
+// Invariant: M, G, W, S, V and P are not negative, so nothing cancels here either.
 
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
@@ -15,29 +17,34 @@ internal sealed unsafe class FrontalInversion : IDisposable
     private readonly SymbolicCholesky symbolic;
     private readonly Laplacian laplacian;
     private readonly double* values;
-    private readonly double[] diagonal, between;
-    private readonly nint[] fronts;
+    private readonly double* slopes; // null: no S
+    private readonly InverseEntries inverse;
+    private readonly InverseEntries? slope;
+    private readonly nint[] fronts; // M, and behind it S
     private readonly FrontTeam team;
     private readonly FrontStacks stacks;
     private readonly int[] local;
 
     /// <param name="factor">The factor; it stays as it is.</param>
-    /// <param name="diagonal">Where M_uu goes, by node.</param>
-    /// <param name="between">Where M_uv goes, by the arc of the earlier place.</param>
+    /// <param name="inverse">Where M goes.</param>
+    /// <param name="factorSlope">Its slopes, or null.</param>
+    /// <param name="slope">Where S goes, or null.</param>
     /// <param name="fronts">Addresses of fronts: those held are set beforehand, the others here.</param>
     /// <param name="space">Of the fronts to come.</param>
     /// <param name="team">Who shares the products of large fronts.</param>
     public FrontalInversion(
-        CholeskyFactor factor, double[] diagonal, double[] between, nint[] fronts, FrontSpace space, FrontTeam team)
+        CholeskyFactor factor, InverseEntries inverse, FactorSlope? factorSlope, InverseEntries? slope, nint[] fronts, FrontSpace space,
+        FrontTeam team)
     {
         symbolic = factor.Symbolic;
         laplacian = factor.Laplacian;
         values = factor.Values;
-        this.diagonal = diagonal;
-        this.between = between;
+        slopes = factorSlope is null ? null : factorSlope.Values;
+        this.inverse = inverse;
+        this.slope = slope;
         this.fronts = fronts;
         this.team = team;
-        stacks = new FrontStacks(space);
+        stacks = new FrontStacks(slope is null ? space : space.Twice());
         local = new int[laplacian.NodeCount];
     }
 
@@ -48,7 +55,7 @@ internal sealed unsafe class FrontalInversion : IDisposable
         bool held = symbolic.Schedule.IsHeld(front);
         if (!held)
         {
-            fronts[front] = (nint)stacks.Push(symbolic.Odd[front], FrontSize.Inverse(s, r));
+            fronts[front] = (nint)stacks.Push(symbolic.Odd[front], Doubles(s, r));
             if (parent >= 0)
             {
                 Gather(front);
@@ -60,13 +67,23 @@ internal sealed unsafe class FrontalInversion : IDisposable
         long stride = FrontSize.InverseStride(s, r);
         bool leaf = symbolic.FirstChild[front] < 0;
         double* panel = values + symbolic.ValueStart[front + 1];
+        double* panelSlope = slopes + symbolic.ValueStart[front + 1];
+        long behind = FrontSize.Inverse(s, r);
         for (int j = (s - 1) / Panel * Panel; j >= 0; j -= Panel)
         {
             int q = Math.Min(Panel, s - j), later = s - j - q + r;
             panel -= q * (long)(q + later);
-            InvertPanel(q, later, panel, z + (j * (stride + 1)), stride, mirror: j > 0 || !leaf);
+            double* own = z + (j * (stride + 1));
+            bool mirror = j > 0 || !leaf;
+            InvertPanel(q, later, panel, own, stride, mirror);
+            if (slope is null)
+                continue;
+            panelSlope -= q * (long)(q + later);
+            SlopeOfPanel(q, later, panel, panelSlope, own, own + behind, stride, mirror);
         }
-        Keep(front, s, r, z, stride);
+        Keep(front, s, r, z, stride, inverse);
+        if (slope is not null)
+            Keep(front, s, r, z + behind, stride, slope);
         for (int child = symbolic.FirstChild[front]; child >= 0; child = symbolic.Sibling[child])
         {
             if (symbolic.Schedule.IsHeld(child))
@@ -93,9 +110,38 @@ internal sealed unsafe class FrontalInversion : IDisposable
             for (int i = 0; i < q; i++)
                 z[i + (k * stride)] = own[i + (k * Panel)];
         }
-        if (!mirror)
-            return;
-        double* beside = z + (q * stride);
+        if (mirror)
+            Mirror(q, later, z, stride);
+    }
+
+    // As InvertPanel, for S behind M; what M holds below the panel is there already.
+    private void SlopeOfPanel(int q, int later, double* panel, double* panelSlope, double* m, double* z, long stride, bool mirror)
+    {
+        double* w = panel + (q * q), p = panelSlope + (q * q), below = z + q;
+        long inner = q * (stride + 1);
+        if (later > 0)
+        {
+            for (int k = 0; k < q; k++)
+                new Span<double>(below + (k * stride), later).Clear();
+            team.MultiplyAdd(later, q, later, z + inner, stride, w, q, below, stride);
+            team.MultiplyAdd(later, q, later, m + inner, stride, p, q, below, stride);
+        }
+        double* own = stackalloc double[Panel * Panel], cross = stackalloc double[Panel * Panel], none = stackalloc double[(Panel * Panel) + Panel];
+        new Span<double>(none, (Panel * Panel) + Panel).Clear();
+        FrontKernels.Quadratic(later, q, w, below, stride, panelSlope, own, Panel);
+        FrontKernels.Quadratic(later, q, p, m + q, stride, none, cross, Panel);
+        for (int k = 0; k < q; k++)
+        {
+            for (int i = 0; i < q; i++)
+                z[i + (k * stride)] = own[i + (k * Panel)] + cross[i + (k * Panel)];
+        }
+        if (mirror)
+            Mirror(q, later, z, stride);
+    }
+
+    private static void Mirror(int q, int later, double* z, long stride)
+    {
+        double* below = z + q, beside = z + (q * stride);
         for (int i = 0; i < later; i++)
         {
             for (int k = 0; k < q; k++)
@@ -107,9 +153,11 @@ internal sealed unsafe class FrontalInversion : IDisposable
     private double* Start(int front) => (double*)fronts[front] + FrontSize.Shift(symbolic.Own(front));
 
     private void Release(int front) =>
-        stacks.Pop(symbolic.Odd[front], FrontSize.Inverse(symbolic.Own(front), symbolic.RowCount(front)));
+        stacks.Pop(symbolic.Odd[front], Doubles(symbolic.Own(front), symbolic.RowCount(front)));
 
-    // M_NN out of the parent's front.
+    private long Doubles(int s, int r) => (slope is null ? 1 : 2) * FrontSize.Inverse(s, r);
+
+    // M_NN out of the parent's front, and S_NN.
     private void Gather(int front)
     {
         int parent = symbolic.Parent[front], s = symbolic.Own(front), r = symbolic.RowCount(front);
@@ -118,12 +166,17 @@ internal sealed unsafe class FrontalInversion : IDisposable
         double* from = Start(parent), to = Start(front) + (s * (stride + 1));
         fixed (int* relative = &symbolic.Relative.AsSpan((int)symbolic.RowStart[front], r).GetPinnableReference())
         {
-            for (int j = 0; j < r; j++)
-                FrontKernels.GatherRuns(from + (relative[j] * parentStride), to + (j * stride), relative, r);
+            for (int copy = slope is null ? 1 : 2; copy > 0; copy--)
+            {
+                for (int j = 0; j < r; j++)
+                    FrontKernels.GatherRuns(from + (relative[j] * parentStride), to + (j * stride), relative, r);
+                from += FrontSize.Inverse(symbolic.Own(parent), symbolic.RowCount(parent));
+                to += FrontSize.Inverse(s, r);
+            }
         }
     }
 
-    private void Keep(int front, int s, int r, double* z, long stride)
+    private void Keep(int front, int s, int r, double* z, long stride, InverseEntries into)
     {
         int first = symbolic.First[front], end = first + s, ground = symbolic.Nodes.Length - 1;
         for (int i = 0; i < r; i++)
@@ -132,12 +185,12 @@ internal sealed unsafe class FrontalInversion : IDisposable
         {
             int node = symbolic.Nodes[place];
             double* column = z + ((place - first) * stride);
-            diagonal[node] = column[place - first];
+            into.Diagonal[node] = column[place - first];
             for (long arc = laplacian.RowStart[node]; arc < laplacian.RowStart[node + 1]; arc++)
             {
                 int row = symbolic.Places[laplacian.Neighbours[arc]];
                 if (row > place && row < ground)
-                    between[arc] = column[row < end ? row - first : local[row]];
+                    into.Between[arc] = column[row < end ? row - first : local[row]];
             }
         }
     }

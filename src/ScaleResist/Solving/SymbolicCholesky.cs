@@ -112,11 +112,16 @@ internal sealed class SymbolicCholesky
     /// <summary>
     /// Bytes that structure, factor and selected inverse take at their peak, beside the Laplacian: exact but for the runtime's own.
     /// </summary>
-    public long PeakBytes(int threads)
+    /// <param name="threads">Threads.</param>
+    /// <param name="slopes">Whether the selected inverse has slopes too.</param>
+    public long PeakBytes(int threads, bool slopes = false)
     {
         long n = Nodes.Length, structure = (12 * n) + (33L * Count) + (8 * RowStart[Count]);
         long factor = sizeof(double) * (StoredEntries + DenseKernels.Tile);
-        long elimination = Schedule.EliminationBytes(threads), inversion = (8 * n) + (8 * arcs) + Schedule.InversionBytes(threads);
+        long elimination = Schedule.EliminationBytes(threads), entries = (8 * n) + (8 * arcs);
+        long inversion = slopes
+            ? (2 * entries) + factor + Math.Max(Schedule.EliminationBytes(threads), Schedule.InversionBytes(threads, slopes))
+            : entries + Schedule.InversionBytes(threads, slopes);
         long finding = TreeBytes * n; // while the tree is found and before the factor is there
         return structure + Math.Max(finding, factor + Math.Max(elimination, inversion));
     }
