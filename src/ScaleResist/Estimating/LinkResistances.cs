@@ -32,6 +32,7 @@ public sealed class LinkResistances
     private readonly Bridges bridges;
     private readonly LinkSums? sums;
     private readonly ExactResults? exact;
+    private readonly LossSums? losses;
     private readonly double quantile;
 
     /// <summary>The links of a network whose panels are all in.</summary>
@@ -41,8 +42,9 @@ public sealed class LinkResistances
     }
 
     /// <summary>The links of a network, exact ones by their factor, the others by their panels.</summary>
-    internal LinkResistances(Network network, Bridges bridges, LinkSums? sums, ExactResults? exact, double confidence)
+    internal LinkResistances(Network network, Bridges bridges, LinkSums? sums, ExactResults? exact, double confidence, LossSums? losses = null)
     {
+        this.losses = losses;
         this.exact = exact;
         this.network = network;
         this.bridges = bridges;
@@ -77,7 +79,9 @@ public sealed class LinkResistances
             }
             else
             {
-                into[i] = new LinkResult(u, v, c, sums!.Estimate(link, arc, u, quantile), ResistanceMethod.Probe, 0);
+                Estimate resistance = sums!.Estimate(link, arc, u, quantile);
+                into[i] = new LinkResult(
+                    u, v, c, resistance, ResistanceMethod.Probe, 0, losses?.Estimate(link, arc, u, resistance, quantile));
             }
         }
     }

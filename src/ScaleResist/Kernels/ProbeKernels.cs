@@ -145,8 +145,12 @@ internal static unsafe class ProbeKernels
     // size in every lane, its sign bit set where the lane's bit is set.
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
     private static Vector512<float> Signed(float size, uint signs) =>
-        (Vector512.Create(size).AsUInt32()
-            ^ (Vector512.Equals(Vector512.Create(signs) & LaneBit, LaneBit) & Vector512.Create(0x80000000u))).AsSingle();
+        (Vector512.Create(size).AsUInt32() ^ SignBits(signs)).AsSingle();
+
+    /// <summary>The sign bit in the lanes whose bit is set.</summary>
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    internal static Vector512<uint> SignBits(uint signs) =>
+        Vector512.Equals(Vector512.Create(signs) & LaneBit, LaneBit) & Vector512.Create(0x80000000u);
 
     // Halves are added to halves, so that the scalar twin can follow the same tree.
     [MethodImpl(MethodImplOptions.AggressiveInlining)]

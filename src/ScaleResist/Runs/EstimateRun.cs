@@ -162,7 +162,7 @@ public static class EstimateRun
 
         LinkRows WalkLinks()
         {
-            LinkResistances resistances = new(network, blocks.Bridges, probed?.Links, exact, plan.Confidence);
+            LinkResistances resistances = new(network, blocks.Bridges, probed?.Links, exact, plan.Confidence, probed?.Losses);
             if (!plan.Want.HasFlag(Want.Links))
             {
                 return phases.Do("checking", network.LinkCount, "links",

@@ -13,6 +13,9 @@ internal sealed class ProbedEstimates
 {
     public LinkSums? Links { get; init; }
 
+    /// <summary>What the loss of links takes, where links are wanted.</summary>
+    public LossSums? Losses { get; init; }
+
     public NodeSums? Nodes { get; init; }
 
     public PairSums? Pairs { get; init; }
@@ -49,6 +52,7 @@ internal sealed class ProbedEstimates
         ProbedEstimates sums = new()
         {
             Links = links ? new LinkSums(network, blocks.Bridges) : null,
+            Losses = links && plan.Want.HasFlag(Want.Links) ? new LossSums(network, blocks.Bridges) : null,
             Nodes = (plan.Want & (Want.Index | Want.Nodes)) != 0 ? new NodeSums(blocks, inputs.NodeWeights, exact) : null,
             Pairs = plan.Want.HasFlag(Want.Pairs) ? new PairSums(network, blocks.Bridges, inputs.Pairs ?? [], exactPairs) : null,
             Coordinates = plan.Want.HasFlag(Want.Coordinates) ? new Coordinates(network) : null,
@@ -60,7 +64,9 @@ internal sealed class ProbedEstimates
         try
         {
             for (int i = 0; i < slots.Length; i++)
-                slots[i] = new Slot(new ProbePanel(network, plan.Seed), solver.NewWorkspace<float>());
+                slots[i] = new Slot(
+                    new ProbePanel(network, plan.Seed), sums.Losses is null ? null : new NodeSignPanel(network, plan.Seed),
+                    solver.NewWorkspace<float>());
             long begin = Stopwatch.GetTimestamp();
             for (int first = 0; dial.Stopped is null; first += slots.Length)
             {
@@ -70,8 +76,14 @@ internal sealed class ProbedEstimates
                 {
                     (Slot slot, int number) = (slots[i], first + i);
                     slot.Panel.Draw(number, plan.MostProbes, plan.Threads);
-                    work.Add(() => solver.SolveProbes(
-                        slot.Panel.B, slot.Panel.Z, slot.Panel.Probes, plan.ModeErrorOf(number), slot.Workspace, cancel));
+                    slot.Signs?.Draw(number, plan.MostProbes, plan.Threads);
+                    work.Add(() =>
+                    {
+                        double error = plan.ModeErrorOf(number);
+                        solver.SolveProbes(slot.Panel.B, slot.Panel.Z, slot.Panel.Probes, error, slot.Workspace, cancel);
+                        if (slot.Signs is NodeSignPanel signs)
+                            solver.SolveProbes(signs.B, signs.X, signs.Probes, error, slot.Workspace, cancel);
+                    });
                 }
                 Together(work, plan.Threads);
                 if (first == 0)
@@ -80,7 +92,7 @@ internal sealed class ProbedEstimates
                     RunCost.CheckMemory(network, plan, added + (count * ProbePanel.Width));
                 for (int i = 0; i < count && dial.Stopped is null; i++)
                 {
-                    sums.Add(slots[i].Panel, first + i > 0, plan.Threads);
+                    sums.Add(slots[i].Panel, slots[i].Signs, first + i > 0, plan.Threads);
                     audited?.Add(slots[i].Panel);
                     dial.ForCoordinates?.Add(slots[i].Panel);
                     added += slots[i].Panel.Probes;
@@ -115,8 +127,10 @@ internal sealed class ProbedEstimates
         return Stopwatch.GetTimestamp() - begin;
     }
 
-    private void Add(ProbePanel panel, bool nodes, int threads)
+    private void Add(ProbePanel panel, NodeSignPanel? signs, bool nodes, int threads)
     {
+        if (signs is not null)
+            Losses!.Add(panel, signs, threads);
         Links?.Add(panel, threads);
         if (nodes)
             Nodes?.Add(panel, threads);
@@ -137,11 +151,12 @@ internal sealed class ProbedEstimates
         }
     }
 
-    private sealed record Slot(ProbePanel Panel, SolverWorkspace<float> Workspace) : IDisposable
+    private sealed record Slot(ProbePanel Panel, NodeSignPanel? Signs, SolverWorkspace<float> Workspace) : IDisposable
     {
         public void Dispose()
         {
             Panel.Dispose();
+            Signs?.Dispose();
             Workspace.Dispose();
         }
     }

@@ -17,6 +17,9 @@ internal static class RunCost
     private const double Margin = 1.2;
     private const double BaseBytes = 200e6;
     private const int PanelsPerThread = 6; // right-hand sides, solutions, and those of an iteration
+    private const int LossPanelsPerThread = 2; // signs on nodes, and their solutions
+    private const double LinkBytes = 16;
+    private const double LossBytes = 14;
     private const int DeflationPanels = 2; // directions, and their right-hand sides
 
     /// <summary>Seconds that writing the wanted tables takes.</summary>
@@ -42,9 +45,10 @@ internal static class RunCost
     {
         int slots = Math.Min(plan.Threads, ProbePanel.CountFor(plan.MostProbes));
         int deflation = (plan.Want & (Want.Index | Want.Nodes)) != 0 ? DeflationPanels : 0;
-        double panels = (double)((slots * PanelsPerThread) + deflation) * network.NodeCount * Panel<float>.Width * sizeof(float);
+        bool losses = plan.Want.HasFlag(Want.Links);
+        double panels = (double)((slots * (PanelsPerThread + (losses ? LossPanelsPerThread : 0))) + deflation) * network.NodeCount * Panel<float>.Width * sizeof(float);
         double coordinates = plan.Want.HasFlag(Want.Coordinates) ? (double)network.NodeCount * probes * sizeof(float) : 0;
-        return (long)(BaseBytes + NetworkBytes(network) + (16.0 * network.LinkCount) + panels + coordinates);
+        return (long)(BaseBytes + NetworkBytes(network) + (network.LinkCount * (LinkBytes + (losses ? LossBytes : 0))) + panels + coordinates);
     }
 
     /// <summary>Refuses the probed route where it is foreseen to need more memory than the budget.</summary>
