@@ -35,6 +35,7 @@ internal static class HelpText
           --columns SRC,DST[,W] columns by name or number
           --pairs FILE          pairs of nodes whose resistance is wanted
           --node-weights FILE   weights for the node-weighted Kirchhoff index
+          --terminals FILE      nodes shorted into one: each node's resistance to it
           --route ROUTE         exact, probe, or auto (unless said): exact where a
                                 factor is affordable, else 64 probes
           --probes K            probe with 4 to 4096 random probes; four times the
@@ -49,7 +50,7 @@ internal static class HelpText
           --threads T           1 to 256 (all cores unless said); results are the same
           --restart             discard what an unfinished run of this id left
           --verbose             show the stack of a fault
-        Not in this version: --shard, --terminals.
+        Not in this version: --shard.
 
         Example: scaleresist estimate roads.csv --lake lake --columns from,to,km
                  --weights resistance --want index,links --probes 64

@@ -23,6 +23,9 @@ internal sealed class LibraryEngine : IEstimateEngine
             NodeWeights = request.NodeWeights is string weights
                 ? NetworkInput.ReadNodeWeights(weights, network.Labels, ct: interrupted)
                 : null,
+            Terminals = request.Terminals is string terminals
+                ? NetworkInput.ReadTerminals(terminals, network.Labels, ct: interrupted)
+                : null,
         };
         try
         {

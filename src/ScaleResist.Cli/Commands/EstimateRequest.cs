@@ -29,6 +29,9 @@ internal sealed record EstimateRequest
     /// <summary>The file of node weights, or null.</summary>
     public string? NodeWeights { get; init; }
 
+    /// <summary>The file of terminals, or null.</summary>
+    public string? Terminals { get; init; }
+
     /// <summary>Whether leftovers of an unfinished run are discarded rather than resumed.</summary>
     public bool Restart { get; init; }
 }

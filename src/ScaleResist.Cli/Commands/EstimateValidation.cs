@@ -42,8 +42,11 @@ internal static class EstimateValidation
             return "no network is named; give its file: scaleresist estimate NETWORK --lake DIR";
         if (string.IsNullOrEmpty(options.Lake))
             return "no lake is named; say where the tables go: --lake DIR";
-        if (options.Pairs is "" || options.NodeWeights is "")
-            return $"{(options.Pairs is "" ? "--pairs" : "--node-weights")} names no file; give its path";
+        if (options.Pairs is "" || options.NodeWeights is "" || options.Terminals is "")
+        {
+            string unnamed = options.Pairs is "" ? "--pairs" : options.NodeWeights is "" ? "--node-weights" : "--terminals";
+            return $"{unnamed} names no file; give its path";
+        }
         if (NotInThisVersion(options) is string missing)
             return missing;
 
@@ -90,6 +93,7 @@ internal static class EstimateValidation
             },
             Pairs = options.Pairs,
             NodeWeights = options.NodeWeights,
+            Terminals = options.Terminals,
             Restart = options.Restart,
         };
         return null;
@@ -112,8 +116,6 @@ internal static class EstimateValidation
     {
         if (options.Shard is not null)
             return "--shard is not in this version; run the whole estimate on one machine";
-        if (options.Terminals is not null)
-            return "--terminals is not in this version; leave it out";
         return null;
     }
 
@@ -185,6 +187,8 @@ internal static class EstimateValidation
             want |= Want.Pairs;
         if (options.NodeWeights is not null && !want.HasFlag(Want.Index))
             return "--node-weights serves the index table, which --want leaves out; add index to --want";
+        if (options.Terminals is not null && !want.HasFlag(Want.Nodes))
+            return "--terminals serves the nodes table, which --want leaves out; add nodes to --want";
         return null;
     }
 

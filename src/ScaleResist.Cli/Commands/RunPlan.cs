@@ -10,9 +10,9 @@ namespace ScaleResist.Cli.Commands;
 internal static class RunPlan
 {
     // Names of files: for people, not for comparison.
-    private static readonly string[] NotCompared = ["pairs", "node_weights"];
+    private static readonly string[] NotCompared = ["pairs", "node_weights", "terminals"];
 
-    /// <summary>The plan of a request; reads the pairs and node weights for their digests.</summary>
+    /// <summary>The plan of a request; reads pairs, node weights and terminals for their digests.</summary>
     /// <exception cref="InputException">One of these files cannot be read.</exception>
     public static JsonObject Of(EstimateRequest request, CancellationToken interrupted) => new()
     {
@@ -36,6 +36,8 @@ internal static class RunPlan
         ["pairs_sha256"] = request.Pairs is string pairs ? InputDigest.Sha256(pairs, interrupted) : null,
         ["node_weights"] = request.NodeWeights,
         ["node_weights_sha256"] = request.NodeWeights is string weights ? InputDigest.Sha256(weights, interrupted) : null,
+        ["terminals"] = request.Terminals,
+        ["terminals_sha256"] = request.Terminals is string terminals ? InputDigest.Sha256(terminals, interrupted) : null,
     };
 
     /// <summary>The first difference between a finished run's plan and a new one, or null: <c>--probes 64, not 16</c>.</summary>

@@ -61,6 +61,9 @@ internal sealed record RunRecord
 
     public required AuditFacts? Audit { get; init; }
 
+    /// <summary>Resistances to terminals, or null without them.</summary>
+    public required TerminalFacts? Terminals { get; init; }
+
     /// <summary>Foster's theorem as a check, or null where nothing was probed.</summary>
     public required FosterCheck? Foster { get; init; }
 
@@ -95,6 +98,7 @@ internal sealed record RunRecord
             Solver = outcome.Summary.Solver,
             Probing = outcome.Summary.Probing,
             Audit = outcome.Summary.Audit,
+            Terminals = outcome.Summary.Terminals,
             Foster = FosterCheck.Of(outcome.Summary),
             Index = [.. outcome.Summary.Index.Take(MostIndexRows)],
             CriticalLinks = outcome.Summary.CriticalLinks,

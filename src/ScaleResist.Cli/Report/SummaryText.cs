@@ -9,6 +9,9 @@ namespace ScaleResist.Cli.Report;
 /// <summary>The summary on standard output.</summary>
 internal static class SummaryText
 {
+    private const int MostBridges = 3;
+    private const int MostLosses = 5;
+
     /// <summary>The lines of the summary.</summary>
     /// <param name="record">The run's record.</param>
     /// <param name="published">The folder of the run as the user would name it.</param>
@@ -40,18 +43,8 @@ internal static class SummaryText
             yield return Entry("Foster", $"spanning probabilities sum to {Numbers.Value(foster.Sum, 7)}; nodes minus components "
                 + $"{Numbers.Count(foster.Expected)} ({Signed(100 * foster.RelativeDifference)} %)");
         }
-        string heading = "critical";
-        foreach (CriticalLink link in record.CriticalLinks.Take(5))
-        {
-            string role = link.NodesCutOff is long cut
-                ? $"bridge, cuts off {Numbers.Many(cut, "node")}"
-                : $"spanning probability {Numbers.Value(link.SpanningProbability, 4)}";
-            yield return Entry(heading,
-                $"{InputException.Show(link.Source)} - {InputException.Show(link.Target)}: {role}, resistance "
-                + $"{Numbers.Value(link.Resistance.Value, 5)}"
-                + (link.Resistance.StandardError > 0 ? $" +- {Numbers.Value(link.Resistance.StandardError, 2)}" : ""));
-            heading = "";
-        }
+        foreach (string line in Critical(record.CriticalLinks))
+            yield return line;
         if (record.Exact is ExactFacts exact)
         {
             yield return Entry("exact", $"{Numbers.Count(exact.Entries)} entries, {Numbers.Value(exact.Operations / 1e9, 3)} Gflop; foreseen "
@@ -68,6 +61,13 @@ internal static class SummaryText
         }
         if (record.Probing is ProbingFacts probing)
             yield return Entry("probes", Probes(probing));
+        if (record.Terminals is TerminalFacts terminals)
+        {
+            yield return Entry("terminals", $"{Numbers.Many(terminals.Terminals, "node")} shorted into one; "
+                + (terminals.Method == "exact" ? "resistances to it exact" : $"resistances to it from {Numbers.Many(terminals.Probes, "probe")}")
+                + (terminals.NodesWithout == 0 ? "" : $"; {Numbers.Many(terminals.NodesWithout, "node")} in "
+                    + $"{Numbers.Many(terminals.ComponentsWithout, "component")} without a terminal: infinite"));
+        }
         if (record.Audit is AuditFacts { Compared: > 0 } audit)
         {
             yield return Entry("audit", $"{Numbers.Many(audit.Compared, "random link")} and pairs solved: relative error "
@@ -83,6 +83,30 @@ internal static class SummaryText
         yield return Entry("query", Query(published, record.Rows.Keys));
         if (record.Audit?.Warning is string warning)
             yield return Entry("warning", $"{warning}; do not trust the error bars of this run, and report it");
+    }
+
+    // The first bridges and the first of the others.
+    private static IEnumerable<string> Critical(IReadOnlyList<CriticalLink> links)
+    {
+        string heading = "critical";
+        foreach (CriticalLink link in links.Where(link => link.NodesCutOff is not null).Take(MostBridges))
+        {
+            yield return Entry(heading, $"{Ends(link)}: bridge, cuts off {Numbers.Many(link.NodesCutOff!.Value, "node")}, resistance "
+                + Numbers.Value(link.Resistance.Value, 5));
+            heading = "";
+        }
+        heading = "loss";
+        foreach (CriticalLink link in links.Where(link => link.LossImpact is not null).Take(MostLosses))
+        {
+            Estimate impact = link.LossImpact!.Value;
+            yield return Entry(heading, $"{Ends(link)}: raises the Kirchhoff index by {Numbers.Value(impact.Value, 5)}"
+                + (impact.StandardError > 0 ? $" +- {Numbers.Value(impact.StandardError, 2)}" : "")
+                + $", rank {link.LossRank}"
+                + (link.LossRankLower == link.LossRankUpper ? "" : $" ({link.LossRankLower} to {link.LossRankUpper})"));
+            heading = "";
+        }
+
+        static string Ends(CriticalLink link) => $"{InputException.Show(link.Source)} - {InputException.Show(link.Target)}";
     }
 
     /// <summary>What was read and cleaned.</summary>

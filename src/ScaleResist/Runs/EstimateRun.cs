@@ -16,6 +16,9 @@ public sealed record EstimateInputs
 
     /// <summary>Node weights by internal node, finite and not negative.</summary>
     public double[]? NodeWeights { get; init; }
+
+    /// <summary>Internal nodes that are shorted into one, to which the nodes table then gives resistances; null: none.</summary>
+    public IReadOnlyList<int>? Terminals { get; init; }
 }
 
 /// <summary>The estimate run.</summary>
@@ -54,6 +57,7 @@ public static class EstimateRun
         AuditFacts? audited = null;
         NodeSums? nodes = null;
         LinkRows? links = null;
+        TerminalResistances? terminals = null;
         List<IndexEntry> index = [];
         Want left = Want.None; // to the probes
         if ((plan.Want & ~Want.Components) != 0)
@@ -83,7 +87,7 @@ public static class EstimateRun
                 }
                 probed = phases.Do("solving", plan.TargetError is null ? plan.MostProbes : null, "probes",
                     () => ProbedEstimates.Run(
-                        blocks, Left(), inputs, exact?.ExactBlocks, exactPairs, !route.AllExact, audit?.Pairs, solver,
+                        blocks, Left(left), inputs, exact?.ExactBlocks, exactPairs, !route.AllExact, audit?.Pairs, solver,
                         observer, cancel));
             }
             if ((plan.Want & (Want.Index | Want.Nodes)) != 0)
@@ -99,8 +103,13 @@ public static class EstimateRun
         }
         if (plan.Want.HasFlag(Want.Nodes))
         {
-            Write("nodes", Tables.Nodes(label), network.NodeCount,
-                w => NodeRows.WriteNodes(network, nodes!, plan.Confidence, w, cancel));
+            if (inputs.Terminals is { } shorted)
+            {
+                terminals = phases.Do("finding resistances to terminals", null, "probes",
+                    () => TerminalResistances.Of(network, shorted, Left(plan.Want), observer, cancel));
+            }
+            Write("nodes", Tables.Nodes(label, terminals is not null), network.NodeCount,
+                w => NodeRows.WriteNodes(network, nodes!, terminals?.Values, plan.Confidence, w, cancel));
         }
         if (plan.Want.HasFlag(Want.Pairs))
         {
@@ -154,11 +163,12 @@ public static class EstimateRun
             },
             Probing = probed?.Facts,
             Audit = audited,
+            Terminals = terminals?.Facts,
             Phases = phases.Times,
             Rows = rows,
         };
 
-        EstimatePlan Left() => plan with { Want = left, TimeBudget = plan.TimeBudget - Stopwatch.GetElapsedTime(begin) };
+        EstimatePlan Left(Want want) => plan with { Want = want, TimeBudget = plan.TimeBudget - Stopwatch.GetElapsedTime(begin) };
 
         LinkRows WalkLinks()
         {

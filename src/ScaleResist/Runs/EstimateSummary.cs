@@ -50,7 +50,7 @@ public sealed record IndexEntry
     public required int Probes { get; init; }
 }
 
-/// <summary>A link that much depends on: bridges by the nodes they cut off, then links by spanning probability.</summary>
+/// <summary>A link that much depends on: bridges by the nodes they cut off, then links by the loss impact.</summary>
 public sealed record CriticalLink
 {
     /// <summary>Label of one end.</summary>
@@ -67,6 +67,18 @@ public sealed record CriticalLink
 
     /// <summary>For a bridge, the nodes on its smaller side; else null.</summary>
     public long? NodesCutOff { get; init; }
+
+    /// <summary>How much the Kirchhoff index of the component rises when the link is lost; null for a bridge.</summary>
+    public Estimate? LossImpact { get; init; }
+
+    /// <summary>Its place among all links by loss impact, 1 the highest; null for a bridge.</summary>
+    public int? LossRank { get; init; }
+
+    /// <summary>The best rank that the intervals allow; the rank itself where all is exact.</summary>
+    public int? LossRankLower { get; init; }
+
+    /// <summary>The worst rank that the intervals allow.</summary>
+    public int? LossRankUpper { get; init; }
 }
 
 /// <summary>How the solves went.</summary>
@@ -191,6 +203,25 @@ public sealed record ExactFacts
     public required long ForecastBytes { get; init; }
 }
 
+/// <summary>Resistances to terminals.</summary>
+public sealed record TerminalFacts
+{
+    /// <summary>Nodes that were shorted into one.</summary>
+    public required int Terminals { get; init; }
+
+    /// <summary>Nodes of components without a terminal: their resistance is infinite.</summary>
+    public required int NodesWithout { get; init; }
+
+    /// <summary>Components without a terminal.</summary>
+    public required int ComponentsWithout { get; init; }
+
+    /// <summary><c>exact</c> or <c>probe</c>.</summary>
+    public required string Method { get; init; }
+
+    /// <summary>Probes of the shorted network; 0 where exact.</summary>
+    public required int Probes { get; init; }
+}
+
 /// <summary>Wall time of a phase.</summary>
 /// <param name="Name">The phase as the observer saw it.</param>
 /// <param name="Seconds">Wall-clock seconds.</param>
@@ -214,7 +245,7 @@ public sealed record EstimateSummary
     /// <summary>Rows of the index table: all components where the index was wanted, else empty.</summary>
     public required IReadOnlyList<IndexEntry> Index { get; init; }
 
-    /// <summary>The five most critical links; empty where links were not wanted.</summary>
+    /// <summary>Up to five bridges that cut off most, then up to twenty links of the highest loss impact; empty where links were not wanted.</summary>
     public required IReadOnlyList<CriticalLink> CriticalLinks { get; init; }
 
     /// <summary>Sum over components of the estimated spanning probabilities, or null where nothing was probed.</summary>
@@ -231,6 +262,9 @@ public sealed record EstimateSummary
 
     /// <summary>The audit of the probes, or null without one.</summary>
     public required AuditFacts? Audit { get; init; }
+
+    /// <summary>Resistances to terminals, or null without them.</summary>
+    public TerminalFacts? Terminals { get; init; }
 
     /// <summary>Phases in order.</summary>
     public required IReadOnlyList<PhaseTime> Phases { get; init; }

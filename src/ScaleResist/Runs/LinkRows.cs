@@ -11,9 +11,8 @@ internal sealed class LinkRows
 {
     private const int BatchRows = 1 << 20;
     private const int PartRows = 1 << 14;
-    private const int MostCritical = 5;
     private readonly Network network;
-    private readonly List<(double Weight, LinkResult Link)> critical = [];
+    private readonly CriticalLinks critical = new();
 
     private LinkRows(Network network)
     {
@@ -24,8 +23,8 @@ internal sealed class LinkRows
     /// <summary>Sum of spanning probabilities by component.</summary>
     public double[] FosterSums { get; }
 
-    /// <summary>The most critical links, first the bridges that cut off most, then by spanning probability.</summary>
-    public IReadOnlyList<CriticalLink> Critical => [.. critical.Select(entry => Show(entry.Link))];
+    /// <summary>The bridges that cut off most, then the links whose loss raises the Kirchhoff index most; ranked where rows were written.</summary>
+    public IReadOnlyList<CriticalLink> Critical => critical.Show(network.Labels);
 
     /// <summary>Estimates every link, adds up, and writes rows where a writer is given.</summary>
     public static LinkRows Walk(
@@ -53,40 +52,17 @@ internal sealed class LinkRows
                 while (results[i].Source >= network.Components[component].End)
                     component++;
                 rows.FosterSums[component] += results[i].Conductance * results[i].Resistance.Value;
-                rows.Rank(results[i]);
+                if (batch is not null)
+                    rows.critical.Add(results[i]);
                 batch?.Component[i] = component;
             }
             if (batch is not null)
                 writer!.Write(batch.ToRows());
             observer.Report(first + count);
         }
+        if (writer is not null)
+            rows.critical.Rank(resistances, network.LinkCount, threads, cancel);
         return rows;
-    }
-
-    private void Rank(in LinkResult link)
-    {
-        double weight = link.IsBridge ? 1 + link.NodesCutOff : link.SpanningProbability;
-        if (critical.Count == MostCritical && weight <= critical[^1].Weight)
-            return;
-        int at = critical.Count;
-        while (at > 0 && critical[at - 1].Weight < weight)
-            at--;
-        critical.Insert(at, (weight, link));
-        if (critical.Count > MostCritical)
-            critical.RemoveAt(MostCritical);
-    }
-
-    private CriticalLink Show(LinkResult link)
-    {
-        (int source, int target) = Batch.InLabelOrder(network.Labels, link);
-        return new CriticalLink
-        {
-            Source = network.Labels[source],
-            Target = network.Labels[target],
-            Resistance = link.Resistance,
-            SpanningProbability = link.SpanningProbability,
-            NodesCutOff = link.IsBridge ? link.NodesCutOff : null,
-        };
     }
 
     private sealed class Batch(NodeLabels labels, int count)

@@ -31,7 +31,7 @@ internal static class NodeRows
 
     /// <summary>The nodes table.</summary>
     public static void WriteNodes(
-        Network network, NodeSums sums, double confidence, ITableWriter writer, CancellationToken cancel)
+        Network network, NodeSums sums, Estimate[]? toTerminals, double confidence, ITableWriter writer, CancellationToken cancel)
     {
         int[] componentOf = network.ComponentOfNodes();
         double[] trace = new double[network.Components.Count];
@@ -66,8 +66,13 @@ internal static class NodeRows
                 rankUpper[i] = ranks.Upper[u];
                 method[i] = (exact[c] ? ResistanceMethod.Exact : ResistanceMethod.Probe).Name();
             }
+            Array[] terminals = toTerminals is null ? [] :
+            [
+                Array.ConvertAll(toTerminals[start..(start + count)], r => r.Value),
+                Array.ConvertAll(toTerminals[start..(start + count)], r => r.StandardError),
+            ];
             writer.Write(new RowBatch(
-                count, [node, component, degree, strength, value, error, total, closeness, rank, rankLower, rankUpper, method]));
+                count, [node, component, degree, strength, value, error, total, closeness, rank, rankLower, rankUpper, method, .. terminals]));
         });
     }
 

@@ -37,8 +37,8 @@ public static class Tables
         new("component_id", ColumnKind.Int64),
     ]);
 
-    /// <summary>One row a node.</summary>
-    public static TableDefinition Nodes(ColumnKind label) => new("nodes",
+    /// <summary>One row a node; with terminals two more columns.</summary>
+    public static TableDefinition Nodes(ColumnKind label, bool terminals = false) => new("nodes",
     [
         new("node", label),
         new("component_id", ColumnKind.Int64),
@@ -52,6 +52,9 @@ public static class Tables
         new("rank_lower", ColumnKind.Int64),
         new("rank_upper", ColumnKind.Int64),
         new("method", ColumnKind.Text),
+        .. terminals
+            ? (ColumnDefinition[])[new("resistance_to_terminals", ColumnKind.Double), new("resistance_to_terminals_se", ColumnKind.Double)]
+            : [],
     ]);
 
     /// <summary>One row a link.</summary>

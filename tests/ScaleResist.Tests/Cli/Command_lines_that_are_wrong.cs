@@ -65,7 +65,7 @@ public sealed class Command_lines_that_are_wrong
     [InlineData("estimate n.csv --lake l --time-budget 4", "4h, 90m or 30s")]
     [InlineData("estimate n.csv --lake l --memory-budget 16", "16GiB or 500MB")]
     [InlineData("estimate n.csv --lake l --shard 1/4", "--shard is not in this version")]
-    [InlineData("estimate n.csv --lake l --terminals t.csv", "--terminals is not in this version")]
+    [InlineData("estimate n.csv --lake l --terminals t.csv --want links", "--terminals serves the nodes table")]
     public void Exit_2_and_one_line_with_the_mend(string line, string part)
     {
         FakeEngine engine = new();
