@@ -6,6 +6,7 @@ using System.Text.Json;
 using System.Text.Json.Nodes;
 using System.Text.Json.Serialization;
 using ScaleResist.Cli.Commands;
+using ScaleResist.Estimating;
 using ScaleResist.Graphs;
 using ScaleResist.Runs;
 
@@ -61,6 +62,9 @@ internal sealed record RunRecord
 
     public required AuditFacts? Audit { get; init; }
 
+    /// <summary>Algebraic connectivity and weakest cut of the largest component, or null.</summary>
+    public required ConnectivityFacts? Connectivity { get; init; }
+
     /// <summary>Resistances to terminals, or null without them.</summary>
     public required TerminalFacts? Terminals { get; init; }
 
@@ -98,6 +102,7 @@ internal sealed record RunRecord
             Solver = outcome.Summary.Solver,
             Probing = outcome.Summary.Probing,
             Audit = outcome.Summary.Audit,
+            Connectivity = outcome.Summary.Connectivity,
             Terminals = outcome.Summary.Terminals,
             Foster = FosterCheck.Of(outcome.Summary),
             Index = [.. outcome.Summary.Index.Take(MostIndexRows)],

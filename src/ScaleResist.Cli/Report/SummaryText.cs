@@ -38,6 +38,12 @@ internal static class SummaryText
                 + (record.Network.Components > 1 ? " (largest component)" : "")
                 + $"; mean resistance {Numbers.Value(largest.MeanResistance, 5)}");
         }
+        if (record.Connectivity is ConnectivityFacts cut)
+        {
+            yield return Entry("weak cut", $"{Numbers.Count(cut.SmallerSide)} and {Numbers.Many(cut.LargerSide, "node")}, "
+                + $"{Numbers.Many(cut.LinksCut, "link")} of conductance {Numbers.Value(cut.ConductanceCut, 4)} between them; algebraic connectivity "
+                + (cut.Settled ? Numbers.Value(cut.Value, 8) : $"at most {Numbers.Value(cut.Value, 3)}"));
+        }
         if (record.Foster is FosterCheck foster)
         {
             yield return Entry("Foster", $"spanning probabilities sum to {Numbers.Value(foster.Sum, 7)}; nodes minus components "

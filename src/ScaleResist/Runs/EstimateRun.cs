@@ -58,6 +58,7 @@ public static class EstimateRun
         NodeSums? nodes = null;
         LinkRows? links = null;
         TerminalResistances? terminals = null;
+        ConnectivityFacts? connectivity = null;
         List<IndexEntry> index = [];
         Want left = Want.None; // to the probes
         if ((plan.Want & ~Want.Components) != 0)
@@ -68,6 +69,9 @@ public static class EstimateRun
                 exact = phases.Do("factorising", route.Forecast!.Entries, "entries",
                     () => ExactResults.Of(route.Part, route.Symbolic!, route.Laplacian!, inputs.NodeWeights, plan.Want.HasFlag(Want.Links), plan.Threads, cancel));
             }
+            bool wantsCut = plan.Want.HasFlag(Want.Index) && network.Components[0].Nodes > 1;
+            if (wantsCut && exact?.Part.HoldsComponent(0) == true)
+                connectivity = phases.Do("finding the weakest cut", null, "solves", () => Connectivity.Exactly(exact, plan));
             // Of the exact results only pairs still need the factor; its memory is free for the tables.
             if (exact is not null && plan.Want.HasFlag(Want.Pairs))
                 exactPairs = new ExactPairs(exact);
@@ -90,6 +94,11 @@ public static class EstimateRun
                         blocks, Left(left), inputs, exact?.ExactBlocks, exactPairs, !route.AllExact, audit?.Pairs, solver,
                         observer, cancel));
             }
+            if (wantsCut && connectivity is null)
+            {
+                connectivity = phases.Do("finding the weakest cut", null, "solves", () => Connectivity.BySolves(
+                    network, solver ?? new LaplacianSolver(network, 1, plan.Seed, cancel), probed?.Facts?.Probes ?? 0, plan, cancel));
+            }
             if ((plan.Want & (Want.Index | Want.Nodes)) != 0)
                 nodes = probed?.Nodes ?? new NodeSums(blocks, inputs.NodeWeights, exact?.ExactBlocks);
             links = WalkLinks();
@@ -98,7 +107,7 @@ public static class EstimateRun
         }
         if (plan.Want.HasFlag(Want.Index))
         {
-            index = IndexRows.Of(network, nodes!, links!.FosterSums, exact?.LogSpanningTrees, plan.Confidence);
+            index = IndexRows.Of(network, nodes!, links!.FosterSums, exact?.LogSpanningTrees, connectivity, plan.Confidence);
             Write("index", Tables.Index, index.Count, w => IndexRows.Write(index, w));
         }
         if (plan.Want.HasFlag(Want.Nodes))
@@ -164,6 +173,7 @@ public static class EstimateRun
             Probing = probed?.Facts,
             Audit = audited,
             Terminals = terminals?.Facts,
+            Connectivity = connectivity,
             Phases = phases.Times,
             Rows = rows,
         };

@@ -263,6 +263,9 @@ public sealed record EstimateSummary
     /// <summary>The audit of the probes, or null without one.</summary>
     public required AuditFacts? Audit { get; init; }
 
+    /// <summary>Algebraic connectivity and weakest cut of the largest component, or null where they were not looked for.</summary>
+    public ConnectivityFacts? Connectivity { get; init; }
+
     /// <summary>Resistances to terminals, or null without them.</summary>
     public TerminalFacts? Terminals { get; init; }
 

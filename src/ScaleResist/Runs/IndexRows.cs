@@ -9,7 +9,7 @@ namespace ScaleResist.Runs;
 internal static class IndexRows
 {
     /// <summary>Computes the entries; trees are exact, a single node with Kirchhoff index 0.</summary>
-    public static List<IndexEntry> Of(Network network, NodeSums sums, double[] fosterSums, double[]? logSpanningTrees, double confidence)
+    public static List<IndexEntry> Of(Network network, NodeSums sums, double[] fosterSums, double[]? logSpanningTrees, ConnectivityFacts? connectivity, double confidence)
     {
         List<IndexEntry> entries = new(network.Components.Count);
         for (int c = 0; c < network.Components.Count; c++)
@@ -33,6 +33,7 @@ internal static class IndexRows
                 NodeWeightedKirchhoffIndex = sums.WeightedKirchhoffIndex(c, confidence)?.Value,
                 FosterSum = fosterSums[c],
                 LogSpanningTrees = logSpanningTrees is not null && double.IsFinite(logSpanningTrees[c]) ? logSpanningTrees[c] : null,
+                AlgebraicConnectivity = c == 0 && connectivity is { Settled: true } ? connectivity.Value : null,
                 Method = (exact ? ResistanceMethod.Exact : ResistanceMethod.Probe).Name(),
                 Probes = exact ? 0 : sums.Probes,
             });

@@ -5,52 +5,66 @@ using ScaleResist.DataGen.Networks;
 using ScaleResist.Graphs;
 using ScaleResist.Runs;
 using ScaleResist.Tests.Runs;
-using Xunit.Abstractions;
 
 namespace ScaleResist.Tests.Estimating;
 
-public sealed class LossAccuracyTests(ITestOutputHelper output)
+public sealed class LossAccuracyTests
 {
+    // Plain squares, sqrt(2/K), would be off by 0.25 at K = 32: what the two entries that the other probes know are worth shows in the bounds.
     [Theory]
-    [InlineData(Family.Preferential, 1000, 5000L, 0)]
-    [InlineData(Family.SmallWorld, 1000, 3000L, 0)]
-    [InlineData(Family.Grid, 900, null, 0)]
-    [InlineData(Family.Road, 1000, null, 0)]
-    [InlineData(Family.Grid, 900, null, 4)]
-    [InlineData(Family.Fringe, 1000, null, 0)]
-    public void Intervals_cover_and_errors_are_as_foretold(Family family, int nodes, long? links, double decades)
+    [InlineData(Family.Preferential, 1000, 5000L, 0, 0.07)]
+    [InlineData(Family.SmallWorld, 1000, 3000L, 0, 0.16)]
+    [InlineData(Family.Grid, 900, null, 0, 0.22)]
+    [InlineData(Family.Grid, 900, null, 4, 0.30)]
+    [InlineData(Family.Road, 1000, null, 0, 0.35)]
+    [InlineData(Family.Fringe, 1000, null, 0, 0.25)]
+    public void Intervals_cover_and_errors_are_as_foretold(Family family, int nodes, long? links, double decades, double most)
     {
-        foreach (int probes in new[] { 16, 32, 128 })
+        double held = 0, count = 0, squares = 0, foretold = 0;
+        for (ulong seed = 1; seed <= 3; seed++)
         {
-            double held = 0, count = 0, squares = 0, foretold = 0;
-            for (ulong seed = 1; seed <= 5; seed++)
-            {
-                Network network = TestNetworks.Of(family, nodes, links, seed, decades);
-                (double h, double c, double s, double f) = Compare(network, probes, seed);
-                held += h; count += c; squares += s; foretold += f;
-            }
-            output.WriteLine($"{family} {decades} K={probes}: covered {held / count:0.000}, rms {Math.Sqrt(squares / count):0.000}, foretold {Math.Sqrt(foretold / count):0.000}");
+            (double h, double c, double s, double f) = Compare(TestNetworks.Of(family, nodes, links, seed, decades), 32, seed);
+            (held, count, squares, foretold) = (held + h, count + c, squares + s, foretold + f);
         }
+        Assert.InRange(held / count, 0.90, 0.98);
+        Assert.InRange(Math.Sqrt(squares / count), 0, most);
+        Assert.InRange(Math.Sqrt(squares / foretold), 0.8, 1.25);
     }
 
     [Fact]
-    public void Power()
+    public void In_the_power_network_128_probes_find_the_ten_worst_losses_among_their_first_twenty()
     {
         Network network = TestNetworks.Open("power.tsv");
-        foreach (int probes in new[] { 32, 64, 128 })
+        (double held, double count, _, _) = Compare(network, 128, 1);
+        Assert.InRange(held / count, 0.93, 0.97);
+        IReadOnlyList<CriticalLink> truth = Critical(network, new EstimatePlan { Route = Route.Exact, Want = Want.Links });
+        for (ulong seed = 1; seed <= 3; seed++)
         {
-            (double h, double c, double s, double f) = Compare(network, probes, 1);
-            output.WriteLine($"power K={probes}: covered {h / c:0.000}, rms {Math.Sqrt(s / c):0.000}, foretold {Math.Sqrt(f / c):0.000}");
-            double?[] truth = Run(network, new EstimatePlan { Route = Route.Exact, Want = Want.Links })["links"].Column<double?>("loss_impact");
-            for (ulong seed = 1; seed <= 10; seed++)
-            {
-                double?[] found = Run(network, new EstimatePlan { Route = Route.Probe, Probes = probes, Seed = seed, Want = Want.Links })["links"].Column<double?>("loss_impact");
-                int[] top = [.. Enumerable.Range(0, found.Length).OrderByDescending(i => found[i] ?? 0).Take(20)];
-                int[] best = [.. Enumerable.Range(0, found.Length).OrderByDescending(i => truth[i] ?? 0).Take(10)];
-                output.WriteLine($"in top 20: {best.Count(top.Contains)} of 10");
-            }
-            output.WriteLine(string.Join(" ", truth.Select(t => t ?? 0).OrderDescending().Take(25).Select(t => t.ToString("0.00e0"))));
+            IReadOnlyList<CriticalLink> found = Critical(network, new EstimatePlan { Route = Route.Probe, Probes = 128, Seed = seed, Want = Want.Links });
+            (string, string)[] first = [.. found.Select(link => (link.Source, link.Target))];
+            Assert.Equal(20, found.Count);
+            Assert.All(truth.Take(10), link => Assert.Contains((link.Source, link.Target), first));
+            // The rank intervals hold the true ranks of most.
+            Assert.InRange(truth.Count(link => found.Any(other => (other.Source, other.Target) == (link.Source, link.Target)
+                && other.LossRankLower <= link.LossRank && link.LossRank <= other.LossRankUpper)), 10, 20);
+            Assert.All(found, link => Assert.True(link.LossRankLower <= link.LossRank && link.LossRank <= link.LossRankUpper));
         }
+
+        static IReadOnlyList<CriticalLink> Critical(Network network, EstimatePlan plan) =>
+            [.. EstimateRun.Execute(network, plan, new EstimateInputs(), new MemorySink(), new SilentObserver(), default)
+                .CriticalLinks.Where(link => link.LossRank is not null)];
+    }
+
+    [Fact]
+    public void Probed_impacts_are_the_same_to_the_bit_with_1_2_and_3_threads()
+    {
+        Network network = TestNetworks.Of(Family.Fringe, 12_000);
+        double?[] one = Impacts(1);
+        Assert.Equal(one, Impacts(2));
+        Assert.Equal(one, Impacts(3));
+
+        double?[] Impacts(int threads) => Run(
+            network, new EstimatePlan { Route = Route.Probe, Probes = 40, Threads = threads, Want = Want.Links })["links"].Column<double?>("loss_impact");
     }
 
     private static (double Held, double Count, double Squares, double Foretold) Compare(Network network, int probes, ulong seed)
