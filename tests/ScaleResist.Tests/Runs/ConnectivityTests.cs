@@ -80,7 +80,7 @@ public sealed class ConnectivityTests
         for (int seed = 1; seed <= 5; seed++)
         {
             Network network = TestNetworks.Random(80, 160, seed, 1);
-            double[] weights = [.. Enumerable.Range(0, 80).Select(i => i * seed % 5.0)];
+            double[] weights = [.. Enumerable.Range(0, 80).Select(i => i * seed % 7.0)];
             double[] strengths = network.Strengths;
             Matrix<double> walk = Matrix<double>.Build.Dense(80, 80, (i, j) =>
                 i == j ? 0 : -network.DenseLaplacian()[i, j] / Math.Sqrt(strengths[i] * strengths[j]));
