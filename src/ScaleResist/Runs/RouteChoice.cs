@@ -76,7 +76,7 @@ internal sealed class RouteChoice
     }
 
     // Without the ground's row the rest of an order fills in no more than with it.
-    private static int[] GroundLast(int[] order, int ground)
+    internal static int[] GroundLast(int[] order, int ground)
     {
         int at = Array.IndexOf(order, ground);
         Array.Copy(order, at + 1, order, at, order.Length - at - 1);
