@@ -5,20 +5,20 @@ using System.Runtime.Intrinsics;
 
 namespace ScaleResist.Kernels;
 
-/// <summary>Sums over rows of n x 8 doubles.</summary>
+/// <summary>Sums over rows of n x 8 doubles; w = 1 where weights are null.</summary>
 internal static unsafe class GramKernels
 {
     private const int Width = 8;
     private const int Chunk = 1024; // rows summed on their own, so that rounding grows with n / Chunk + Chunk
 
-    /// <summary>sums_ij += sum over rows u of w_u a_ui b_uj, 8 x 8, row-major; w = 1 where <paramref name="weights"/> is null.</summary>
+    /// <summary>sums_ij += sum over rows u of w_u a_ui b_uj, 8 x 8, row-major.</summary>
     public static void AddProducts(double* a, double* b, double* weights, int start, int end, double* sums)
     {
         for (int first = start; first < end; first += Chunk)
         {
             int last = Math.Min(end, first + Chunk);
             if (PanelKernels.Scalar)
-                Twin(a, b, weights, first, last, sums);
+                GramKernelTwins.Products(a, b, weights, first, last, sums);
             else
                 Products(a, b, weights, first, last, sums);
         }
@@ -27,65 +27,52 @@ internal static unsafe class GramKernels
     /// <summary>sums_j += sum over rows u of w_u a_uj, 8 of them.</summary>
     public static void AddRows(double* a, double* weights, int start, int end, double* sums)
     {
-        double* part = stackalloc double[Width];
         for (int first = start; first < end; first += Chunk)
         {
             int last = Math.Min(end, first + Chunk);
             if (PanelKernels.Scalar)
-            {
-                new Span<double>(part, Width).Clear();
-                for (int u = first; u < last; u++)
-                {
-                    for (int j = 0; j < Width; j++)
-                        part[j] = Math.FusedMultiplyAdd(weights == null ? 1 : weights[u], a[((long)u * Width) + j], part[j]);
-                }
-                for (int j = 0; j < Width; j++)
-                    sums[j] += part[j];
-                continue;
-            }
-            Vector512<double> sum = default;
-            for (int u = first; u < last; u++)
-            {
-                Vector512<double> w = Vector512.Create(weights == null ? 1 : weights[u]);
-                sum = Vector512.FusedMultiplyAdd(w, Vector512.Load(a + ((long)u * Width)), sum);
-            }
-            (Vector512.Load(sums) + sum).Store(sums);
+                GramKernelTwins.Rows(a, weights, first, last, sums);
+            else
+                Rows(a, weights, first, last, sums);
         }
     }
 
     /// <summary>sums_j += sum over rows u of w_u a_uj^2, 8 of them.</summary>
     public static void AddSquares(double* a, double* weights, int start, int end, double* sums)
     {
-        double* part = stackalloc double[Width];
         for (int first = start; first < end; first += Chunk)
         {
             int last = Math.Min(end, first + Chunk);
             if (PanelKernels.Scalar)
-            {
-                new Span<double>(part, Width).Clear();
-                for (int u = first; u < last; u++)
-                {
-                    for (int j = 0; j < Width; j++)
-                    {
-                        double x = a[((long)u * Width) + j];
-                        part[j] = Math.FusedMultiplyAdd(x * (weights == null ? 1 : weights[u]), x, part[j]);
-                    }
-                }
-                for (int j = 0; j < Width; j++)
-                    sums[j] += part[j];
-                continue;
-            }
-            Vector512<double> sum = default;
-            for (int u = first; u < last; u++)
-            {
-                Vector512<double> x = Vector512.Load(a + ((long)u * Width));
-                sum = Vector512.FusedMultiplyAdd(x * Vector512.Create(weights == null ? 1 : weights[u]), x, sum);
-            }
-            (Vector512.Load(sums) + sum).Store(sums);
+                GramKernelTwins.Squares(a, weights, first, last, sums);
+            else
+                Squares(a, weights, first, last, sums);
         }
     }
 
-    private static void Products(double* a, double* b, double* weights, int first, int last, double* sums)
+    internal static void Rows(double* a, double* weights, int first, int last, double* sums)
+    {
+        Vector512<double> sum = default;
+        for (int u = first; u < last; u++)
+        {
+            Vector512<double> w = Vector512.Create(weights == null ? 1 : weights[u]);
+            sum = Vector512.FusedMultiplyAdd(w, Vector512.Load(a + ((long)u * Width)), sum);
+        }
+        (Vector512.Load(sums) + sum).Store(sums);
+    }
+
+    internal static void Squares(double* a, double* weights, int first, int last, double* sums)
+    {
+        Vector512<double> sum = default;
+        for (int u = first; u < last; u++)
+        {
+            Vector512<double> x = Vector512.Load(a + ((long)u * Width));
+            sum = Vector512.FusedMultiplyAdd(x * Vector512.Create(weights == null ? 1 : weights[u]), x, sum);
+        }
+        (Vector512.Load(sums) + sum).Store(sums);
+    }
+
+    internal static void Products(double* a, double* b, double* weights, int first, int last, double* sums)
     {
         Vector512<double> s0 = default, s1 = default, s2 = default, s3 = default, s4 = default, s5 = default, s6 = default, s7 = default;
         for (int u = first; u < last; u++)
@@ -103,34 +90,15 @@ internal static unsafe class GramKernels
             s6 = Vector512.FusedMultiplyAdd(Vector512.Create(x[6]), y, s6);
             s7 = Vector512.FusedMultiplyAdd(Vector512.Create(x[7]), y, s7);
         }
-        Add(s0, 0);
-        Add(s1, 1);
-        Add(s2, 2);
-        Add(s3, 3);
-        Add(s4, 4);
-        Add(s5, 5);
-        Add(s6, 6);
-        Add(s7, 7);
-
-        void Add(Vector512<double> sum, int row) => (Vector512.Load(sums + (row * Width)) + sum).Store(sums + (row * Width));
+        Add(sums, s0);
+        Add(sums + 8, s1);
+        Add(sums + 16, s2);
+        Add(sums + 24, s3);
+        Add(sums + 32, s4);
+        Add(sums + 40, s5);
+        Add(sums + 48, s6);
+        Add(sums + 56, s7);
     }
 
-    private static void Twin(double* a, double* b, double* weights, int first, int last, double* sums)
-    {
-        double* part = stackalloc double[Width * Width];
-        new Span<double>(part, Width * Width).Clear();
-        for (int u = first; u < last; u++)
-        {
-            for (int i = 0; i < Width; i++)
-            {
-                for (int j = 0; j < Width; j++)
-                {
-                    double y = b[((long)u * Width) + j] * (weights == null ? 1 : weights[u]);
-                    part[(i * Width) + j] = Math.FusedMultiplyAdd(a[((long)u * Width) + i], y, part[(i * Width) + j]);
-                }
-            }
-        }
-        for (int k = 0; k < Width * Width; k++)
-            sums[k] += part[k];
-    }
+    private static void Add(double* to, Vector512<double> sum) => (Vector512.Load(to) + sum).Store(to);
 }
