@@ -89,8 +89,8 @@ internal sealed class ParquetNamedRows : INamedRows
             : type == typeof(sbyte) ? Numbers<sbyte>() : type == typeof(ulong) ? Numbers<ulong>() : type == typeof(uint) ? Numbers<uint>()
             : type == typeof(ushort) ? Numbers<ushort>() : type == typeof(byte) ? Numbers<byte>() : type == typeof(float) ? Numbers<float>()
             : type == typeof(double) ? Numbers<double>() : type == typeof(decimal) ? Numbers<decimal>()
-            : throw new InputException(path, null, $"the column '{InputException.Show(column.Name)}' of type {type.Name} cannot be read as text or numbers",
-                "cast it to VARCHAR");
+            : throw new InputException(path, null,
+                $"the column '{InputException.Show(column.Name)}' of type {type.Name} cannot be read as text or numbers", "cast it to VARCHAR");
 
         Task<string[]> Numbers<T>()
             where T : struct, IFormattable => Texts<T>(group, column, count, number => number.ToString(null, CultureInfo.InvariantCulture), ct);

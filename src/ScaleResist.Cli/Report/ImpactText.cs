@@ -1,5 +1,6 @@
 // What a person reads after an impact run, in at most 25 lines.
 
+using System.Globalization;
 using ScaleResist.Graphs;
 using ScaleResist.Runs;
 
@@ -16,8 +17,9 @@ internal static class ImpactText
         ImpactSummary impact = record.Impact;
         foreach (string line in SummaryText.OfInput(record.Input, record.Cleaning, impact.Nodes, impact.Links))
             yield return line;
-        yield return SummaryText.Entry("Kirchhoff", $"index {Numbers.Value(impact.KirchhoffIndex.Value, impact.KirchhoffIndex.StandardError == 0 ? 12 : 6)}"
-            + (impact.KirchhoffIndex.StandardError == 0 ? ", exact" : $" +- {Numbers.Value(impact.KirchhoffIndex.StandardError, 2)}")
+        (double index, double error) = (impact.KirchhoffIndex.Value, impact.KirchhoffIndex.StandardError);
+        yield return SummaryText.Entry("Kirchhoff",
+            (error == 0 ? $"index {Numbers.Value(index, 12)}, exact" : $"index {Numbers.Value(index)} +- {Numbers.Value(error, 2)}")
             + (impact.Components > 1 ? $" (largest of {Numbers.Count(impact.Components)} components)" : ""));
         if (impact.Cases > 0)
         {
@@ -66,10 +68,13 @@ internal static class ImpactText
 
     private static string Case(CaseLine line)
     {
-        string share = line.Before > 0 ? $" ({(line.Change.Value / line.Before).ToString("+0.00 %;-0.00 %;0 %", System.Globalization.CultureInfo.InvariantCulture)})" : "";
-        return InputException.Show(line.Case) + ": "
-            + (line.NodesCutOff > 0 ? $"cuts off {Numbers.Many(line.NodesCutOff, "node")}, {Numbers.Many(line.ComponentsAfter, "part")}; index of the largest " : "index ")
-            + $"{(line.Change.Value > 0 ? "+" : "")}{Numbers.Value(line.Change.Value)}{share}"
+        double share = line.Before > 0 ? line.Change.Value / line.Before : 0;
+        string cut = line.NodesCutOff > 0
+            ? $"cuts off {Numbers.Many(line.NodesCutOff, "node")}, {Numbers.Many(line.ComponentsAfter, "part")}; index of the largest "
+            : "index ";
+        return $"{InputException.Show(line.Case)}: {cut}"
+            + $"{(line.Change.Value > 0 ? "+" : "")}{Numbers.Value(line.Change.Value)}"
+            + $" ({share.ToString("+0.00 %;-0.00 %;0 %", CultureInfo.InvariantCulture)})"
             + (line.Change.StandardError > 0 ? $" +- {Numbers.Value(line.Change.StandardError, 2)}" : "");
     }
 }

@@ -25,9 +25,6 @@ internal sealed unsafe class ExactPotentials : Potentials
     /// <inheritdoc/>
     public override ResistanceMethod Method => ResistanceMethod.Exact;
 
-    /// <inheritdoc/>
-    public override long WorkspaceBytes => BytesPerThread(Network);
-
     /// <summary>Bytes that the workspace of one thread takes.</summary>
     public static long BytesPerThread(Network network) => network.NodeCount * (network.Components.Count == 1 ? 64L : 128L);
 
@@ -149,7 +146,8 @@ internal sealed unsafe class ExactPotentials : Potentials
     {
         Component range = Network.Components[component];
         long bytes = (range.Nodes - 1) * 64L;
-        double* ofNodes = nodes.Pointer + ((range.Start + 1L) * PanelPair.Half), ofRows = rows.Pointer + ((range.Start + 1L - component) * PanelPair.Half);
+        double* ofNodes = nodes.Pointer + ((range.Start + 1L) * PanelPair.Half);
+        double* ofRows = rows.Pointer + ((range.Start + 1L - component) * PanelPair.Half);
         if (!toRows)
             nodes.Row(range.Start).Clear();
         Buffer.MemoryCopy(toRows ? ofNodes : ofRows, toRows ? ofRows : ofNodes, bytes, bytes);

@@ -1,7 +1,7 @@
 // Candidates where nobody names any: all pairs that no link joins in a small component, else those among nodes spread far apart electrically.
 //
-// Landmarks by farthest points (Gonzalez, Theor. Comput. Sci. 38:293, 1985): the first has the largest diagonal of L+, each next the largest resistance
-// to the nearest landmark so far, by weight where nodes have one. A landmark costs one column: R(u,a) = l_u + l_a - 2 (L+ e_a)_u.
+// Landmarks by farthest points (Gonzalez, Theor. Comput. Sci. 38:293, 1985): the first has the largest diagonal of L+, each next the largest
+// resistance to the nearest landmark so far, times its weight where nodes have one. A landmark costs one column: R(u,a) = l_u + l_a - 2 (L+ e_a)_u.
 // Invariant: pairs come in the order of their landmarks, each once, and none is linked.
 
 using ScaleResist.Graphs;

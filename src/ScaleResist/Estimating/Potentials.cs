@@ -45,9 +45,6 @@ internal abstract class Potentials(Network network) : IDisposable
     /// <inheritdoc/>
     public abstract void Dispose();
 
-    /// <summary>Bytes that the workspace of one thread takes.</summary>
-    public abstract long WorkspaceBytes { get; }
-
     protected abstract void SolveColumns(
         PanelPair b, PanelPair x, int used, IReadOnlyCollection<int> components, IDisposable workspace, CancellationToken cancel);
 }

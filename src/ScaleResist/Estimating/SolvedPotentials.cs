@@ -30,9 +30,6 @@ internal sealed class SolvedPotentials : Potentials
     /// <inheritdoc/>
     public override ResistanceMethod Method => ResistanceMethod.Solve;
 
-    /// <inheritdoc/>
-    public override long WorkspaceBytes => BytesPerThread(Network);
-
     /// <summary>Bytes that the workspace of one thread takes: four panels of floats and two pairs of doubles.</summary>
     public static long BytesPerThread(Network network) => network.NodeCount * 512L;
 

@@ -1,15 +1,17 @@
 // Into which parts a case leaves the components that it touches: by search and union, never by the size of a number.
 //
 // Where parts come apart, L' has a larger null space than L, and Woodbury's formula no inverse. So as many lost links as it takes to hold all
-// together are kept as they were. Each is then a bridge, and within a part no resistance knows of it. The strongest are kept, for what is kept must not
-// be weak beside what is lost. Components that no added link joins to the first are held by virtual links in the same way.
+// together are kept as they were. Each is then a bridge, and within a part no resistance knows of it. The strongest are kept, for what is kept
+// must not be weak beside what is lost. Components that no added link joins to the first are held by virtual links in the same way.
 // Invariant: kept links form a forest over the parts; a lost node is a part of its own and counts nowhere.
 
 using ScaleResist.Graphs;
 
 namespace ScaleResist.Estimating;
 
-/// <summary>The parts of one case. The area is what its components are before it; the part that counts is the largest of the largest component's.</summary>
+/// <summary>
+/// The parts of one case. The area is the components that it touches; of what is left of the largest of them, the largest part counts.
+/// </summary>
 internal sealed record CaseParts
 {
     /// <summary>Components of the area, the largest first.</summary>
@@ -33,7 +35,7 @@ internal sealed record CaseParts
     /// <summary>By component of the area, how many of its nodes are in the part that counts.</summary>
     public required int[] Held { get; init; }
 
-    /// <summary>Of the components that are neither wholly in the part that counts nor wholly out: the nodes in it, or those not, whichever are fewer.</summary>
+    /// <summary>Of components neither wholly in the part that counts nor wholly out: the nodes in it, or those not, whichever are fewer.</summary>
     public required int[] Listed { get; init; }
 
     /// <summary>Whether <see cref="Listed"/> are those in it.</summary>
@@ -74,7 +76,8 @@ internal sealed class Splits(Network network, int[] componentOf)
             kept[p] = Root(after, p);
 
         bool[] keptLinks = new bool[planned.Links.Count], keptJoins = new bool[area.Length];
-        foreach (int i in Enumerable.Range(0, keptLinks.Length).Where(i => planned.Links[i].After == 0).OrderByDescending(i => planned.Links[i].Before))
+        IEnumerable<int> losses = Enumerable.Range(0, keptLinks.Length).Where(i => planned.Links[i].After == 0);
+        foreach (int i in losses.OrderByDescending(i => planned.Links[i].Before))
             keptLinks[i] = Join(kept, Raw(planned.Links[i].U), Raw(planned.Links[i].V));
         int[] some = [.. Enumerable.Range(0, area.Length).Select(place => Raw(network.Components[area[place]].Start))];
         for (int i = 1; i < area.Length; i++)

@@ -32,14 +32,15 @@ public static class CandidateReader
             if (componentOf[u] != componentOf[v])
             {
                 throw ChangeReader.Fault(rows,
-                    $"'{InputException.Show(rows[0])}' and '{InputException.Show(rows[1])}' lie in different components, whose index is infinite together",
-                    "leave the row out; a case of --changes says what joining them does");
+                    $"'{InputException.Show(rows[0])}' and '{InputException.Show(rows[1])}' lie in different components",
+                    "leave the row out; a case of --changes says what joining them does to the index");
             }
             double conductance = ChangeReader.Conductance(rows, rows[2]);
             double? cost = null;
             if (rows.Has(3))
             {
-                if (!double.TryParse(rows[3], NumberStyles.Float, CultureInfo.InvariantCulture, out double given) || !(given > 0) || !double.IsFinite(given))
+                bool isNumber = double.TryParse(rows[3], NumberStyles.Float, CultureInfo.InvariantCulture, out double given);
+                if (!isNumber || !(given > 0) || !double.IsFinite(given))
                 {
                     throw ChangeReader.Fault(rows, $"the cost '{InputException.Show(rows[3])}' is not a finite positive number",
                         "give every candidate a cost above zero, or leave the column out");

@@ -42,7 +42,10 @@ public sealed record NamedColumns(IReadOnlyList<string> Required, IReadOnlyList<
             int[] found = [.. Enumerable.Range(0, header.Count)
                 .Where(at => string.Equals(header[at].Trim(), names[i], StringComparison.OrdinalIgnoreCase))];
             if (found.Length > 1)
-                throw new InputException(path, line, $"the column '{names[i]}' stands twice in the header", "give each column its own name");
+            {
+                throw new InputException(path, line, $"the column '{names[i]}' stands twice in the header",
+                    "give each column its own name");
+            }
             if (found.Length == 0 && i < Required.Count)
             {
                 throw new InputException(path, line, $"there is no column '{names[i]}'; the header reads "

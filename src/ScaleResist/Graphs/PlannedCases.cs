@@ -124,8 +124,8 @@ public static class ChangeReader
                 if (change.After > 0 && (lost.Contains(change.U) || lost.Contains(change.V)))
                 {
                     int node = lost.Contains(change.U) ? change.U : change.V;
-                    throw new InputException(path, line, $"the case loses the node '{InputException.Show(network.Labels[node])}' and keeps a link of it",
-                        "leave the link out, or keep the node");
+                    throw new InputException(path, line,
+                        $"the case loses the node '{InputException.Show(network.Labels[node])}' and keeps a link of it", "leave the link out, or keep the node");
                 }
             }
             foreach (int u in lost)

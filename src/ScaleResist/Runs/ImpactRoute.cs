@@ -62,9 +62,10 @@ internal sealed class ImpactRoute : IDisposable
             throw TooMuch(bytes, plan);
         LaplacianSolver solver = phases.Do("preparing", network.LinkCount, "links",
             () => new LaplacianSolver(network, (int)Math.Min(int.MaxValue, columns + plan.Probing.MostProbes), plan.Seed, cancel));
-        ProbedEstimates probed = phases.Do("probing the index", plan.Probing.MostProbes, "probes", () => ProbedEstimates.Run(
-            Blocks.Find(network), plan.Probing with { Route = Route.Probe }, new EstimateInputs { NodeWeights = weights }, null, null, false, null, solver,
-            observer, cancel));
+        EstimatePlan probing = plan.Probing with { Route = Route.Probe };
+        EstimateInputs inputs = new() { NodeWeights = weights };
+        ProbedEstimates probed = phases.Do("probing the index", probing.MostProbes, "probes",
+            () => ProbedEstimates.Run(Blocks.Find(network), probing, inputs, null, null, false, null, solver, observer, cancel));
         SolvedPotentials solved = new(network, solver, probed.Nodes!.Diagonals(0));
         return new ImpactRoute(solved, TotalsOf(solved, weights, probed.Nodes, cancel))
         {
@@ -74,10 +75,10 @@ internal sealed class ImpactRoute : IDisposable
 
         WeightedTotals[] TotalsOf(Potentials potentials, double[]? weights, NodeSums? sums, CancellationToken cancel)
         {
-            WeightedTotals plain = WeightedTotals.Of(
-                potentials, null, sums is null ? null : c => sums.KirchhoffIndex(c, plan.Confidence), cancel);
-            return weights is null ? [plain]
-                : [plain, WeightedTotals.Of(potentials, weights, sums is null ? null : c => sums.WeightedKirchhoffIndex(c, plan.Confidence)!.Value, cancel)];
+            Func<int, Estimate>? index = sums is null ? null : c => sums.KirchhoffIndex(c, plan.Confidence);
+            Func<int, Estimate>? weighted = sums is null ? null : c => sums.WeightedKirchhoffIndex(c, plan.Confidence)!.Value;
+            WeightedTotals plain = WeightedTotals.Of(potentials, null, index, cancel);
+            return weights is null ? [plain] : [plain, WeightedTotals.Of(potentials, weights, weighted, cancel)];
         }
     }
 
@@ -107,8 +108,8 @@ internal sealed class ImpactRoute : IDisposable
     }
 
     private static BudgetException TooMuch(long bytes, ImpactPlan plan) => new(string.Create(CultureInfo.InvariantCulture,
-        $"the run needs about {bytes / 1e9:0.0} GB, and --memory-budget is {plan.MemoryBudget / 1e9:0.0} GB; use fewer --threads, cases of fewer links or "
-        + $"a larger budget"));
+        $"the run needs about {bytes / 1e9:0.0} GB, and --memory-budget is {plan.MemoryBudget / 1e9:0.0} GB; use fewer --threads, "
+        + $"cases of fewer links or a larger budget"));
 }
 
 /// <summary>Times the phases of a run and tells an observer.</summary>

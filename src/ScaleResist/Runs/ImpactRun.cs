@@ -43,7 +43,8 @@ public static class ImpactRun
         string method = route.Potentials.Method.Name();
         if (inputs.Cases is IReadOnlyList<PlannedCase> cases)
         {
-            BasePairs pairs = phases.Do("solving pairs", inputs.Pairs?.Count ?? 0, "pairs", () => PairForms(route.Potentials, inputs.Pairs, componentOf, cancel));
+            BasePairs pairs = phases.Do("solving pairs", inputs.Pairs?.Count ?? 0, "pairs",
+                () => PairForms(route.Potentials, inputs.Pairs, componentOf, cancel));
             ImpactRows rows = new(network, cases, pairs.Ends, method, sink, inputs.Pairs is not null);
             phases.Do("working off cases", cases.Count, "cases", () =>
             {
@@ -56,7 +57,8 @@ public static class ImpactRun
                 rows.Write(first, found);
                 for (int i = 0; i < found.Length; i++)
                 {
-                    CaseLine line = new(cases[first + i].Id, found[i].Change, found[i].Before.Value, found[i].ComponentsAfter, found[i].NodesCutOff);
+                    CaseImpact impact = found[i];
+                    CaseLine line = new(cases[first + i].Id, impact.Change, impact.Before.Value, impact.ComponentsAfter, impact.NodesCutOff);
                     cutting += line.NodesCutOff > 0 ? 1 : 0;
                     worst = [.. worst.Append(line).OrderByDescending(a => a.NodesCutOff).ThenByDescending(a => a.Change.Value).Take(WorstCases)];
                     if (line.NodesCutOff == 0 && line.Change.Value < (best?.Change.Value ?? 0))
@@ -72,7 +74,8 @@ public static class ImpactRun
             offered = candidates.Count;
             GreedyAdditions greedy = phases.Do("trying candidates", candidates.Count, "candidates",
                 () => GreedyAdditions.Of(route.Potentials, kind, candidates, plan.Threads, observer.Report, cancel));
-            additions = phases.Do("choosing additions", plan.Suggest!.Value, "additions", () => greedy.Choose(plan.Suggest!.Value, plan.Budget, cancel));
+            additions = phases.Do("choosing additions", plan.Suggest!.Value, "additions",
+                () => greedy.Choose(plan.Suggest!.Value, plan.Budget, cancel));
             ImpactRows.WriteSuggestions(network, additions, method, sink);
         }
         return new ImpactSummary

@@ -23,7 +23,8 @@ internal sealed class DenseCases
         }
     }
 
-    public sealed record Result(double Before, double After, int Parts, int CutOff, double WeightedBefore, double WeightedAfter, double[] Pairs);
+    public sealed record Result(
+        double Before, double After, int Parts, int CutOff, double WeightedBefore, double WeightedAfter, double[] Pairs);
 
     /// <summary>Applies a case; w are node weights.</summary>
     public Result Apply(PlannedCase planned, double[] w, IReadOnlyList<(int U, int V)> pairs)
@@ -39,7 +40,8 @@ internal sealed class DenseCases
                 after[u, v] = after[v, u] = 0;
         }
         int[] componentOf = network.ComponentOfNodes();
-        int[] area = [.. planned.Links.SelectMany(link => new[] { link.U, link.V }).Concat(planned.LostNodes).Select(u => componentOf[u]).Distinct().Order()];
+        IEnumerable<int> touched = planned.Links.SelectMany(link => new[] { link.U, link.V }).Concat(planned.LostNodes);
+        int[] area = [.. touched.Select(u => componentOf[u]).Distinct().Order()];
         int[] first = [.. Enumerable.Range(0, network.NodeCount).Where(u => componentOf[u] == area[0])];
         List<int[]> parts = Parts(after, lost, u => area.Contains(componentOf[u]));
         int[] main = parts.Where(part => part.Any(u => componentOf[u] == area[0])).OrderByDescending(part => part.Length)
