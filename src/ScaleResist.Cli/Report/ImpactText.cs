@@ -37,11 +37,11 @@ internal static class ImpactText
         {
             yield return SummaryText.Entry("candidates", Numbers.Count(impact.Candidates)
                 + (impact.Suggestions.Count == 0 ? "; none fits" : ""));
-            string heading = "add";
+            string heading = "add", which = record.Plan["node_weights"] is null ? "the index" : "the node-weighted index";
             foreach (SuggestionLine line in impact.Suggestions)
             {
                 yield return SummaryText.Entry(heading, $"{InputException.Show(line.Source)} - {InputException.Show(line.Target)} with conductance "
-                    + $"{Numbers.Value(line.Conductance, 4)}: the index falls by {Numbers.Value(line.Gain)} to {Numbers.Value(line.IndexAfter)}"
+                    + $"{Numbers.Value(line.Conductance, 4)}: {which} falls by {Numbers.Value(line.Gain)} to {Numbers.Value(line.IndexAfter)}"
                     + (line.Cost is double cost ? $", cost {Numbers.Value(cost, 4)}" : ""));
                 heading = "";
             }

@@ -13,6 +13,7 @@ namespace ScaleResist.Runs;
 internal sealed class ImpactRoute : IDisposable
 {
     private const double SecondsPerEntryOfColumn = 0.7e-9; // of one thread's substitution, by entry of the factor
+    private const double SecondsPerNodeOfColumn = 5e-9;
 
     private ImpactRoute(Potentials potentials, WeightedTotals[] totals)
     {
@@ -100,8 +101,8 @@ internal sealed class ImpactRoute : IDisposable
             // Where a factor is affordable, its columns cost less than solves: they do not speak against it.
             if (budget.Holds(forecast))
             {
-                double solving = columns * (double)symbolic.StoredEntries * SecondsPerEntryOfColumn / Math.Min(2, plan.Threads);
-                return (symbolic, laplacian, forecast with { Seconds = forecast.Seconds + solving });
+                double column = (symbolic.StoredEntries * SecondsPerEntryOfColumn) + (network.NodeCount * SecondsPerNodeOfColumn);
+                return (symbolic, laplacian, forecast with { Seconds = forecast.Seconds + (columns * column / Math.Min(2, plan.Threads)) });
             }
         }
         return plan.Route == Route.Exact ? throw budget.Refusal(forecast) : null;

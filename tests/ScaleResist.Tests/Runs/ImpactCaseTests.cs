@@ -136,6 +136,19 @@ public sealed class ImpactCaseTests
         Assert.Equal(["a", "b"], found["impact"].Column<string>("case"));
     }
 
+    [Theory]
+    [InlineData(Route.Exact)]
+    [InlineData(Route.Probe)]
+    public void Two_single_nodes_that_are_joined_are_one_link_apart(Route route)
+    {
+        Network network = TestNetworks.Unit((1, 1), (2, 2), (3, 3));
+        MemorySink found = Run(network, [["a", "add", "1", "2", "4"], ["b", "lose", "3", "", ""]], route, pairs: [(network.Node(1), network.Node(2))]);
+        Assert.Equal([0.25, 0], found["impact"].Column<double>("kirchhoff_index_after"));
+        Assert.Equal([1L, 0], found["impact"].Column<long>("components_after"));
+        Assert.Equal([0.25, double.PositiveInfinity], found["impact_pairs"].Column<double>("resistance_after"));
+        Assert.Equal([double.NegativeInfinity, 0], found["impact_pairs"].Column<double>("change"));
+    }
+
     [Fact]
     public void Numbers_do_not_depend_on_threads()
     {
