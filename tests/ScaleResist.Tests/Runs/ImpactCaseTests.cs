@@ -141,7 +141,7 @@ public sealed class ImpactCaseTests
     [InlineData(Route.Probe)]
     public void Two_single_nodes_that_are_joined_are_one_link_apart(Route route)
     {
-        Network network = TestNetworks.Unit((1, 1), (2, 2), (3, 3));
+        Network network = TestNetworks.Unit((1, 1), (2, 2), (3, 3), (4, 5));
         MemorySink found = Run(network, [["a", "add", "1", "2", "4"], ["b", "lose", "3", "", ""]], route, pairs: [(network.Node(1), network.Node(2))]);
         Assert.Equal([0.25, 0.0], found["impact"].Column<double>("kirchhoff_index_after").Select(index => Math.Round(index, 12)));
         Assert.Equal([1L, 0L], found["impact"].Column<long>("components_after"));
