@@ -11,7 +11,8 @@ internal static class HelpText
 
         Usage: scaleresist estimate NETWORK --lake DIR [options]   the main job
                scaleresist survey NETWORK [options]                what it would take
-               scaleresist estimate --help, scaleresist survey --help
+               scaleresist impact NETWORK --lake DIR [options]     planned changes
+               scaleresist estimate --help, and so for every verb
                scaleresist --version
 
         Example: scaleresist estimate power.tsv --lake lake --probes 64
@@ -74,6 +75,41 @@ internal static class HelpText
 
         Example: scaleresist survey roads.csv --columns from,to,km
                  --weights resistance
+
+        """;
+
+    public const string Impact = """
+        scaleresist impact NETWORK --changes FILE --lake DIR [options]
+        scaleresist impact NETWORK --suggest N --lake DIR [options]
+
+        What losing, adding or changing links would do to the Kirchhoff index: for
+        planned cases, or the N additions that lower it most, one after the other.
+
+          --changes FILE        columns case, action, source, target, conductance; the
+                                action is lose, add (in parallel) or set (to a new
+                                conductance); lose without a target loses a node;
+                                rows of the same case happen together
+          --pairs FILE          pairs whose resistance is wanted in every case
+          --suggest N           1 to 1000 additions
+          --candidates FILE     columns source, target, conductance and, if wanted,
+                                cost; else pairs that are far apart are tried
+          --budget B            the most gain per cost, for B in all
+          --node-weights FILE   also the node-weighted index; suggestions lower it
+          --lake DIR            folder of the lake; made where it is not there
+          --run-id ID           name of the run; else from the file's name and the time
+          --weights MEANING     none, conductance or resistance: what column 3 means
+          --columns SRC,DST[,W] columns by name or number
+          --route ROUTE         exact, probe, or auto (unless said): a factor where it
+                                is affordable, else solves
+          --memory-budget M     16GiB, 500MB: refuse a run foreseen to need more
+          --confidence P        of the intervals (0.95 unless said)
+          --seed S              of the random signs (1 unless said)
+          --threads T           1 to 256 (all cores unless said); results are the same
+          --restart             discard what an unfinished run of this id left
+          --verbose             show the stack of a fault
+
+        Example: scaleresist impact mains.csv --changes works.csv --lake lake
+                 --weights conductance
 
         """;
 }

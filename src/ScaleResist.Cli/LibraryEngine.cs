@@ -35,9 +35,7 @@ internal sealed class LibraryEngine : IEstimateEngine
         }
         catch (SolveException unsolved)
         {
-            // Doubles end where conductances of one component lie some fourteen decades apart; that is for the input to mend.
-            throw new InputException(request.Network, null, unsolved.Message,
-                "its conductances lie too far apart: merge nodes that nothing parts, or drop links that carry nothing", unsolved);
+            throw Unsolved(request.Network, unsolved);
         }
     }
 
@@ -50,6 +48,36 @@ internal sealed class LibraryEngine : IEstimateEngine
         Network network = Load(request.Network, request.Reading, observer, interrupted);
         return new SurveyOutcome(network, NetworkSurvey.Of(network, request.Plan, observer, interrupted));
     }
+
+    public ImpactOutcome Impact(ImpactRequest request, Func<InputFacts, ITableSink> openSink, IRunObserver observer,
+        CancellationToken interrupted)
+    {
+        Network network = Load(request.Network, request.Reading, observer, interrupted);
+        ImpactInputs inputs = new()
+        {
+            Cases = request.Changes is string changes ? NetworkInput.ReadChanges(changes, network, interrupted) : null,
+            Candidates = request.Candidates is string candidates ? NetworkInput.ReadCandidates(candidates, network, interrupted) : null,
+            Pairs = request.Pairs is string pairs ? NetworkInput.ReadPairs(pairs, network.Labels, ct: interrupted) : null,
+            NodeWeights = request.NodeWeights is string weights
+                ? NetworkInput.ReadNodeWeights(weights, network.Labels, ct: interrupted)
+                : null,
+        };
+        if (request.Plan.Budget is not null && inputs.Candidates!.Any(candidate => candidate.Cost is null))
+            throw new InputException(request.Candidates!, null, "there is no column 'cost', which --budget needs", "give every candidate a cost");
+        try
+        {
+            ImpactSummary summary = ImpactRun.Execute(network, request.Plan, inputs, openSink(network.Input), observer, interrupted);
+            return new ImpactOutcome(network.Input, network.Cleaning, summary);
+        }
+        catch (SolveException unsolved)
+        {
+            throw Unsolved(request.Network, unsolved);
+        }
+    }
+
+    // Doubles end where conductances of one component lie some fourteen decades apart; that is for the input to mend.
+    private static InputException Unsolved(string network, SolveException unsolved) => new(network, null, unsolved.Message,
+        "its conductances lie too far apart: merge nodes that nothing parts, or drop links that carry nothing", unsolved);
 
     private static Network Load(string path, ReadOptions reading, IRunObserver observer, CancellationToken interrupted)
     {

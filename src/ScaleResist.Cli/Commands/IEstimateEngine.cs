@@ -11,7 +11,10 @@ internal sealed record EstimateOutcome(InputFacts Input, CleaningFacts Cleaning,
 /// <summary>What a survey found.</summary>
 internal sealed record SurveyOutcome(Network Network, NetworkSurvey Survey);
 
-/// <summary>Runs estimates and surveys.</summary>
+/// <summary>What a finished impact run leaves beside its tables.</summary>
+internal sealed record ImpactOutcome(InputFacts Input, CleaningFacts Cleaning, ImpactSummary Summary);
+
+/// <summary>Runs estimates, surveys and impacts.</summary>
 internal interface IEstimateEngine
 {
     /// <summary>Reads the network and estimates what the plan wants.</summary>
@@ -27,4 +30,9 @@ internal interface IEstimateEngine
     /// <param name="observer">Follows the phases, reading included.</param>
     /// <param name="interrupted">Ends the survey with an <see cref="OperationCanceledException"/>.</param>
     SurveyOutcome Survey(SurveyRequest request, IRunObserver observer, CancellationToken interrupted);
+
+    /// <summary>Reads the network and works off planned cases, or suggests additions.</summary>
+    /// <inheritdoc cref="Run"/>
+    ImpactOutcome Impact(ImpactRequest request, Func<InputFacts, ITableSink> openSink, IRunObserver observer,
+        CancellationToken interrupted) => throw new NotSupportedException("this engine has no impact");
 }

@@ -10,7 +10,7 @@ namespace ScaleResist.Cli.Commands;
 internal static class RunPlan
 {
     // Names of files: for people, not for comparison.
-    private static readonly string[] NotCompared = ["pairs", "node_weights", "terminals"];
+    private static readonly string[] NotCompared = ["pairs", "node_weights", "terminals", "changes", "candidates"];
 
     /// <summary>The plan of a request; reads pairs, node weights and terminals for their digests.</summary>
     /// <exception cref="InputException">One of these files cannot be read.</exception>

@@ -42,6 +42,27 @@ internal static class NetworkInput
         return TerminalReader.Read(rows, labels);
     }
 
+    /// <summary>Reads planned cases.</summary>
+    /// <exception cref="InputException">The input cannot be used.</exception>
+    public static List<PlannedCase> ReadChanges(string path, Network network, CancellationToken ct = default)
+    {
+        using INamedRows rows = OpenNamed(path, ChangeReader.Columns, ct);
+        return ChangeReader.Read(rows, network);
+    }
+
+    /// <summary>Reads candidates for additions.</summary>
+    /// <exception cref="InputException">The input cannot be used.</exception>
+    public static List<Candidate> ReadCandidates(string path, Network network, CancellationToken ct = default)
+    {
+        using INamedRows rows = OpenNamed(path, CandidateReader.Columns, ct);
+        return CandidateReader.Read(rows, network);
+    }
+
+    private static INamedRows OpenNamed(string path, NamedColumns columns, CancellationToken ct) =>
+        path.EndsWith(".parquet", StringComparison.OrdinalIgnoreCase)
+            ? ParquetNamedRows.Open(path, columns, ct)
+            : NamedTextRows.Open(path, columns, ct);
+
     /// <summary>Opens input of any form as rows.</summary>
     public static IRowSource Open(
         string path, RowRequest request, Action<long>? bytesRead = null, CancellationToken ct = default) =>

@@ -106,4 +106,51 @@ public static class Tables
         new("reference_upper", ColumnKind.Double),
         new("relative_error", ColumnKind.Double),
     ]);
+
+    /// <summary>One row a planned case.</summary>
+    public static TableDefinition Impact(ColumnKind id) => new("impact",
+    [
+        new("case", id),
+        new("changes", ColumnKind.Int64),
+        new("kirchhoff_index_before", ColumnKind.Double),
+        new("kirchhoff_index_after", ColumnKind.Double),
+        new("change", ColumnKind.Double),
+        new("change_se", ColumnKind.Double),
+        new("change_lower", ColumnKind.Double),
+        new("change_upper", ColumnKind.Double),
+        new("components_after", ColumnKind.Int64),
+        new("nodes_cut_off", ColumnKind.Int64),
+        new("method", ColumnKind.Text),
+        new("kirchhoff_index_before_se", ColumnKind.Double),
+        new("node_weighted_kirchhoff_index_before", ColumnKind.Double, Nullable: true),
+        new("node_weighted_kirchhoff_index_after", ColumnKind.Double, Nullable: true),
+    ]);
+
+    /// <summary>One row a planned case and requested pair.</summary>
+    public static TableDefinition ImpactPairs(ColumnKind id, ColumnKind label) => new("impact_pairs",
+    [
+        new("case", id),
+        new("source", label),
+        new("target", label),
+        new("resistance_before", ColumnKind.Double),
+        new("resistance_after", ColumnKind.Double),
+        new("change", ColumnKind.Double),
+        new("change_se", ColumnKind.Double),
+        new("method", ColumnKind.Text),
+    ]);
+
+    /// <summary>One row an addition suggested, the best first.</summary>
+    public static TableDefinition Suggestions(ColumnKind label) => new("suggestions",
+    [
+        new("rank", ColumnKind.Int64),
+        new("source", label),
+        new("target", label),
+        new("conductance", ColumnKind.Double),
+        new("cost", ColumnKind.Double, Nullable: true),
+        new("gain", ColumnKind.Double),
+        new("gain_se", ColumnKind.Double),
+        new("gain_per_cost", ColumnKind.Double, Nullable: true),
+        new("kirchhoff_index_after", ColumnKind.Double),
+        new("method", ColumnKind.Text),
+    ]);
 }
