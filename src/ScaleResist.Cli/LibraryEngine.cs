@@ -48,7 +48,7 @@ internal sealed class LibraryEngine : IEstimateEngine
         return new SurveyOutcome(network, NetworkSurvey.Of(network, request.Plan, observer, interrupted));
     }
 
-    private static Network Load(string path, ReadOptions reading, IRunObserver observer, CancellationToken interrupted)
+    internal static Network Load(string path, ReadOptions reading, IRunObserver observer, CancellationToken interrupted)
     {
         FileInfo file = new(path);
         observer.Begin("reading", file.Exists ? file.Length : null, "bytes");

@@ -2,7 +2,6 @@
 // an unfinished one leaves nothing that a reader of the lake could see.
 
 using System.Globalization;
-using System.Text.Json;
 using System.Text.Json.Nodes;
 using ScaleResist.Cli.Lake;
 using ScaleResist.Cli.Progress;
@@ -22,12 +21,13 @@ internal sealed class EstimateCommand(CliHost host)
         DateTimeOffset started = host.Time.GetUtcNow();
         RunFolder folder = new(request.Lake, request.RunId);
         JsonObject plan = RunPlan.Of(request, interrupted);
+        FinishedRun finished = new(host, folder, request.Network, plan, request.Restart);
         if (folder.IsPublished)
-            return AnswerFinished(folder, request, plan, interrupted);
+            return finished.Answer(interrupted);
         using StagedRun staged = folder.Begin();
         // Another process may have finished it while we waited for the claim.
         if (folder.IsPublished)
-            return AnswerFinished(folder, request, plan, interrupted);
+            return finished.Answer(interrupted);
 
         ParquetTableSink? sink = null;
         EstimateOutcome? outcome = null;
@@ -64,35 +64,4 @@ internal sealed class EstimateCommand(CliHost host)
             ["scaleresist.seed"] = request.Plan.Seed.ToString(CultureInfo.InvariantCulture),
         },
         request.Plan.Threads);
-
-    private int AnswerFinished(RunFolder folder, EstimateRequest request, JsonObject plan, CancellationToken interrupted)
-    {
-        string mend = "a finished run is never overwritten: choose another --run-id, or remove the folder yourself";
-        if (request.Restart)
-            return CommandLine.Refuse(host, $"--restart discards an unfinished run, and '{request.RunId}' is finished; {mend}");
-        JsonObject? record = ReadRecord(folder.PublishedRecord);
-        if (record?["plan"] is not JsonObject finished || record["input"]?["sha256"]?.ToString() is not string digest)
-            return CommandLine.Refuse(host,
-                $"{folder.Published}: a run is there, but its {RunFolder.RecordName} cannot be read; {mend}");
-        string? difference = RunPlan.Difference(finished, plan);
-        if (difference is null && InputDigest.Sha256(request.Network, interrupted) != digest)
-            difference = "a network of other content";
-        if (difference is not null)
-            return CommandLine.Refuse(host, $"run '{request.RunId}' is finished with another plan ({difference}); {mend}");
-        host.Out.WriteLine($"run '{request.RunId}' is already done, with this plan and this network: {folder.Published}");
-        host.Out.WriteLine(SummaryText.Query(folder.Published, (record["rows"] as JsonObject)?.Select(r => r.Key) ?? []));
-        return ExitCode.Done;
-    }
-
-    private static JsonObject? ReadRecord(string path)
-    {
-        try
-        {
-            return JsonNode.Parse(File.ReadAllBytes(path)) as JsonObject;
-        }
-        catch (Exception error) when (error is JsonException or IOException or UnauthorizedAccessException)
-        {
-            return null;
-        }
-    }
 }

@@ -16,7 +16,7 @@ internal sealed record RunRecord
 {
     private const int MostIndexRows = 20;
 
-    private static readonly JsonSerializerOptions Format = new()
+    internal static readonly JsonSerializerOptions Format = new()
     {
         WriteIndented = true,
         PropertyNamingPolicy = JsonNamingPolicy.SnakeCaseLower,
