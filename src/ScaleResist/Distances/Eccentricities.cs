@@ -13,8 +13,8 @@ namespace ScaleResist.Distances;
 /// and sharper: let S be all nodes searched so far and r(x) the largest d(x,v) over v outside S. As d(u,v) is known for v in S and is at most
 /// d(u,x) + r(x) for all others, u is settled once d(u,x) + r(x) does not exceed its lower bound (as farthest-first orders do: Li, Qiao, Qin
 /// et al., ICDE 2018). r(x) falls while the farthest nodes are searched, so references near one another serve all that lies between them.
-/// Each round searches two nodes: the one that holds back the largest number of open nodes, and the end of the walk from the node of the widest gap along falling
-/// lower bounds, on which all nodes whose farthest route leads through it depend (a certificate in the sense of Dragan, Habib &amp;
+/// Each round searches two nodes: the one that holds back the largest number of open nodes, and the end of the walk from the node of the
+/// widest gap along falling lower bounds, on which all nodes whose farthest route leads through it depend (a certificate in the sense of Dragan, Habib &amp;
 /// Viennot, 2018).
 /// </summary>
 public sealed class Eccentricities

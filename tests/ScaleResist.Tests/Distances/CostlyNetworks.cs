@@ -17,7 +17,8 @@ internal static class CostlyNetworks
         return NetworkBuilder.Build(builder.Finish(Facts));
     }
 
-    /// <summary>Up to 40 nodes in one or more components, trees among them; costs equal, whole with ties and zeros, or real, with lengths or without.</summary>
+    /// <summary>Up to 40 nodes in one or more components, trees among them; costs equal, whole with ties and zeros, or
+    /// real, with lengths or without.</summary>
     public static DistanceCosts Random(int seed)
     {
         Random random = new(seed);

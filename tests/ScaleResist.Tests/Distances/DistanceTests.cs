@@ -134,7 +134,8 @@ public class DistanceTests
     public void Of_parallel_links_the_shortest_counts_and_lengths_alone_cost_nothing_at_nodes()
     {
         Network network = CostlyNetworks.Of(true, (0, 1, 3), (1, 0, 2), (1, 2, 0), (0, 1, 7), (2, 2, 1));
-        Assert.Equal([2.0, 2.0], PairDistances.Of(new DistanceCosts(network), [(network.Node(0), network.Node(2)), (network.Node(1), network.Node(0))], 1, null, default));
+        (int, int)[] pairs = [(network.Node(0), network.Node(2)), (network.Node(1), network.Node(0))];
+        Assert.Equal([2.0, 2.0], PairDistances.Of(new DistanceCosts(network), pairs, 1, null, default));
         Assert.Null(network.Conductances);
         Assert.Equal(new CleaningFacts(1, 2), network.Cleaning);
     }

@@ -85,7 +85,8 @@ public class PublishedDistanceTests
     {
         Network network = TestNetworks.Of(family, nodes, family == Family.Preferential ? 8 * nodes : null);
         Random random = new(3);
-        DistanceCosts costs = new(network, family == Family.Road ? [.. Enumerable.Range(0, network.NodeCount).Select(_ => (double)random.Next(1, 20))] : null);
+        double[] weights = [.. Enumerable.Range(0, network.NodeCount).Select(_ => (double)random.Next(1, 20))];
+        DistanceCosts costs = new(network, family == Family.Road ? weights : null);
         Component component = network.Components[0];
         RouteSum exact = RouteSums.Of(costs, component, new RouteSumPlan { Threads = 2, Profile = true }, default);
         int covered = 0, profiles = 0, steps = 0;
