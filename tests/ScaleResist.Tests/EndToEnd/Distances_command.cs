@@ -61,7 +61,7 @@ public sealed class Distances_command
             WHERE s.nodes <> e.nodes OR s.diameter <> e.diameter OR s.radius <> e.radius OR s.centre <> e.centre
             """));
         Assert.Equal([3133L, 12L, 9L], DuckLake.Query($"SELECT nodes FROM {Table("distance_summary")} ORDER BY component_id").Select(r => (long)r[0]!));
-        // Half the profile's steps times their width is no more than the mean distance, and the last step holds all pairs.
+        // The last step holds all pairs.
         Assert.Equal([1.0, 1.0, 1.0],
             DuckLake.Query($"SELECT max(share_within) FROM {Table("distance_profile")} GROUP BY component_id").Select(r => (double)r[0]!));
 
