@@ -38,9 +38,15 @@ switch (args)
     case ["exact", string family]:
         ExactBench.Run(family == "all" ? null : family);
         return 0;
+    case ["distances"]:
+        DistanceBench.Run(null);
+        return 0;
+    case ["distances", string family]:
+        DistanceBench.Run(family);
+        return 0;
     default:
         Console.Error.WriteLine(
             "say: kernels [BenchmarkDotNet options] | traffic | job FILE [PROBES] | solver [FAMILY | all [SOLVES]] | setup [FAMILY] "
-            + "| exact [FAMILY | all]");
+            + "| exact [FAMILY | all] | distances [road | preferential | grid]");
         return 2;
 }

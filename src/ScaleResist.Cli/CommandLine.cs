@@ -9,10 +9,10 @@ namespace ScaleResist.Cli;
 internal static class CommandLine
 {
     private const string Start = "write scaleresist estimate NETWORK --lake DIR, or see scaleresist --help";
-    private static readonly string[] Verbs = ["estimate", "survey", "impact"];
+    private static readonly string[] Verbs = ["estimate", "survey", "impact", "distances"];
 
     // Verbs of the contract that later versions bring.
-    private static readonly string[] LaterVerbs = ["tune", "distances", "lookup", "drift", "merge"];
+    private static readonly string[] LaterVerbs = ["tune", "lookup", "drift", "merge"];
 
     /// <summary>Runs a command line.</summary>
     /// <returns>The exit code.</returns>
@@ -39,6 +39,7 @@ internal static class CommandLine
             {
                 "survey" => HelpText.Survey,
                 "impact" => HelpText.Impact,
+                "distances" => HelpText.Distances,
                 _ => HelpText.Estimate,
             });
             return ExitCode.Done;
@@ -47,6 +48,7 @@ internal static class CommandLine
         {
             "survey" => Survey(args[1..], host, interrupted),
             "impact" => Impact(args[1..], host, interrupted),
+            "distances" => Distances(args[1..], host, interrupted),
             _ => Estimate(args[1..], host, interrupted),
         };
     }
@@ -76,6 +78,12 @@ internal static class CommandLine
     {
         ImpactRequest? request = ImpactRequest.Parse(words, host.Time.GetUtcNow(), out string problem);
         return request is null ? Refuse(host, problem) : new ImpactCommand(host).Run(request, interrupted);
+    }
+
+    private static int Distances(string[] words, CliHost host, CancellationToken interrupted)
+    {
+        DistancesRequest? request = DistancesRequest.Parse(words, host.Time.GetUtcNow(), out string problem);
+        return request is null ? Refuse(host, problem) : new DistancesCommand(host).Run(request, interrupted);
     }
 
     private static string UnknownVerb(string verb)

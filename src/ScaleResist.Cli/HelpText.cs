@@ -12,6 +12,7 @@ internal static class HelpText
         Usage: scaleresist estimate NETWORK --lake DIR [options]   the main job
                scaleresist survey NETWORK [options]                what it would take
                scaleresist impact NETWORK --lake DIR [options]     planned changes
+               scaleresist distances NETWORK --lake DIR [options]  lightest routes
                scaleresist estimate --help, and so for every verb
                scaleresist --version
 
@@ -110,6 +111,38 @@ internal static class HelpText
 
         Example: scaleresist impact mains.csv --changes works.csv --lake lake
                  --weights conductance
+
+        """;
+
+    public const string Distances = """
+        scaleresist distances NETWORK --lake DIR [options]
+
+        Distances where the cost of a route is the weight of the nodes it enters (its
+        end counts, its start does not), or one a step: of pairs; the eccentricity of
+        every node, diameter and radius; Wiener index and share of pairs by distance.
+
+          --lake DIR            folder of the lake; made where it is not there
+          --run-id ID           name of the run; else from the file's name and the time
+          --want LIST           eccentricity,summary (both unless said),profile,pairs
+          --node-weights FILE   node and weight, from zero up; every node counts 1
+                                without, or 0 where links have lengths
+          --lengths             the third column holds lengths of links, from zero up,
+                                which add; without, a third column is not looked at
+          --columns SRC,DST[,W] columns by name or number
+          --pairs FILE          pairs of nodes whose distance is wanted
+          --beside RUN          a run of estimate in this lake: the resistance of each
+                                pair beside its distance, and their ratio
+          --sources FILE        nodes: eccentricity, summary and profile of these alone
+          --target-error E      relative standard error of Wiener indices that must be
+                                sampled (0.005 unless said: 95 % within one per cent)
+          --confidence P        of their intervals (0.95 unless said)
+          --seed S              of the sample (1 unless said)
+          --threads T           1 to 256 (all cores unless said); results are the same
+          --restart             discard what an unfinished run of this id left
+          --verbose             show the stack of a fault
+
+        Example: scaleresist distances streets.csv --lake lake --run-id monday
+                 --node-weights junctions.csv --pairs trips.csv
 
         """;
 }

@@ -79,7 +79,7 @@ internal sealed class LibraryEngine : IEstimateEngine
     private static InputException Unsolved(string network, SolveException unsolved) => new(network, null, unsolved.Message,
         "its conductances lie too far apart: merge nodes that nothing parts, or drop links that carry nothing", unsolved);
 
-    private static Network Load(string path, ReadOptions reading, IRunObserver observer, CancellationToken interrupted)
+    internal static Network Load(string path, ReadOptions reading, IRunObserver observer, CancellationToken interrupted)
     {
         FileInfo file = new(path);
         observer.Begin("reading", file.Exists ? file.Length : null, "bytes");

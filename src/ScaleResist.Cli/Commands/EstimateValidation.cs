@@ -232,7 +232,7 @@ internal static class EstimateValidation
         return null;
     }
 
-    private static bool TryWhole(string? text, int otherwise, int least, int most, out int value)
+    internal static bool TryWhole(string? text, int otherwise, int least, int most, out int value)
     {
         value = otherwise;
         return text is null
@@ -240,6 +240,6 @@ internal static class EstimateValidation
                 && value >= least && value <= most);
     }
 
-    private static bool TryFraction(string text, out double value) =>
+    internal static bool TryFraction(string text, out double value) =>
         double.TryParse(text, NumberStyles.Float, CultureInfo.InvariantCulture, out value) && value > 0 && value < 1;
 }

@@ -63,6 +63,14 @@ internal static class NetworkInput
             ? ParquetNamedRows.Open(path, columns, ct)
             : NamedTextRows.Open(path, columns, ct);
 
+    /// <summary>Reads nodes as dense indices, in file order, each once.</summary>
+    /// <exception cref="InputException">The input cannot be used.</exception>
+    public static int[] ReadNodes(string path, NodeLabels labels, CancellationToken ct = default)
+    {
+        using IRowSource rows = Open(path, NodeReader.Request, null, ct);
+        return NodeReader.Read(rows, labels);
+    }
+
     /// <summary>Opens input of any form as rows.</summary>
     public static IRowSource Open(
         string path, RowRequest request, Action<long>? bytesRead = null, CancellationToken ct = default) =>

@@ -1,5 +1,6 @@
 // A raw edge list as read: dense node indices in order of first appearance, nothing cleaned yet.
-// Invariant: every index is below Labels.Count; Conductances is null (all 1) or has one finite positive value a link.
+// Invariant: every index is below Labels.Count; Weights is null or has one value a link: a finite positive conductance, or a length
+// from zero up.
 
 namespace ScaleResist.Graphs;
 
@@ -39,11 +40,13 @@ public sealed record InputFacts
 /// <summary>A raw edge list: links in file order, labels, and what was read.</summary>
 public sealed class EdgeList
 {
-    internal EdgeList(NodeLabels labels, AppendBuffer<EndNodes> links, AppendBuffer<double>? conductances, InputFacts facts)
+    internal EdgeList(
+        NodeLabels labels, AppendBuffer<EndNodes> links, AppendBuffer<double>? weights, bool areLengths, InputFacts facts)
     {
         Labels = labels;
         Links = links;
-        Conductances = conductances;
+        Weights = weights;
+        AreLengths = areLengths;
         Facts = facts;
     }
 
@@ -53,8 +56,11 @@ public sealed class EdgeList
     /// <summary>The end nodes of each row.</summary>
     public AppendBuffer<EndNodes> Links { get; }
 
-    /// <summary>The conductance of each row, or null where all are 1.</summary>
-    public AppendBuffer<double>? Conductances { get; }
+    /// <summary>The conductance or length of each row, or null where there is none: conductances are 1, lengths 0.</summary>
+    public AppendBuffer<double>? Weights { get; }
+
+    /// <summary>Whether <see cref="Weights"/> are lengths.</summary>
+    public bool AreLengths { get; }
 
     /// <summary>What was read.</summary>
     public InputFacts Facts { get; }

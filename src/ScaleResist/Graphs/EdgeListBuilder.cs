@@ -10,41 +10,47 @@ namespace ScaleResist.Graphs;
 public sealed class EdgeListBuilder
 {
     private readonly AppendBuffer<EndNodes> links = new();
-    private readonly AppendBuffer<double>? conductances;
+    private readonly AppendBuffer<double>? weights;
+    private readonly bool areLengths;
     private IntegerIndex? byInteger = new();
     private Dictionary<string, int>.AlternateLookup<ReadOnlySpan<char>> byText;
 
     /// <summary>Creates a builder.</summary>
-    /// <param name="weighted">Whether rows carry a conductance.</param>
-    public EdgeListBuilder(bool weighted) => conductances = weighted ? new AppendBuffer<double>() : null;
+    /// <param name="weighted">Whether rows carry a conductance or a length.</param>
+    /// <param name="areLengths">Whether it is a length.</param>
+    public EdgeListBuilder(bool weighted, bool areLengths = false)
+    {
+        weights = weighted ? new AppendBuffer<double>() : null;
+        this.areLengths = areLengths;
+    }
 
     /// <summary>Rows added so far.</summary>
     public long Count => links.Count;
 
-    /// <summary>Adds a link between integer labels. <paramref name="conductance"/> must be finite and positive; it is ignored
-    /// without weights.</summary>
-    public void Add(long source, long target, double conductance = 1)
+    /// <summary>Adds a link between integer labels. <paramref name="weight"/> must be finite and positive (a length: or zero); it
+    /// is ignored without weights.</summary>
+    public void Add(long source, long target, double weight = 1)
     {
         if (byInteger is not null)
-            Append(byInteger.GetOrAdd(source), byInteger.GetOrAdd(target), conductance);
+            Append(byInteger.GetOrAdd(source), byInteger.GetOrAdd(target), weight);
         else
             Append(Index(source.ToString(CultureInfo.InvariantCulture)), Index(target.ToString(CultureInfo.InvariantCulture)),
-                conductance);
+                weight);
     }
 
     /// <summary>Adds a link between labels as they stand in the file.</summary>
-    public void Add(ReadOnlySpan<char> source, ReadOnlySpan<char> target, double conductance = 1)
+    public void Add(ReadOnlySpan<char> source, ReadOnlySpan<char> target, double weight = 1)
     {
         if (byInteger is not null)
         {
             if (NodeLabels.TryCanonicalInteger(source, out long u) && NodeLabels.TryCanonicalInteger(target, out long v))
             {
-                Append(byInteger.GetOrAdd(u), byInteger.GetOrAdd(v), conductance);
+                Append(byInteger.GetOrAdd(u), byInteger.GetOrAdd(v), weight);
                 return;
             }
             TurnIntoTexts();
         }
-        Append(Index(source), Index(target), conductance);
+        Append(Index(source), Index(target), weight);
     }
 
     /// <summary>Whether a node has this label so far.</summary>
@@ -67,13 +73,13 @@ public sealed class EdgeListBuilder
                 values[node] = value;
             labels = new NodeLabels(values);
         }
-        return new EdgeList(labels, links, conductances, facts);
+        return new EdgeList(labels, links, weights, areLengths, facts);
     }
 
-    private void Append(int source, int target, double conductance)
+    private void Append(int source, int target, double weight)
     {
         links.Add(new EndNodes(source, target));
-        conductances?.Add(conductance);
+        weights?.Add(weight);
     }
 
     private int Index(ReadOnlySpan<char> label)

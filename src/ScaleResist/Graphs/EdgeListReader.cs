@@ -1,5 +1,6 @@
 // Rows to an edge list: what the number in the third column means, and that it lies in the range of numbers that can be summed.
-// Invariant: every conductance of an EdgeList lies from 1e-18 to 1e18, so that no sum over parallel links or a node overflows.
+// Invariant: every conductance of an EdgeList lies from 1e-18 to 1e18, and every length from 0 to 1e18, so that no sum over parallel links,
+// a node or a route overflows.
 
 using System.Globalization;
 
@@ -38,7 +39,7 @@ public static class EdgeListReader
             throw new InputException(path, null, $"{named} columns are named",
                 "name two or three: source, target and, where weights are used, the weight");
         }
-        bool weighted = options.Weights is WeightMeaning.Conductance or WeightMeaning.Resistance;
+        bool weighted = HasNumber(options.Weights);
         if (weighted && named == 2)
             throw new InputException(path, null, "weights are asked for, and no weight column is named",
                 "name it third in --columns");
@@ -59,17 +60,17 @@ public static class EdgeListReader
     /// </exception>
     public static EdgeList Read(IRowSource rows, WeightMeaning weights)
     {
-        bool weighted = weights is WeightMeaning.Conductance or WeightMeaning.Resistance;
-        EdgeListBuilder builder = new(weighted);
+        bool weighted = HasNumber(weights);
+        EdgeListBuilder builder = new(weighted, weights == WeightMeaning.Length);
         while (rows.Read(out Row row))
         {
-            double conductance = 1;
+            double weight = 1;
             if (weighted)
-                conductance = Conductance(row.Number, weights, rows);
+                weight = weights == WeightMeaning.Length ? Length(row.Number, rows) : Conductance(row.Number, weights, rows);
             if (row.AreIntegers)
-                builder.Add(row.FirstInteger, row.SecondInteger, conductance);
+                builder.Add(row.FirstInteger, row.SecondInteger, weight);
             else
-                builder.Add(row.First, row.Second, conductance);
+                builder.Add(row.First, row.Second, weight);
         }
         InputFacts facts = rows.Facts;
         // A first row of names such as a,b may just as well be a link. If such a name turns up as a node below, nobody can tell.
@@ -78,6 +79,14 @@ public static class EdgeListReader
             throw RowRequest.HeaderOrNode(facts.Path, line, node);
         return builder.Finish(facts);
     }
+
+    private static bool HasNumber(WeightMeaning weights) =>
+        weights is WeightMeaning.Conductance or WeightMeaning.Resistance or WeightMeaning.Length;
+
+    private static double Length(double number, IRowSource rows) => number is >= 0 and <= LargestWeight
+        ? number
+        : throw rows.Fault($"the length {number.ToString(CultureInfo.InvariantCulture)} is not a number from 0 to 1e18",
+            "give a finite length that is not negative");
 
     private static double Conductance(double number, WeightMeaning weights, IRowSource rows)
     {

@@ -5,7 +5,7 @@ namespace ScaleResist.Graphs;
 
 /// <summary>What cleaning did to the rows that were read.</summary>
 /// <param name="SelfLoops">Rows whose two ends are one node; dropped.</param>
-/// <param name="ParallelLinks">Rows merged into an earlier link between the same nodes, conductances added.</param>
+/// <param name="ParallelLinks">Rows merged into an earlier link between the same nodes, conductances added (of lengths the shortest kept).</param>
 public sealed record CleaningFacts(long SelfLoops, long ParallelLinks);
 
 /// <summary>A connected component: the nodes <c>Start .. End-1</c> of the internal order.</summary>
@@ -28,10 +28,11 @@ public sealed class Network
     private readonly Laplacian laplacian;
 
     internal Network(
-        NodeLabels labels, long[] rowStart, int[] neighbours, double[]? conductances, Component[] components,
+        NodeLabels labels, long[] rowStart, int[] neighbours, double[]? conductances, double[]? lengths, Component[] components,
         CleaningFacts cleaning, InputFacts input)
     {
         Labels = labels;
+        Lengths = lengths;
         Components = components;
         Cleaning = cleaning;
         Input = input;
@@ -65,6 +66,9 @@ public sealed class Network
 
     /// <summary>2m conductances beside <see cref="Neighbours"/>, or null where every link has conductance 1.</summary>
     public double[]? Conductances => laplacian.Conductances;
+
+    /// <summary>2m lengths beside <see cref="Neighbours"/>, or null where links have none. They serve distances alone.</summary>
+    public double[]? Lengths { get; }
 
     /// <summary>Strength d_u = L_uu: the sum of the conductances at a node, n values.</summary>
     public double[] Strengths => laplacian.Strengths;

@@ -7,7 +7,7 @@ namespace ScaleResist.Graphs;
 public static class NetworkBuilder
 {
     /// <summary>
-    /// Cleans and builds. Parallel links add their conductances, self-loops drop out, direction is ignored.
+    /// Cleans and builds. Parallel links add their conductances, of lengths the shortest stays; self-loops drop out, direction is ignored.
     /// O(n + m) time but for the sort of components.
     /// </summary>
     /// <exception cref="InputException">
@@ -29,11 +29,11 @@ public static class NetworkBuilder
         NodeOrder order = NodeOrder.BreadthFirst(raw.Start, raw.Neighbours, list.Labels);
         Rows ordered = Renumber(raw, order.NodeAt, order.PlaceOf);
         long before = ordered.Neighbours.Length;
-        Rows merged = MergeParallel(ordered);
+        Rows merged = MergeParallel(ordered, list.AreLengths);
         CleaningFacts cleaning = new(selfLoops, (before - merged.Neighbours.Length) / 2);
         return new Network(
-            list.Labels.Reordered(order.NodeAt), merged.Start, merged.Neighbours, merged.Conductances, order.Components, cleaning,
-            list.Facts);
+            list.Labels.Reordered(order.NodeAt), merged.Start, merged.Neighbours, list.AreLengths ? null : merged.Weights,
+            list.AreLengths ? merged.Weights : null, order.Components, cleaning, list.Facts);
     }
 
     private static Rows GatherRows(EdgeList list, out long selfLoops)
@@ -56,11 +56,11 @@ public static class NetworkBuilder
         }
         long arcs = ToEnds(start);
         int[] neighbours = new int[arcs];
-        double[]? conductances = list.Conductances is null ? null : new double[arcs];
+        double[]? weights = list.Weights is null ? null : new double[arcs];
         for (int block = 0; block < list.Links.BlockCount; block++)
         {
             Span<EndNodes> links = list.Links.Block(block);
-            Span<double> weights = list.Conductances is null ? default : list.Conductances.Block(block);
+            Span<double> given = list.Weights is null ? default : list.Weights.Block(block);
             for (int i = 0; i < links.Length; i++)
             {
                 (int u, int v) = links[i];
@@ -69,11 +69,11 @@ public static class NetworkBuilder
                 long atU = --start[u], atV = --start[v];
                 neighbours[atU] = v;
                 neighbours[atV] = u;
-                if (conductances is not null)
-                    conductances[atU] = conductances[atV] = weights[i];
+                if (weights is not null)
+                    weights[atU] = weights[atV] = given[i];
             }
         }
-        return new Rows(start, neighbours, conductances);
+        return new Rows(start, neighbours, weights);
     }
 
     // Writing each node into the rows of its neighbours, in the new order, leaves every row sorted without a sort.
@@ -85,7 +85,7 @@ public static class NetworkBuilder
             start[place + 1] = start[place] + (raw.Start[nodeAt[place] + 1] - raw.Start[nodeAt[place]]);
         long[] cursor = start.AsSpan(0, n).ToArray();
         int[] neighbours = new int[raw.Neighbours.Length];
-        double[]? conductances = raw.Conductances is null ? null : new double[raw.Neighbours.Length];
+        double[]? weights = raw.Weights is null ? null : new double[raw.Neighbours.Length];
         for (int place = 0; place < n; place++)
         {
             int node = nodeAt[place];
@@ -93,21 +93,21 @@ public static class NetworkBuilder
             {
                 long at = cursor[placeOf[raw.Neighbours[k]]]++;
                 neighbours[at] = place;
-                if (conductances is not null)
-                    conductances[at] = raw.Conductances![k];
+                if (weights is not null)
+                    weights[at] = raw.Weights![k];
             }
         }
-        return new Rows(start, neighbours, conductances);
+        return new Rows(start, neighbours, weights);
     }
 
     // In place: rows only shrink. Without weights a merged link has conductance 2 or more, so weights appear then.
-    private static Rows MergeParallel(Rows rows)
+    private static Rows MergeParallel(Rows rows, bool areLengths)
     {
         int n = rows.Start.Length - 1;
         int[] neighbours = rows.Neighbours;
         if (!HasParallel(rows))
             return rows;
-        double[] conductances = rows.Conductances ?? Ones(neighbours.Length);
+        double[] weights = rows.Weights ?? Ones(neighbours.Length);
         long write = 0;
         long begin = 0;
         for (int u = 0; u < n; u++)
@@ -118,18 +118,18 @@ public static class NetworkBuilder
             {
                 if (k > begin && neighbours[k] == neighbours[k - 1])
                 {
-                    conductances[write - 1] += conductances[k];
+                    weights[write - 1] = areLengths ? Math.Min(weights[write - 1], weights[k]) : weights[write - 1] + weights[k];
                     continue;
                 }
                 neighbours[write] = neighbours[k];
-                conductances[write++] = conductances[k];
+                weights[write++] = weights[k];
             }
             begin = end;
         }
         rows.Start[n] = write;
         Array.Resize(ref neighbours, (int)write);
-        Array.Resize(ref conductances, (int)write);
-        return new Rows(rows.Start, neighbours, conductances);
+        Array.Resize(ref weights, (int)write);
+        return new Rows(rows.Start, neighbours, weights);
     }
 
     private static bool HasParallel(Rows rows)
@@ -164,5 +164,5 @@ public static class NetworkBuilder
         return sum;
     }
 
-    private sealed record Rows(long[] Start, int[] Neighbours, double[]? Conductances);
+    private sealed record Rows(long[] Start, int[] Neighbours, double[]? Weights);
 }

@@ -16,6 +16,9 @@ public enum WeightMeaning
 
     /// <summary>The number is the resistance r of the link; c = 1/r.</summary>
     Resistance,
+
+    /// <summary>The number is the length of the link, for distances; conductances stay 1.</summary>
+    Length,
 }
 
 /// <summary>How an edge list is to be read.</summary>

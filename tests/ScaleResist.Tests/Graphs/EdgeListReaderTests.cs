@@ -174,7 +174,7 @@ public sealed class EdgeListReaderTests : IDisposable
         string path = folder.Write("net.csv", "1,2,1e-18\n2,3,1e18\n");
         EdgeList read = EdgeListReader.Read(path, new ReadOptions { Weights = weights });
         double[] expected = weights == WeightMeaning.Conductance ? [1e-18, 1e18] : [1e18, 1e-18];
-        Assert.All(expected, (c, i) => Assert.Equal(1, read.Conductances![i] / c, 1e-15));
+        Assert.All(expected, (c, i) => Assert.Equal(1, read.Weights![i] / c, 1e-15));
     }
 
     [Fact]

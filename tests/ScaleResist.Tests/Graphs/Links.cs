@@ -15,7 +15,7 @@ internal static class Links
         {
             EndNodes ends = list.Links[i];
             rows[i] = $"{list.Labels[ends.Source]}-{list.Labels[ends.Target]}"
-                + (list.Conductances is null ? "" : ":" + list.Conductances[i].ToString(CultureInfo.InvariantCulture));
+                + (list.Weights is null ? "" : ":" + list.Weights[i].ToString(CultureInfo.InvariantCulture));
         }
         return rows;
     }

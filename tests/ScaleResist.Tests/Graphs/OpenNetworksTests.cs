@@ -30,6 +30,6 @@ public sealed class OpenNetworksTests
         InputException e = Assert.Throws<InputException>(() => EdgeListReader.Read(TestData.Path(name), new ReadOptions()));
         Assert.Contains("--weights conductance", e.Mend, StringComparison.Ordinal);
         EdgeList read = EdgeListReader.Read(TestData.Path(name), new ReadOptions { Weights = WeightMeaning.Conductance });
-        Assert.Equal(read.Links.Count, read.Conductances!.Count);
+        Assert.Equal(read.Links.Count, read.Weights!.Count);
     }
 }
