@@ -2,6 +2,7 @@
 
 using BenchmarkDotNet.Running;
 using ScaleResist.Bench;
+using ScaleResist.Bench.Coverage;
 
 switch (args)
 {
@@ -38,9 +39,18 @@ switch (args)
     case ["exact", string family]:
         ExactBench.Run(family == "all" ? null : family);
         return 0;
+    case ["coverage"]:
+        CoverageBench.Run(null, 400);
+        return 0;
+    case ["coverage", string family]:
+        CoverageBench.Run(family == "all" ? null : family, 400);
+        return 0;
+    case ["coverage", string family, string seeds] when int.TryParse(seeds, out int count):
+        CoverageBench.Run(family == "all" ? null : family, count);
+        return 0;
     default:
         Console.Error.WriteLine(
             "say: kernels [BenchmarkDotNet options] | traffic | job FILE [PROBES] | solver [FAMILY | all [SOLVES]] | setup [FAMILY] "
-            + "| exact [FAMILY | all]");
+            + "| exact [FAMILY | all] | coverage [FAMILY | all [SEEDS]]");
         return 2;
 }
