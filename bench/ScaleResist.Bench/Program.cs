@@ -39,6 +39,9 @@ switch (args)
     case ["exact", string family]:
         ExactBench.Run(family == "all" ? null : family);
         return 0;
+    case ["links", string file, string probes, string references] when int.TryParse(probes, out int count) && int.TryParse(references, out int many):
+        LinkErrorBench.Run(file, count, many);
+        return 0;
     case ["coverage"]:
         CoverageBench.Run(null, 400);
         return 0;
@@ -51,6 +54,6 @@ switch (args)
     default:
         Console.Error.WriteLine(
             "say: kernels [BenchmarkDotNet options] | traffic | job FILE [PROBES] | solver [FAMILY | all [SOLVES]] | setup [FAMILY] "
-            + "| exact [FAMILY | all] | coverage [FAMILY | all [SEEDS]]");
+            + "| exact [FAMILY | all] | coverage [FAMILY | all [SEEDS]] | links FILE PROBES REFERENCES");
         return 2;
 }

@@ -228,19 +228,4 @@ internal sealed class CoverageTrial
             }
         }
     }
-
-    private sealed class NoObserver : IRunObserver
-    {
-        public void Begin(string phase, double? total, string unit)
-        {
-        }
-
-        public void Report(double done)
-        {
-        }
-
-        public void End()
-        {
-        }
-    }
 }
