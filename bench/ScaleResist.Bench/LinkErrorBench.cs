@@ -29,6 +29,17 @@ internal static class LinkErrorBench
         LaplacianSolver solver = new(network, probes, plan.Seed);
         ProbedEstimates sums = ProbedEstimates.Run(
             blocks, plan, new EstimateInputs(), null, null, true, null, solver, new NoObserver(), default);
+        using (ProbePanel panel = new(network, plan.Seed))
+        using (SolverWorkspace<float> workspace = solver.NewWorkspace<float>())
+        {
+            panel.Draw(0, probes, plan.Threads);
+            long first = Stopwatch.GetTimestamp();
+            panel.Solve(solver, plan.ModeErrorOf(0), workspace, default);
+            long second = Stopwatch.GetTimestamp();
+            double error = SolveCheck.ModeError(network, panel, solver, workspace, plan.Threads, default);
+            Console.WriteLine($"a panel: {Stopwatch.GetElapsedTime(first, second).TotalSeconds:0.00} s on one thread; its check: "
+                + $"{Stopwatch.GetElapsedTime(second).TotalSeconds:0.00} s, mode error {error:0.0e+0}, allowed {plan.ModeErrorOf(0):0.0e+0}");
+        }
         LinkResistances resistances = new(network, blocks.Bridges, sums.Links!, plan.Confidence);
         LinkResult[] found = [.. drawn.Select(link => One(resistances, link))];
         long begin = Stopwatch.GetTimestamp();
