@@ -22,7 +22,7 @@ internal sealed class Audit
     // From so many probes on, twice as many are a small part of the run.
     private const int Many = 32;
     private const int ProbesForMany = 256;
-    private const double ReferenceWidth = 1e-4; // a few per cent of the smallest standard errors, those of 4,096 probes on social networks
+    private const double ReferenceWidth = 1e-4; // little beside the least of standard errors
     private const double WidestReference = 1e-3;
     private const double ChanceOfBlame = 1e-3;
     private const double SixStandardErrors = 1 - 2e-9; // as the confidence of an interval
