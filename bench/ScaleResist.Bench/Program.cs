@@ -2,6 +2,7 @@
 
 using BenchmarkDotNet.Running;
 using ScaleResist.Bench;
+using ScaleResist.Bench.Coverage;
 
 switch (args)
 {
@@ -44,9 +45,21 @@ switch (args)
     case ["distances", string family]:
         DistanceBench.Run(family);
         return 0;
+    case ["links", string file, string probes, string references] when int.TryParse(probes, out int count) && int.TryParse(references, out int many):
+        LinkErrorBench.Run(file, count, many);
+        return 0;
+    case ["coverage"]:
+        CoverageBench.Run(null, 400);
+        return 0;
+    case ["coverage", string family]:
+        CoverageBench.Run(family == "all" ? null : family, 400);
+        return 0;
+    case ["coverage", string family, string seeds] when int.TryParse(seeds, out int count):
+        CoverageBench.Run(family == "all" ? null : family, count);
+        return 0;
     default:
         Console.Error.WriteLine(
             "say: kernels [BenchmarkDotNet options] | traffic | job FILE [PROBES] | solver [FAMILY | all [SOLVES]] | setup [FAMILY] "
-            + "| exact [FAMILY | all] | distances [road | preferential | grid]");
+            + "| exact [FAMILY | all] | distances [road | preferential | grid] | coverage [FAMILY | all [SEEDS]] | links FILE PROBES REFERENCES");
         return 2;
 }

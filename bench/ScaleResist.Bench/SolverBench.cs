@@ -52,12 +52,14 @@ internal static class SolverBench
     }
 
     /// <summary>The largest component of a generated network.</summary>
-    public static Network Generate(FamilyPlan plan)
+    public static Network Generate(FamilyPlan plan) => LargestComponent(GenerateWhole(plan));
+
+    /// <summary>A generated network.</summary>
+    public static Network GenerateWhole(FamilyPlan plan)
     {
         EdgeListBuilder builder = new(weighted: plan.Decades > 0);
         NetworkGenerator.Generate(plan, new Sink(builder));
-        return LargestComponent(NetworkBuilder.Build(
-            builder.Finish(new InputFacts { Path = "generated", Form = "memory", Sha256 = "", Columns = ["1", "2"] })));
+        return NetworkBuilder.Build(builder.Finish(new InputFacts { Path = "generated", Form = "memory", Sha256 = "", Columns = ["1", "2"] }));
     }
 
     private static Network LargestComponent(Network network)

@@ -41,19 +41,4 @@ internal static class WholeJob
 
         public long Complete() => rows;
     }
-
-    private sealed class NoObserver : IRunObserver
-    {
-        public void Begin(string phase, double? total, string unit)
-        {
-        }
-
-        public void Report(double done)
-        {
-        }
-
-        public void End()
-        {
-        }
-    }
 }

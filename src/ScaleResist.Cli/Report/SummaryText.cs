@@ -78,7 +78,8 @@ internal static class SummaryText
         {
             yield return Entry("audit", $"{Numbers.Many(audit.Compared, "random link")} and pairs solved: relative error "
                 + $"{Numbers.Value(audit.MedianError!.Value, 2)} (median), {Numbers.Value(audit.Percentile95Error!.Value, 2)} (95 %), "
-                + $"{Numbers.Value(audit.WorstError!.Value, 2)} (worst); {audit.Held} of {Numbers.Many(audit.Intervals, "interval")} held");
+                + $"{Numbers.Value(audit.WorstError!.Value, 2)} (worst); {audit.Held} of {Numbers.Many(audit.Intervals, "interval")} held; "
+                + $"solves off by {Numbers.Value(audit.SolverError, 2)} where {Numbers.Value(audit.SolverErrorAllowed, 2)} is allowed");
         }
         yield return Entry("time", $"{Numbers.Duration((record.Finished - record.Started).TotalSeconds)}: "
             + string.Join(", ", ShortPhases(record.Phases).Select(p => $"{p.Name} {Numbers.Duration(p.Seconds)}")));

@@ -12,4 +12,14 @@ public readonly record struct Estimate(double Value, double StandardError, doubl
 {
     /// <summary>A value without error.</summary>
     public static Estimate Exact(double value) => new(value, 0, value, value);
+
+    /// <summary>The same with a bias of at most so much on top, as a solver leaves: its whole size goes to the ends, and to the error as if it were one.</summary>
+    /// <param name="bias">The most it can be, either way.</param>
+    /// <param name="least">What the truth cannot lie below.</param>
+    internal Estimate WithBias(double bias, double least) => this with
+    {
+        StandardError = Math.Sqrt((StandardError * StandardError) + (bias * bias)),
+        Lower = Math.Min(Lower, Math.Max(least, Lower - bias)),
+        Upper = Upper + bias,
+    };
 }

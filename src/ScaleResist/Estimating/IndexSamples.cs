@@ -14,6 +14,7 @@ namespace ScaleResist.Estimating;
 internal sealed class IndexSamples(HangingWeights hanging, Func<(double Plain, double ByStrength, double ByWeight), double> choose)
 {
     private double[] known = [];
+    private double[] knownOfProbed = []; // of it, the blocks that have a probed part too
     private RunningMoments[] moments = [];
     private DeflatedShares? deflated;
 
@@ -36,6 +37,7 @@ internal sealed class IndexSamples(HangingWeights hanging, Func<(double Plain, d
     {
         int components = blocks.Network.Components.Count;
         known = new double[components];
+        knownOfProbed = new double[components];
         if (moments.Length == 0)
             moments = new RunningMoments[components];
         for (int c = 0; c < components; c++)
@@ -51,7 +53,10 @@ internal sealed class IndexSamples(HangingWeights hanging, Func<(double Plain, d
                 double sum = hanging.OfHead(b) * Square(HeadShare(b, c)) / rows.OfHead(b);
                 foreach (int v in blocks.Members(b))
                     sum += hanging.OfMember(v) * Square(MemberShare(v, c)) / rows.OfMember(v);
-                known[c] += hanging.Total(c) * (sum + (deflated?.Parts.GetValueOrDefault(b) ?? 0));
+                double part = hanging.Total(c) * (sum + (deflated?.Parts.GetValueOrDefault(b) ?? 0));
+                known[c] += part;
+                if (!blocks.IsBridge(b))
+                    knownOfProbed[c] += part;
             }
         }
 
@@ -71,15 +76,19 @@ internal sealed class IndexSamples(HangingWeights hanging, Func<(double Plain, d
         return error > 0 ? error / (known[component] + moments[component].Mean) : 0;
     }
 
-    /// <summary>The index with a Student t interval.</summary>
-    public Estimate Estimate(int component, double confidence)
+    /// <summary>The index with its interval, Student t after the samples' skewness.</summary>
+    /// <param name="component">Of the network.</param>
+    /// <param name="confidence">Of the interval.</param>
+    /// <param name="solverError">Mean square of the mode errors of the probes.</param>
+    public Estimate Estimate(int component, double confidence, double solverError)
     {
         RunningMoments probed = moments[component];
         if (probed.Count == 0 || probed.Mean == 0)
             return Estimating.Estimate.Exact(known[component]);
         double value = known[component] + probed.Mean;
-        double half = Quantiles.Student(confidence, probed.Count - 1) * probed.StandardError;
-        return new Estimate(value, probed.StandardError, value - half, value + half);
+        (double lower, double upper) = probed.Interval(Quantiles.Student(confidence, probed.Count - 1));
+        return new Estimate(value, probed.StandardError, known[component] + Math.Max(0, lower), known[component] + upper)
+            .WithBias(solverError * (knownOfProbed[component] + probed.Mean), known[component]);
     }
 
     private static double Share(double weight, double total) => total > 0 ? Math.Max(0, 1 - (weight / total)) : 1;

@@ -11,6 +11,9 @@
 // of all resistances from u.
 // Where a few smooth modes carry most of the spread, they are taken out of large blocks and added exactly (Deflation): y gives way to
 // y - X a, k_u to k_u less its shift, and the part of X is known.
+// A solver's error e has energy delta^2 at most (delta the mode error), so e_u^2 <= delta^2 l_u within the block and sum w_B e^2 <= delta^2 Kf_w(B) / W;
+// conjugate gradient's e is orthogonal to what it found, so that the means of the squares move by no more. It is the whole error where x = 0, as in
+// complete blocks.
 
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
@@ -32,6 +35,7 @@ public sealed unsafe class NodeSums
     private readonly double[] squares; // of members, summed over probes
     private readonly double[] headSquares; // of heads, by block
     private Deflation? deflation;
+    private double solverError; // squares of mode errors, summed over probes
 
     /// <summary>Empty sums.</summary>
     /// <param name="blocks">Of the network.</param>
@@ -106,7 +110,7 @@ public sealed unsafe class NodeSums
             index.Clear();
         Array.Clear(squares);
         Array.Clear(headSquares);
-        Probes = 0;
+        (Probes, solverError) = (0, 0);
     }
 
     /// <summary>Adds a solved panel. Panels are added in order of their numbers.</summary>
@@ -145,6 +149,7 @@ public sealed unsafe class NodeSums
             }
         });
         Probes += panel.Probes;
+        solverError += panel.Probes * panel.ModeError * panel.ModeError;
     }
 
     /// <summary>Whether nothing of a component was left to the probes.</summary>
@@ -160,14 +165,14 @@ public sealed unsafe class NodeSums
     }
 
     /// <summary>Kf of a component, the sum of R over its pairs: Student t interval over the probes.</summary>
-    public Estimate KirchhoffIndex(int component, double confidence) => indices[0].Estimate(component, confidence);
+    public Estimate KirchhoffIndex(int component, double confidence) => indices[0].Estimate(component, confidence, SolverError);
 
     /// <summary>The sum of d_u d_v R over pairs.</summary>
-    public Estimate DegreeKirchhoffIndex(int component, double confidence) => indices[1].Estimate(component, confidence);
+    public Estimate DegreeKirchhoffIndex(int component, double confidence) => indices[1].Estimate(component, confidence, SolverError);
 
     /// <summary>The sum of w_u w_v R over pairs; null without node weights.</summary>
     public Estimate? WeightedKirchhoffIndex(int component, double confidence) =>
-        indices.Length > 2 ? indices[2].Estimate(component, confidence) : null;
+        indices.Length > 2 ? indices[2].Estimate(component, confidence, SolverError) : null;
 
     /// <summary>
     /// l_u of every node; 0 for a single node. The parts of the blocks are independent, with standard errors sqrt(2/K) E x^2 each; the
@@ -181,6 +186,7 @@ public sealed unsafe class NodeSums
         double[] known = Around((share, strength, _) => share * share / strength, value => value, deflated: true);
         double count = Math.Max(1, Probes); // without probes all sums are 0
         double[] probed = Around((_, _, sum) => sum / count, _ => 0);
+        double[] open = Around((share, strength, sum) => sum == 0 ? 0 : (share * share / strength) + (sum / count), _ => 0, deflated: true);
         double[] variance = Around((_, _, sum) => sum / count * (sum / count) * 2 / count, _ => 0);
         Estimate[] diagonals = new Estimate[n];
         for (int u = 0; u < n; u++)
@@ -188,7 +194,7 @@ public sealed unsafe class NodeSums
             double error = Math.Sqrt(variance[u]);
             double stretch = probed[u] > 0 ? Math.Exp(quantile * error / probed[u]) : 1;
             diagonals[u] = new Estimate(
-                known[u] + probed[u], error, known[u] + (probed[u] / stretch), known[u] + (probed[u] * stretch));
+                known[u] + probed[u], error, known[u] + (probed[u] / stretch), known[u] + (probed[u] * stretch)).WithBias(open[u] * SolverError, known[u]);
         }
         return diagonals;
 
@@ -215,6 +221,8 @@ public sealed unsafe class NodeSums
             return [.. sums.Below.Zip(sums.Above, (below, above) => below + above)];
         }
     }
+
+    private double SolverError => solverError / Math.Max(1, Probes);
 
     private bool IsProbed(int block) => !blocks.IsBridge(block) && exact?.Has(block) != true;
 

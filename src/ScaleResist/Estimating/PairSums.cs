@@ -1,5 +1,7 @@
 // Requested pairs: where they are few, each is solved and enclosed; else the same residuals as for links, for any two nodes.
 // Invariant: two nodes of different components get +infinity, one node twice gets 0, and what is not solved is estimated as a link would be.
+// A solver's error e has energy delta^2 at most (delta the mode error), so (e_u - e_v)^2 <= delta^2 R; conjugate gradient's e is orthogonal to what it
+// found, so that the mean of the squares moves by no more. It is the whole error where x1 = 0, as in complete networks.
 
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
@@ -22,6 +24,7 @@ public sealed class PairSums
     private readonly double[] single;
     private readonly Dictionary<int, Enclosure> solved = [];
     private int probes;
+    private double solverError; // squares of mode errors, summed over probes
 
     /// <summary>Empty sums.</summary>
     /// <param name="network">The network.</param>
@@ -84,6 +87,7 @@ public sealed class PairSums
             single[i] += other;
         }
         probes += panel.Probes;
+        solverError += panel.Probes * panel.ModeError * panel.ModeError;
     }
 
     /// <summary>What is known of a pair, and how it was found. Safe from several threads.</summary>
@@ -98,9 +102,10 @@ public sealed class PairSums
         (int u, int v) = pairs[pair];
         long arc = network.FindArc(u, v);
         LinkBounds bounds = BoundsOf(u, v, arc);
-        return (arc < 0
+        Estimate found = arc < 0
             ? LinkLikelihood.EstimatePair(bounds, shorted[pair], probes, quantile)
-            : LinkLikelihood.Estimate(bounds, shorted[pair], single[pair], probes, quantile), ResistanceMethod.Probe);
+            : LinkLikelihood.Estimate(bounds, shorted[pair], single[pair], probes, quantile);
+        return (found.WithBias(found.Value * solverError / probes, bounds.Lower), ResistanceMethod.Probe);
     }
 
     /// <summary>Whether a pair needs probes or a solve.</summary>

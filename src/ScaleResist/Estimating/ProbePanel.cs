@@ -3,6 +3,7 @@
 
 using ScaleResist.Graphs;
 using ScaleResist.Kernels;
+using ScaleResist.Solving;
 
 namespace ScaleResist.Estimating;
 
@@ -53,6 +54,17 @@ public sealed class ProbePanel : IDisposable
         Probes = Math.Min(Width, probes - (number * Width));
         Parallel.For(0, chunks.Count, new ParallelOptions { MaxDegreeOfParallelism = threads }, i =>
             ProbeKernels.Fill(network, seed, number, Lanes, B, chunks[i].Start, chunks[i].End));
+    }
+
+    /// <summary>The mode error that the solutions are good to (<see cref="LaplacianSolver.SolveProbes"/>); 0 where nobody said.</summary>
+    public double ModeError { get; private set; }
+
+    /// <summary>Fills <see cref="Z"/>, and remembers how well.</summary>
+    /// <inheritdoc cref="LaplacianSolver.SolveProbes"/>
+    public void Solve(LaplacianSolver solver, double modeError, SolverWorkspace<float> workspace, CancellationToken cancel)
+    {
+        solver.SolveProbes(B, Z, Probes, modeError, workspace, cancel);
+        ModeError = modeError;
     }
 
     /// <summary>The signs of the link between two nodes in this panel, as seen from the first.</summary>

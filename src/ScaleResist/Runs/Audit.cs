@@ -1,7 +1,9 @@
 // The audit: random links and pairs solved to certified enclosures before the first probe, and what the probes say of them held against those.
 // Invariant: an audit changes no other number. It is drawn by seed and blames the error bars only where chance would do so in one run of a
 // thousand: by the binomial test on links, whose errors are nearly independent; and by a single value six standard errors off, which counts
-// whatever the dependence (pairs share the slow modes of a network, so that all their intervals may miss together).
+// whatever the dependence (pairs share the slow modes of a network, so that all their intervals may miss together). A solver that stops too early
+// spoils smooth modes before it spoils links, and is found by itself, whatever the statistics: the first panel is checked by a second solve
+// (SolveCheck), and blamed where it is off by more than twice what the error bars need.
 
 using System.Globalization;
 using MathNet.Numerics.Distributions;
@@ -20,11 +22,12 @@ internal sealed class Audit
     // From so many probes on, twice as many are a small part of the run.
     private const int Many = 32;
     private const int ProbesForMany = 256;
-    private const double ReferenceWidth = 1e-6;
+    private const double ReferenceWidth = 1e-4; // little beside the least of standard errors
     private const double WidestReference = 1e-3;
     private const double ChanceOfBlame = 1e-3;
     private const double SixStandardErrors = 1 - 2e-9; // as the confidence of an interval
     private const uint Purpose = 1;
+    private const double SolverMargin = 2;
 
     private readonly Network network;
     private readonly List<(long Link, int U, int V)> links;
@@ -63,10 +66,12 @@ internal sealed class Audit
     /// <summary>Compares, and writes the rows that could be compared.</summary>
     /// <param name="bridges">Of the network.</param>
     /// <param name="sums">Of links; null where none is probed.</param>
-    /// <param name="confidence">Of the intervals.</param>
+    /// <param name="plan">Confidence of the intervals, and the error allowed to solves.</param>
+    /// <param name="solverError">Of the first panel, as found.</param>
     /// <param name="writer">Takes the rows.</param>
-    public AuditFacts Write(Bridges bridges, LinkSums? sums, double confidence, ITableWriter writer)
+    public AuditFacts Write(Bridges bridges, LinkSums? sums, EstimatePlan plan, double solverError, ITableWriter writer)
     {
+        double confidence = plan.Confidence;
         LinkResistances inside = new(network, bridges, sums, null, confidence), near = new(network, bridges, sums, null, SixStandardErrors);
         List<Row> rows = [];
         for (int i = 0; i < links.Count; i++)
@@ -77,7 +82,7 @@ internal sealed class Audit
                 Pairs.Estimate(i, Quantiles.Normal(confidence)).Resistance, Pairs.Estimate(i, Quantiles.Normal(SixStandardErrors)).Resistance);
         }
         writer.Write(ToBatch(rows));
-        return Facts(rows, links.Count + pairs.Count - rows.Count, confidence);
+        return Facts(rows, links.Count + pairs.Count - rows.Count, plan, solverError);
 
         void Add(int u, int v, Enclosure reference, bool isLink, Estimate estimate, Estimate wide)
         {
@@ -95,6 +100,9 @@ internal sealed class Audit
         static bool? Holds(Estimate interval, Enclosure truth) => interval.Lower <= truth.Lower && truth.Upper <= interval.Upper ? true
             : truth.Upper < interval.Lower || interval.Upper < truth.Lower ? false : null;
     }
+
+    /// <summary>The facts where only solves are checked.</summary>
+    public static AuditFacts OfSolves(EstimatePlan plan, double solverError) => Facts([], 0, plan, solverError);
 
     private readonly record struct Row(int U, int V, Enclosure Reference, bool IsLink, double Resistance, bool? Held, bool FarOff)
     {
@@ -119,8 +127,9 @@ internal sealed class Audit
         double[] Column(Func<Row, double> value) => [.. rows.Select(value)];
     }
 
-    private static AuditFacts Facts(List<Row> rows, int tooWide, double confidence)
+    private static AuditFacts Facts(List<Row> rows, int tooWide, EstimatePlan plan, double solverError)
     {
+        double confidence = plan.Confidence, allowed = plan.SoundModeErrorOf(0);
         double[] errors = [.. rows.Select(row => Math.Abs(row.RelativeError)).Order()];
         int intervals = rows.Count(row => row.Held is not null), held = rows.Count(row => row.Held == true);
         int ofLinks = rows.Count(row => row.IsLink && row.Held is not null), linksHeld = rows.Count(row => row.IsLink && row.Held == true);
@@ -137,7 +146,12 @@ internal sealed class Audit
             LinkIntervals = ofLinks,
             LinksHeld = linksHeld,
             FarOff = farOff,
-            Warning = ChanceOf(ofLinks - linksHeld, ofLinks, 1 - confidence) <= ChanceOfBlame
+            SolverError = solverError,
+            SolverErrorAllowed = allowed,
+            Warning = !(solverError <= SolverMargin * allowed)
+                ? string.Create(CultureInfo.InvariantCulture,
+                    $"solves of probes are off by {solverError:0.0e+0} of a mode's standard deviation, where {allowed:0.0e+0} is allowed")
+                : ChanceOf(ofLinks - linksHeld, ofLinks, 1 - confidence) <= ChanceOfBlame
                 ? string.Create(CultureInfo.InvariantCulture,
                     $"{linksHeld} of {ofLinks} audited links lie within their intervals, where {100 * confidence:0.####} % should")
                 : farOff > 0 ? $"{farOff} of {rows.Count} audited links and pairs lie more than six standard errors from the truth" : null,

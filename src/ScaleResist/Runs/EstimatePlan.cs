@@ -103,6 +103,9 @@ public sealed record EstimatePlan
     /// The mode error in force for a panel. With a target error, where K is known only at the end, panel i gets half of what K = 16 (i+1) would:
     /// the sum of (i+1)^(-1/2) over P panels is below 2 P^(1/2), so that the mean over the panels keeps to the twentieth wherever the run stops.
     /// </summary>
-    public double ModeErrorOf(int panel) => ModeError
-        ?? (TargetError is null ? 0.05 * Math.Sqrt(2.0 / MostProbes) : 0.025 * Math.Sqrt(2.0 / (ProbePanel.Width * (panel + 1.0))));
+    public double ModeErrorOf(int panel) => ModeError ?? SoundModeErrorOf(panel);
+
+    /// <summary>The same without <see cref="ModeError"/>: what the error bars need, and an audit demands.</summary>
+    internal double SoundModeErrorOf(int panel) =>
+        TargetError is null ? 0.05 * Math.Sqrt(2.0 / MostProbes) : 0.025 * Math.Sqrt(2.0 / (ProbePanel.Width * (panel + 1.0)));
 }

@@ -137,7 +137,11 @@ public static class EstimateRun
         if (audit is not null)
         {
             Write("audit", Tables.Audit(label), Audit.CountFor(plan),
-                w => audited = audit.Write(blocks.Bridges, probed!.Links, plan.Confidence, w));
+                w => audited = audit.Write(blocks.Bridges, probed!.Links, plan, probed.SolverError, w));
+        }
+        else if (probed is not null)
+        {
+            audited = Audit.OfSolves(plan, probed.SolverError);
         }
         return new EstimateSummary
         {

@@ -141,7 +141,7 @@ public sealed record ProbingFacts
     public required double? RelativeStandardError { get; init; }
 }
 
-/// <summary>Probed links and pairs against certified enclosures.</summary>
+/// <summary>Probed links and pairs against certified enclosures, and a panel's solves against the error they may have.</summary>
 public sealed record AuditFacts
 {
     /// <summary>Links and pairs whose enclosure is narrow enough to compare with.</summary>
@@ -176,6 +176,12 @@ public sealed record AuditFacts
 
     /// <summary>Links and pairs further from the truth than six standard errors.</summary>
     public required int FarOff { get; init; }
+
+    /// <summary>The largest error of the first panel's columns, relative to a mode's standard deviation, as a second solve found it.</summary>
+    public required double SolverError { get; init; }
+
+    /// <summary>What it may be: a twentieth of the relative statistical error.</summary>
+    public required double SolverErrorAllowed { get; init; }
 
     /// <summary>What speaks against the error bars, in words; null where nothing does.</summary>
     public required string? Warning { get; init; }

@@ -1,6 +1,5 @@
 // The nodes, components and coordinates tables.
-// Invariant: closeness ranks count within a component, 1 the closest; rank_lower..rank_upper holds every rank the intervals
-// allow.
+// Invariant: one row a node, in internal order.
 
 using ScaleResist.Estimating;
 using ScaleResist.Graphs;
@@ -101,54 +100,6 @@ internal static class NodeRows
         {
             cancel.ThrowIfCancellationRequested();
             write(start, Math.Min(batch, rows - start));
-        }
-    }
-
-    private sealed record Ranks(int[] Rank, int[] Lower, int[] Upper)
-    {
-        // A node of lower l_u is closer to all others: total resistance is n l_u + tr L+. Those surely closer are the ones
-        // whose interval ends below this one's; those perhaps closer begin below its end.
-        public static Ranks Of(Network network, Estimate[] diagonal)
-        {
-            int n = network.NodeCount;
-            Ranks ranks = new(new int[n], new int[n], new int[n]);
-            foreach (Component component in network.Components)
-            {
-                int size = component.Nodes;
-                int[] nodes = new int[size];
-                double[] values = new double[size], lower = new double[size], upper = new double[size];
-                for (int i = 0; i < size; i++)
-                {
-                    nodes[i] = component.Start + i;
-                    Estimate l = diagonal[component.Start + i];
-                    (values[i], lower[i], upper[i]) = (l.Value, l.Lower, l.Upper);
-                }
-                Array.Sort(values, nodes);
-                Array.Sort(lower);
-                Array.Sort(upper);
-                for (int i = 0; i < size; i++)
-                {
-                    Estimate l = diagonal[nodes[i]];
-                    ranks.Rank[nodes[i]] = i + 1;
-                    ranks.Lower[nodes[i]] = 1 + CountBelow(upper, l.Lower, orEqual: false);
-                    ranks.Upper[nodes[i]] = CountBelow(lower, l.Upper, orEqual: true);
-                }
-            }
-            return ranks;
-        }
-
-        private static int CountBelow(double[] sorted, double value, bool orEqual)
-        {
-            int low = 0, high = sorted.Length;
-            while (low < high)
-            {
-                int middle = (low + high) / 2;
-                if (sorted[middle] < value || (orEqual && sorted[middle] == value))
-                    low = middle + 1;
-                else
-                    high = middle;
-            }
-            return low;
         }
     }
 }

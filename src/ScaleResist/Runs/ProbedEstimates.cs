@@ -22,6 +22,9 @@ internal sealed class ProbedEstimates
 
     public Coordinates? Coordinates { get; init; }
 
+    /// <summary>The mode error of the first panel, as a check by a second solve found it.</summary>
+    public double SolverError { get; private set; }
+
     /// <summary>How many probes there were, and why not more.</summary>
     public ProbingFacts? Facts { get; private set; }
 
@@ -80,14 +83,14 @@ internal sealed class ProbedEstimates
                     work.Add(() =>
                     {
                         double error = plan.ModeErrorOf(number);
-                        solver.SolveProbes(slot.Panel.B, slot.Panel.Z, slot.Panel.Probes, error, slot.Workspace, cancel);
+                        slot.Panel.Solve(solver, error, slot.Workspace, cancel);
                         if (slot.Signs is NodeSignPanel signs)
                             solver.SolveProbes(signs.B, signs.X, signs.Probes, error, slot.Workspace, cancel);
                     });
                 }
                 Together(work, plan.Threads);
                 if (first == 0)
-                    begin += sums.AddFirst(slots[0], plan, solver, cancel);
+                    begin += sums.AddFirst(network, slots[0], plan, solver, cancel);
                 if (sums.Coordinates is not null)
                     RunCost.CheckMemory(network, plan, added + (count * ProbePanel.Width));
                 for (int i = 0; i < count && dial.Stopped is null; i++)
@@ -119,10 +122,11 @@ internal sealed class ProbedEstimates
         return sums;
     }
 
-    // The first panel's nodes; a deflation is once for all panels: the ticks it took are not a batch's.
-    private long AddFirst(Slot slot, EstimatePlan plan, LaplacianSolver solver, CancellationToken cancel)
+    // The first panel's check and its nodes; both, and a deflation, are once for all panels: the ticks they took are not a batch's.
+    private long AddFirst(Network network, Slot slot, EstimatePlan plan, LaplacianSolver solver, CancellationToken cancel)
     {
         long begin = Stopwatch.GetTimestamp();
+        SolverError = SolveCheck.ModeError(network, slot.Panel, solver, slot.Workspace, plan.Threads, cancel);
         Nodes?.AddFirst(slot.Panel, plan.ForeseenProbes, solver, slot.Workspace, plan.Seed, plan.Threads, cancel);
         return Stopwatch.GetTimestamp() - begin;
     }

@@ -99,6 +99,8 @@ internal sealed class FakeEngine : IEstimateEngine
         LinkIntervals = 8,
         LinksHeld = held / 2,
         FarOff = 0,
+        SolverError = 0.004,
+        SolverErrorAllowed = 0.0088,
         Warning = warning,
     };
 

@@ -36,7 +36,7 @@ internal sealed class Probing
         for (int i = 0; i < ProbePanel.CountFor(probes); i++)
         {
             panel.Draw(i, probes, 1);
-            solver.SolveProbes(panel.B, panel.Z, panel.Probes, modeError, workspace, default);
+            panel.Solve(solver, modeError, workspace, default);
             add(panel);
         }
     }

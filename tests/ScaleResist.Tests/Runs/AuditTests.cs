@@ -2,8 +2,10 @@
 
 using MathNet.Numerics.LinearAlgebra;
 using ScaleResist.DataGen.Networks;
+using ScaleResist.Estimating;
 using ScaleResist.Graphs;
 using ScaleResist.Runs;
+using ScaleResist.Solving;
 
 namespace ScaleResist.Tests.Runs;
 
@@ -32,8 +34,8 @@ public sealed class AuditTests
         {
             double truth = dense.Resistance(network.Node(source[i]), network.Node(target[i]));
             Assert.InRange(truth, lower[i] * (1 - 1e-9), upper[i] * (1 + 1e-9)); // of the dense inverse
-            Assert.InRange(upper[i] / lower[i], 1, 1 + 1e-5);
-            Assert.Equal((found[i] / truth) - 1, error[i], 1e-5);
+            Assert.InRange(upper[i] / lower[i], 1, 1 + 1e-3);
+            Assert.Equal((found[i] / truth) - 1, error[i], 1e-3);
             if (table.TryGetValue((source[i], target[i]), out double resistance))
             {
                 ofLinks++;
@@ -67,20 +69,64 @@ public sealed class AuditTests
         Assert.InRange((double)held / intervals, 0.92, 0.97);
     }
 
-    // A mode error of e sqrt(n) allows a relative error of e in the energy norm, which is that of the links. (Preferential attachment is left out:
-    // whatever is allowed, its links come out well enough to pass.)
+    // A tolerance of 0.3 where 0.0044 to 0.0088 is needed leaves links as they were (0.3 of a mode is 0.3/sqrt(n) of the energy) but may take a tenth
+    // off the smoothest modes, which are most of the index of a mesh. A relative error of 0.3 in the energy norm, 0.3 sqrt(n), spoils everything.
     [Theory]
-    [InlineData(Family.Grid, 0.3)]
-    [InlineData(Family.Road, 0.3)]
-    [InlineData(Family.SmallWorld, 0.3)]
-    public void Solves_that_stop_too_early_are_reported(Family family, double error)
+    [MemberData(nameof(Broken))]
+    public void Solves_that_stop_too_early_are_reported(Family family, int probes)
     {
-        Network network = TestNetworks.Of(family, 3000);
-        EstimatePlan plan = new() { Route = Route.Probe, Probes = 256, Want = Want.Links };
+        Network network = TestNetworks.Of(family, 2000);
+        EstimatePlan plan = new() { Route = Route.Probe, Probes = probes };
         Run(network, plan, out EstimateSummary sound);
-        Run(network, plan with { ModeError = error * Math.Sqrt(network.NodeCount) }, out EstimateSummary broken);
         Assert.Null(sound.Audit!.Warning);
-        Assert.NotNull(broken.Audit!.Warning);
+        Assert.InRange(sound.Audit.SolverError, 0, sound.Audit.SolverErrorAllowed);
+        foreach (double error in new[] { 0.3, 0.3 * Math.Sqrt(network.NodeCount) })
+        {
+            Run(network, plan with { ModeError = error }, out EstimateSummary broken);
+            Assert.Contains("solves of probes are off by", broken.Audit!.Warning, StringComparison.Ordinal);
+        }
+        Run(network, plan with { ModeError = 0.3, Want = Want.Index }, out EstimateSummary index);
+        Assert.Contains("solves of probes are off by", index.Audit!.Warning, StringComparison.Ordinal);
+    }
+
+    public static TheoryData<Family, int> Broken
+    {
+        get
+        {
+            TheoryData<Family, int> data = [];
+            foreach (Family family in new[] { Family.Grid, Family.Torus, Family.Cube, Family.Hypercube, Family.Road, Family.Preferential,
+                Family.PowerLaw, Family.SmallWorld, Family.Fringe })
+            {
+                data.Add(family, 64);
+                data.Add(family, 256);
+            }
+            return data;
+        }
+    }
+
+    [Theory]
+    [InlineData(Family.Grid, 0)]
+    [InlineData(Family.Preferential, 0)]
+    [InlineData(Family.Road, 6)]
+    public void The_check_of_a_panel_finds_the_error_that_a_dense_inverse_finds(Family family, double decades)
+    {
+        Network network = TestNetworks.Of(family, 400, decades: decades);
+        Matrix<double> inverse = network.DensePseudoInverse(), laplacian = network.DenseLaplacian();
+        LaplacianSolver solver = new(network);
+        using SolverWorkspace<float> workspace = solver.NewWorkspace<float>();
+        using ProbePanel panel = new(network, 1);
+        panel.Draw(0, 16, 1);
+        panel.Solve(solver, 0.5, workspace, default);
+        double worst = 0;
+        for (int j = 0; j < 16; j++)
+        {
+            Vector<double> z = Vector<double>.Build.Dense(network.NodeCount, u => panel.Z.Row(u)[j]);
+            Vector<double> truth = inverse * Vector<double>.Build.Dense(network.NodeCount, u => panel.B.Row(u)[j]);
+            double error = (z - truth) * (laplacian * (z - truth)), energy = truth * (laplacian * truth);
+            worst = Math.Max(worst, Math.Sqrt(error / energy * (network.NodeCount - 1)));
+        }
+        Assert.InRange(worst, 0.01, 0.5);
+        Assert.InRange(SolveCheck.ModeError(network, panel, solver, workspace, 2, default) / worst, 0.94, 1);
     }
 
     [Fact]
