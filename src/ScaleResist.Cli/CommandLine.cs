@@ -9,10 +9,10 @@ namespace ScaleResist.Cli;
 internal static class CommandLine
 {
     private const string Start = "write scaleresist estimate NETWORK --lake DIR, or see scaleresist --help";
-    private static readonly string[] Verbs = ["estimate", "survey"];
+    private static readonly string[] Verbs = ["estimate", "survey", "tune"];
 
     // Verbs of the contract that later versions bring.
-    private static readonly string[] LaterVerbs = ["tune", "impact", "distances", "lookup", "drift", "merge"];
+    private static readonly string[] LaterVerbs = ["impact", "distances", "lookup", "drift", "merge"];
 
     /// <summary>Runs a command line.</summary>
     /// <returns>The exit code.</returns>
@@ -35,10 +35,20 @@ internal static class CommandLine
             return Refuse(host, UnknownVerb(args[0]));
         if (args.Skip(1).Any(a => a is "--help" or "-h" or "-?"))
         {
-            host.Out.Write(args[0] == "survey" ? HelpText.Survey : HelpText.Estimate);
+            host.Out.Write(args[0] switch
+            {
+                "survey" => HelpText.Survey,
+                "tune" => HelpText.Tune,
+                _ => HelpText.Estimate,
+            });
             return ExitCode.Done;
         }
-        return args[0] == "survey" ? Survey(args[1..], host, interrupted) : Estimate(args[1..], host, interrupted);
+        return args[0] switch
+        {
+            "survey" => Survey(args[1..], host, interrupted),
+            "tune" => Tune(args[1..], host, interrupted),
+            _ => Estimate(args[1..], host, interrupted),
+        };
     }
 
     /// <summary>Prints the one line of a refused command.</summary>
@@ -60,6 +70,12 @@ internal static class CommandLine
     {
         SurveyRequest? request = SurveyRequest.Parse(words, out string problem);
         return request is null ? Refuse(host, problem) : new SurveyCommand(host).Run(request, interrupted);
+    }
+
+    private static int Tune(string[] words, CliHost host, CancellationToken interrupted)
+    {
+        TuneRequest? request = TuneRequest.Parse(words, host.Time.GetUtcNow(), out string problem);
+        return request is null ? Refuse(host, problem) : new TuneCommand(host).Run(request, interrupted);
     }
 
     private static string UnknownVerb(string verb)

@@ -54,32 +54,41 @@ internal sealed class EstimateCommand(CliHost host)
         return ExitCode.Done;
     }
 
-    private static ParquetTableSink OpenSink(string staging, EstimateRequest request, InputFacts facts) => new(staging,
-        new Dictionary<string, string>
-        {
-            ["scaleresist.schema_version"] = Tables.SchemaVersion.ToString(CultureInfo.InvariantCulture),
-            ["scaleresist.program_version"] = ProgramVersion.Number,
-            ["scaleresist.run_id"] = request.RunId,
-            ["scaleresist.input_sha256"] = facts.Sha256,
-            ["scaleresist.seed"] = request.Plan.Seed.ToString(CultureInfo.InvariantCulture),
-        },
-        request.Plan.Threads);
+    private static ParquetTableSink OpenSink(string staging, EstimateRequest request, InputFacts facts) =>
+        new(staging, Provenance(request.RunId, facts, request.Plan), request.Plan.Threads);
+
+    /// <summary>What every part of a run's tables says of its rows.</summary>
+    internal static Dictionary<string, string> Provenance(string runId, InputFacts facts, EstimatePlan plan) => new()
+    {
+        ["scaleresist.schema_version"] = Tables.SchemaVersion.ToString(CultureInfo.InvariantCulture),
+        ["scaleresist.program_version"] = ProgramVersion.Number,
+        ["scaleresist.run_id"] = runId,
+        ["scaleresist.input_sha256"] = facts.Sha256,
+        ["scaleresist.seed"] = plan.Seed.ToString(CultureInfo.InvariantCulture),
+    };
 
     private int AnswerFinished(RunFolder folder, EstimateRequest request, JsonObject plan, CancellationToken interrupted)
     {
         string mend = "a finished run is never overwritten: choose another --run-id, or remove the folder yourself";
         if (request.Restart)
             return CommandLine.Refuse(host, $"--restart discards an unfinished run, and '{request.RunId}' is finished; {mend}");
+        return AnswerFinished(host, folder, request.Network, plan, interrupted);
+    }
+
+    /// <summary>Answers a command whose run is finished: done where plan and network are the same, else refused.</summary>
+    internal static int AnswerFinished(CliHost host, RunFolder folder, string network, JsonObject plan, CancellationToken interrupted)
+    {
+        string mend = "a finished run is never overwritten: choose another --run-id, or remove the folder yourself";
         JsonObject? record = ReadRecord(folder.PublishedRecord);
         if (record?["plan"] is not JsonObject finished || record["input"]?["sha256"]?.ToString() is not string digest)
             return CommandLine.Refuse(host,
                 $"{folder.Published}: a run is there, but its {RunFolder.RecordName} cannot be read; {mend}");
         string? difference = RunPlan.Difference(finished, plan);
-        if (difference is null && InputDigest.Sha256(request.Network, interrupted) != digest)
+        if (difference is null && InputDigest.Sha256(network, interrupted) != digest)
             difference = "a network of other content";
         if (difference is not null)
-            return CommandLine.Refuse(host, $"run '{request.RunId}' is finished with another plan ({difference}); {mend}");
-        host.Out.WriteLine($"run '{request.RunId}' is already done, with this plan and this network: {folder.Published}");
+            return CommandLine.Refuse(host, $"run '{folder.RunId}' is finished with another plan ({difference}); {mend}");
+        host.Out.WriteLine($"run '{folder.RunId}' is already done, with this plan and this network: {folder.Published}");
         host.Out.WriteLine(SummaryText.Query(folder.Published, (record["rows"] as JsonObject)?.Select(r => r.Key) ?? []));
         return ExitCode.Done;
     }

@@ -11,7 +11,10 @@ internal sealed record EstimateOutcome(InputFacts Input, CleaningFacts Cleaning,
 /// <summary>What a survey found.</summary>
 internal sealed record SurveyOutcome(Network Network, NetworkSurvey Survey);
 
-/// <summary>Runs estimates and surveys.</summary>
+/// <summary>The frontier that a tuning found.</summary>
+internal sealed record TuneOutcome(Network Network, IReadOnlyList<FrontierPoint> Points);
+
+/// <summary>Runs estimates, surveys and tunings.</summary>
 internal interface IEstimateEngine
 {
     /// <summary>Reads the network and estimates what the plan wants.</summary>
@@ -27,4 +30,12 @@ internal interface IEstimateEngine
     /// <param name="observer">Follows the phases, reading included.</param>
     /// <param name="interrupted">Ends the survey with an <see cref="OperationCanceledException"/>.</param>
     SurveyOutcome Survey(SurveyRequest request, IRunObserver observer, CancellationToken interrupted);
+
+    /// <summary>Reads the network, measures it and foresees what estimates would give and take.</summary>
+    /// <param name="request">The validated command.</param>
+    /// <param name="before">Seconds that the process took before.</param>
+    /// <param name="openTables">Takes the tables of runs that are done to be measured; nobody keeps them.</param>
+    /// <param name="observer">Follows the phases, reading included.</param>
+    /// <param name="interrupted">Ends the measurements with an <see cref="OperationCanceledException"/>.</param>
+    TuneOutcome Tune(TuneRequest request, double before, Func<ITableSink> openTables, IRunObserver observer, CancellationToken interrupted);
 }

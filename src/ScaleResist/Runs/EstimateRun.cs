@@ -77,14 +77,13 @@ public static class EstimateRun
                 solver = phases.Do("preparing", network.LinkCount, "links",
                     () => new LaplacianSolver(network, plan.ForeseenProbes, plan.Seed, cancel));
                 if ((left & (Want.Links | Want.Pairs)) != 0)
-                {
-                    audit = phases.Do("solving an audit", Audit.CountFor(plan), "pairs",
-                        () => Audit.Solve(blocks, plan, exact?.Part, !route.AllExact, solver, cancel));
-                }
-                probed = phases.Do("solving", plan.TargetError is null ? plan.MostProbes : null, "probes",
+                    audit = new Audit(blocks, plan, exact?.Part, !route.AllExact);
+                probed = phases.Do("solving", plan.EndIsOpen ? null : plan.MostProbes, "probes",
                     () => ProbedEstimates.Run(
                         blocks, Left(), inputs, exact?.ExactBlocks, exactPairs, !route.AllExact, audit?.Pairs, solver,
                         observer, cancel));
+                audit = audit is null || probed.OutOfTime ? null
+                    : phases.Do("solving an audit", Audit.CountFor(plan), "pairs", () => audit.Solve(solver, plan.Threads, cancel));
             }
             if ((plan.Want & (Want.Index | Want.Nodes)) != 0)
                 nodes = probed?.Nodes ?? new NodeSums(blocks, inputs.NodeWeights, exact?.ExactBlocks);
@@ -153,6 +152,7 @@ public static class EstimateRun
                 DeflationSolves = probed?.Nodes?.DeflationSolves ?? 0,
             },
             Probing = probed?.Facts,
+            TrialErrors = probed?.Errors ?? default,
             Audit = audited,
             Phases = phases.Times,
             Rows = rows,

@@ -22,6 +22,12 @@ internal sealed class ProbedEstimates
     /// <summary>How many probes there were, and why not more.</summary>
     public ProbingFacts? Facts { get; private set; }
 
+    /// <summary>Whether a time budget leaves no time for an audit.</summary>
+    public bool OutOfTime { get; private set; }
+
+    /// <summary>Of a trial: the percentile of relative standard errors over the tables of rows, and the index's; null where there is none.</summary>
+    public (double? Rows, double? Index) Errors { get; private set; }
+
     /// <summary>Draws, solves and adds the panels of a plan: all, or as many as target and time ask for.</summary>
     /// <param name="blocks">Of the network.</param>
     /// <param name="plan">What is wanted of the probes.</param>
@@ -73,9 +79,10 @@ internal sealed class ProbedEstimates
                     work.Add(() => solver.SolveProbes(
                         slot.Panel.B, slot.Panel.Z, slot.Panel.Probes, plan.ModeErrorOf(number), slot.Workspace, cancel));
                 }
+                long solving = Stopwatch.GetTimestamp();
                 Together(work, plan.Threads);
-                if (first == 0)
-                    begin += sums.AddFirst(slots[0], plan, solver, cancel);
+                double solved = Stopwatch.GetElapsedTime(solving).TotalSeconds;
+                double deflating = first == 0 ? sums.AddFirst(slots[0], plan, solver, () => dial.MayDeflate(solved), cancel) : 0;
                 if (sums.Coordinates is not null)
                     RunCost.CheckMemory(network, plan, added + (count * ProbePanel.Width));
                 for (int i = 0; i < count && dial.Stopped is null; i++)
@@ -87,10 +94,16 @@ internal sealed class ProbedEstimates
                     dial.AfterPanel();
                 }
                 if (first == 0 && plan.Probes is not null)
-                    RunCost.CheckTime(network, plan, (panels + slots.Length - 1) / slots.Length, Stopwatch.GetElapsedTime(begin));
-                dial.AfterBatch(Math.Min(plan.MostProbes, added + (slots.Length * ProbePanel.Width)));
+                {
+                    RunCost.CheckTime(network, plan, (panels + slots.Length - 1) / slots.Length,
+                        Stopwatch.GetElapsedTime(begin).TotalSeconds - deflating, deflating);
+                }
+                dial.AfterBatch(Math.Min(plan.MostProbes, added + (slots.Length * ProbePanel.Width)), deflating);
                 observer.Report(added);
             }
+            sums.OutOfTime = dial.OutOfTime;
+            if (plan.TrialPanels is not null)
+                sums.Errors = dial.Errors();
             sums.Facts = new ProbingFacts
             {
                 Probes = added,
@@ -107,12 +120,12 @@ internal sealed class ProbedEstimates
         return sums;
     }
 
-    // The first panel's nodes; a deflation is once for all panels: the ticks it took are not a batch's.
-    private long AddFirst(Slot slot, EstimatePlan plan, LaplacianSolver solver, CancellationToken cancel)
+    // The first panel's nodes; a deflation is once for all panels: the seconds it took are not a batch's.
+    private double AddFirst(Slot slot, EstimatePlan plan, LaplacianSolver solver, Func<bool> mayDeflate, CancellationToken cancel)
     {
         long begin = Stopwatch.GetTimestamp();
-        Nodes?.AddFirst(slot.Panel, plan.ForeseenProbes, solver, slot.Workspace, plan.Seed, plan.Threads, cancel);
-        return Stopwatch.GetTimestamp() - begin;
+        Nodes?.AddFirst(slot.Panel, plan.ForeseenProbes, solver, slot.Workspace, plan.Seed, plan.Threads, cancel, mayDeflate);
+        return Nodes is { DeflationSolves: > 0 } ? Stopwatch.GetElapsedTime(begin).TotalSeconds : 0;
     }
 
     private void Add(ProbePanel panel, bool nodes, int threads)

@@ -15,6 +15,8 @@ internal static class RunCost
     private const double SecondsPerCoordinate = 1e-8;
     private const double SecondsToEnd = 0.3;
     private const double Margin = 1.2;
+
+    private const double BatchesOfAudit = 1.5;
     private const double BaseBytes = 200e6;
     private const int PanelsPerThread = 6; // right-hand sides, solutions, and those of an iteration
     private const int DeflationPanels = 2; // directions, and their right-hand sides
@@ -27,11 +29,15 @@ internal static class RunCost
     }
 
     /// <summary>Seconds to keep for what comes after the last probe, with a margin.</summary>
-    public static double SecondsAfter(Network network, EstimatePlan plan, int probes)
-    {
-        double coordinates = plan.Want.HasFlag(Want.Coordinates) ? SecondsPerCoordinate * network.NodeCount * probes : 0;
-        return SecondsToEnd + (Margin * (WritingSeconds(network, plan) + coordinates));
-    }
+    public static double SecondsAfter(Network network, EstimatePlan plan, int probes) =>
+        SecondsToEnd + (Margin * (WritingSeconds(network, plan) + CoordinateSeconds(network, plan, probes)));
+
+    /// <summary>Seconds that an audit takes, from those of a batch of panels.</summary>
+    public static double AuditSeconds(EstimatePlan plan, double batch) => (plan.Want & (Want.Links | Want.Pairs)) == 0 ? 0 : BatchesOfAudit * batch;
+
+    /// <summary>Seconds that writing the coordinates of so many probes takes.</summary>
+    public static double CoordinateSeconds(Network network, EstimatePlan plan, int probes) =>
+        plan.Want.HasFlag(Want.Coordinates) ? SecondsPerCoordinate * network.NodeCount * probes : 0;
 
     /// <summary>Bytes of a network in memory, with what building it leaves and what is kept by node.</summary>
     public static double NetworkBytes(Network network) =>
@@ -61,15 +67,20 @@ internal static class RunCost
     }
 
     /// <summary>Refuses a named number of probes where, after the first batch of panels, the rest is foreseen to take longer than the budget.</summary>
+    /// <param name="network">The network.</param>
+    /// <param name="plan">The run's.</param>
+    /// <param name="batches">Of panels, in all.</param>
+    /// <param name="batch">Seconds of one.</param>
+    /// <param name="once">Seconds spent once beside them.</param>
     /// <exception cref="BudgetException">It does not fit.</exception>
-    public static void CheckTime(Network network, EstimatePlan plan, int batches, TimeSpan batch)
+    public static void CheckTime(Network network, EstimatePlan plan, int batches, double batch, double once)
     {
         if (plan.TimeBudget is not TimeSpan budget)
             return;
-        double writing = WritingSeconds(network, plan), all = (batches * batch.TotalSeconds) + writing;
+        double rest = once + AuditSeconds(plan, batch) + WritingSeconds(network, plan), all = (batches * batch) + rest;
         if (all <= budget.TotalSeconds)
             return;
-        int affordable = (int)Math.Min(int.MaxValue, Math.Max(0, (budget.TotalSeconds - writing) / batch.TotalSeconds * plan.MostProbes / batches));
+        int affordable = (int)Math.Min(int.MaxValue, Math.Max(0, (budget.TotalSeconds - rest) / batch * plan.MostProbes / batches));
         throw TooLong(plan.MostProbes, all, budget, affordable >= 4 ? $"use --probes {affordable}, or a larger budget" : "use a larger budget");
     }
 
