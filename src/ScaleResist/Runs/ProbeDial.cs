@@ -21,6 +21,7 @@ internal sealed class ProbeDial
     private const double ShareForetold = 0.8;
     private const double LeastShareOfNodes = 0.01; // of a component whose index counts
     private const double BatchMargin = 1.1;
+    private const double Overrun = 1.1;
     private const uint Purpose = 2;
 
     private readonly Network network;
@@ -105,7 +106,7 @@ internal sealed class ProbeDial
     /// <summary>Decides after a batch of panels, by the clock, unless the number of probes was asked for.</summary>
     /// <param name="next">Probes after another batch.</param>
     /// <param name="once">Seconds of this batch that no other will take: of a deflation.</param>
-    /// <exception cref="BudgetException">Not even the first batch leaves time to write.</exception>
+    /// <exception cref="BudgetException">Not even the first batch leaves time to write, nor would a tenth more.</exception>
     public void AfterBatch(int next, double once)
     {
         if (plan.TimeBudget is not TimeSpan budget || plan.Probes is not null)
@@ -113,7 +114,8 @@ internal sealed class ProbeDial
         bool first = lastEnd == 0;
         double now = Elapsed, batch = now - lastEnd - once, after = RunCost.SecondsAfter(network, plan, panels * ProbePanel.Width);
         double audit = RunCost.AuditSeconds(plan, batch);
-        if (first && now + RunCost.WritingSeconds(network, plan) > budget.TotalSeconds)
+        // What is solved is worth a little more time than there is.
+        if (first && now + RunCost.WritingSeconds(network, plan) > Overrun * budget.TotalSeconds)
             throw RunCost.TooLong(panels * ProbePanel.Width, now + after, budget, "use a larger budget");
         OutOfTime |= now + after + audit > budget.TotalSeconds;
         double foreseen = now + (BatchMargin * Math.Max(batch, lastBatch)) + RunCost.SecondsAfter(network, plan, next) + (OutOfTime ? 0 : audit);

@@ -10,8 +10,8 @@ namespace ScaleResist.Runs;
 /// <summary>What a run costs, foreseen.</summary>
 internal static class RunCost
 {
-    private const double SecondsPerLinkRow = 0.75e-6;
-    private const double SecondsPerNodeRow = 1.4e-6;
+    private const double SecondsPerLinkRow = 0.5e-6;
+    private const double SecondsPerNodeRow = 1.3e-6;
     private const double SecondsPerCoordinate = 1e-8;
     private const double SecondsToEnd = 0.3;
     private const double Margin = 1.2;
