@@ -5,7 +5,6 @@ using System.Text.Json.Nodes;
 using ScaleResist.Cli.Lake;
 using ScaleResist.Cli.Progress;
 using ScaleResist.Cli.Report;
-using ScaleResist.Graphs;
 using ScaleResist.Runs;
 
 namespace ScaleResist.Cli.Commands;

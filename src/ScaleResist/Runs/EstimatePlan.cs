@@ -80,6 +80,9 @@ public sealed record EstimatePlan
     /// </summary>
     internal int? TrialPanels { get; init; }
 
+    /// <summary>Panels solved side by side; null: as many as threads.</summary>
+    internal int? PanelsAtOnce { get; init; }
+
     /// <summary>The most probes the run can take.</summary>
     public int MostProbes => Probes ?? (EndIsOpen ? LargestProbes : DefaultProbes);
 

@@ -158,7 +158,11 @@ public static class EstimateRun
             Rows = rows,
         };
 
-        EstimatePlan Left() => plan with { Want = left, TimeBudget = plan.TimeBudget - Stopwatch.GetElapsedTime(begin) };
+        EstimatePlan Left()
+        {
+            EstimatePlan rest = plan with { Want = left, TimeBudget = plan.TimeBudget - Stopwatch.GetElapsedTime(begin) };
+            return rest with { PanelsAtOnce = RunCost.PanelsAtOnce(network, rest, phases.Times.Last(phase => phase.Name == "preparing").Seconds) };
+        }
 
         LinkRows WalkLinks()
         {

@@ -29,7 +29,6 @@ internal sealed class ProbeDial
     private readonly List<Measure> measures = [];
     private readonly long begin = Stopwatch.GetTimestamp();
     private double lastBatch;
-    private double lastEnd;
     private int panels;
 
     /// <summary>Prepares the samples.</summary>
@@ -105,23 +104,23 @@ internal sealed class ProbeDial
 
     /// <summary>Decides after a batch of panels, by the clock, unless the number of probes was asked for.</summary>
     /// <param name="next">Probes after another batch.</param>
-    /// <param name="once">Seconds of this batch that no other will take: of a deflation.</param>
+    /// <param name="batch">Seconds that this one took, without a deflation.</param>
     /// <exception cref="BudgetException">Not even the first batch leaves time to write, nor would a tenth more.</exception>
-    public void AfterBatch(int next, double once)
+    public void AfterBatch(int next, double batch)
     {
         if (plan.TimeBudget is not TimeSpan budget || plan.Probes is not null)
             return;
-        bool first = lastEnd == 0;
-        double now = Elapsed, batch = now - lastEnd - once, after = RunCost.SecondsAfter(network, plan, panels * ProbePanel.Width);
+        bool first = lastBatch == 0;
+        double now = Elapsed, after = RunCost.SecondsAfter(network, plan, panels * ProbePanel.Width);
         double audit = RunCost.AuditSeconds(plan, batch);
         // What is solved is worth a little more time than there is.
         if (first && now + RunCost.WritingSeconds(network, plan) > Overrun * budget.TotalSeconds)
             throw RunCost.TooLong(panels * ProbePanel.Width, now + after, budget, "use a larger budget");
-        OutOfTime |= now + after + audit > budget.TotalSeconds;
+        OutOfTime = now + after + audit > budget.TotalSeconds;
         double foreseen = now + (BatchMargin * Math.Max(batch, lastBatch)) + RunCost.SecondsAfter(network, plan, next) + (OutOfTime ? 0 : audit);
         if (foreseen > budget.TotalSeconds)
             Stopped ??= StoppedBy.Time;
-        (lastEnd, lastBatch) = (now, first ? 0 : batch); // the first one compiles
+        lastBatch = batch;
     }
 
     /// <summary>Whether a time budget leaves no time for an audit.</summary>

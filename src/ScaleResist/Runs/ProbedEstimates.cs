@@ -62,7 +62,7 @@ internal sealed class ProbedEstimates
         ProbeDial dial = new(blocks, plan, sums, exact);
         sums.Pairs?.SolveFew(solver, plan.ForeseenProbes, plan.Threads, cancel);
         int panels = ProbePanel.CountFor(plan.MostProbes), added = 0;
-        Slot[] slots = new Slot[Math.Min(plan.Threads, panels)];
+        Slot[] slots = new Slot[Math.Min(plan.PanelsAtOnce ?? plan.Threads, panels)];
         try
         {
             for (int i = 0; i < slots.Length; i++)
@@ -71,6 +71,7 @@ internal sealed class ProbedEstimates
             for (int first = 0; dial.Stopped is null; first += slots.Length)
             {
                 int count = Math.Min(slots.Length, panels - first);
+                long batch = Stopwatch.GetTimestamp();
                 List<Action> work = [];
                 for (int i = 0; i < count; i++)
                 {
@@ -79,9 +80,8 @@ internal sealed class ProbedEstimates
                     work.Add(() => solver.SolveProbes(
                         slot.Panel.B, slot.Panel.Z, slot.Panel.Probes, plan.ModeErrorOf(number), slot.Workspace, cancel));
                 }
-                long solving = Stopwatch.GetTimestamp();
                 Together(work, plan.Threads);
-                double solved = Stopwatch.GetElapsedTime(solving).TotalSeconds;
+                double solved = Stopwatch.GetElapsedTime(batch).TotalSeconds;
                 double deflating = first == 0 ? sums.AddFirst(slots[0], plan, solver, () => dial.MayDeflate(solved), cancel) : 0;
                 if (sums.Coordinates is not null)
                     RunCost.CheckMemory(network, plan, added + (count * ProbePanel.Width));
@@ -98,7 +98,7 @@ internal sealed class ProbedEstimates
                     RunCost.CheckTime(network, plan, (panels + slots.Length - 1) / slots.Length,
                         Stopwatch.GetElapsedTime(begin).TotalSeconds - deflating, deflating);
                 }
-                dial.AfterBatch(Math.Min(plan.MostProbes, added + (slots.Length * ProbePanel.Width)), deflating);
+                dial.AfterBatch(Math.Min(plan.MostProbes, added + (slots.Length * ProbePanel.Width)), Stopwatch.GetElapsedTime(batch).TotalSeconds - deflating);
                 observer.Report(added);
             }
             sums.OutOfTime = dial.OutOfTime;

@@ -10,13 +10,14 @@ namespace ScaleResist.Runs;
 /// <summary>What a run costs, foreseen.</summary>
 internal static class RunCost
 {
-    private const double SecondsPerLinkRow = 0.5e-6;
-    private const double SecondsPerNodeRow = 1.3e-6;
+    private const double SecondsPerLinkRow = 0.55e-6;
+    private const double SecondsPerNodeRow = 1.6e-6;
     private const double SecondsPerCoordinate = 1e-8;
     private const double SecondsToEnd = 0.3;
     private const double Margin = 1.2;
 
-    private const double BatchesOfAudit = 1.5;
+    private const double RoomForRounds = 3;
+    private const double BatchesOfAudit = 1.2;
     private const double BaseBytes = 200e6;
     private const int PanelsPerThread = 6; // right-hand sides, solutions, and those of an iteration
     private const int DeflationPanels = 2; // directions, and their right-hand sides
@@ -27,6 +28,14 @@ internal static class RunCost
         double nodeTables = (plan.Want.HasFlag(Want.Nodes) ? 1 : 0) + (plan.Want.HasFlag(Want.Components) ? 0.1 : 0);
         return (plan.Want.HasFlag(Want.Links) ? network.LinkCount * SecondsPerLinkRow : 0) + (nodeTables * network.NodeCount * SecondsPerNodeRow);
     }
+
+    /// <summary>
+    /// Panels to solve at a time. A panel takes about as long as preparing, side by side with others some half longer: where a time budget has no room
+    /// for two rounds of them, one at a time wastes a thread, yet ends sooner.
+    /// </summary>
+    public static int PanelsAtOnce(Network network, EstimatePlan plan, double preparing) =>
+        plan.TimeBudget is TimeSpan left && plan.Probes is null
+            && left.TotalSeconds - SecondsAfter(network, plan, ProbePanel.Width) < RoomForRounds * preparing ? 1 : plan.Threads;
 
     /// <summary>Seconds to keep for what comes after the last probe, with a margin.</summary>
     public static double SecondsAfter(Network network, EstimatePlan plan, int probes) =>
