@@ -1,5 +1,6 @@
 // What the command line needs of the world, so that tests can run it inside their own process.
 
+using System.Diagnostics;
 using ScaleResist.Cli.Commands;
 
 namespace ScaleResist.Cli;
@@ -22,6 +23,9 @@ internal sealed record CliHost
     /// <summary>Whether faults show their stack.</summary>
     public bool Trace { get; init; }
 
+    /// <summary>Seconds since this process began, where it has this one invocation; else 0.</summary>
+    public Func<double> SecondsBefore { get; init; } = () => 0;
+
     public TimeProvider Time { get; init; } = TimeProvider.System;
 
     /// <summary>The host of a real process.</summary>
@@ -31,6 +35,7 @@ internal sealed record CliHost
         Error = Console.Error,
         Engine = engine,
         LiveProgress = !Console.IsErrorRedirected && Environment.GetEnvironmentVariable("TERM") is not "dumb",
+        SecondsBefore = () => (DateTime.Now - Process.GetCurrentProcess().StartTime).TotalSeconds,
         Trace = Environment.GetEnvironmentVariable("SCALERESIST_TRACE") == "1",
     };
 }

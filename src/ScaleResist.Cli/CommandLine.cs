@@ -9,10 +9,10 @@ namespace ScaleResist.Cli;
 internal static class CommandLine
 {
     private const string Start = "write scaleresist estimate NETWORK --lake DIR, or see scaleresist --help";
-    private static readonly string[] Verbs = ["estimate", "survey", "impact", "distances"];
+    private static readonly string[] Verbs = ["estimate", "survey", "tune", "impact", "distances"];
 
     // Verbs of the contract that later versions bring.
-    private static readonly string[] LaterVerbs = ["tune", "lookup", "drift", "merge"];
+    private static readonly string[] LaterVerbs = ["lookup", "drift", "merge"];
 
     /// <summary>Runs a command line.</summary>
     /// <returns>The exit code.</returns>
@@ -38,6 +38,7 @@ internal static class CommandLine
             host.Out.Write(args[0] switch
             {
                 "survey" => HelpText.Survey,
+                "tune" => HelpText.Tune,
                 "impact" => HelpText.Impact,
                 "distances" => HelpText.Distances,
                 _ => HelpText.Estimate,
@@ -47,6 +48,7 @@ internal static class CommandLine
         return args[0] switch
         {
             "survey" => Survey(args[1..], host, interrupted),
+            "tune" => Tune(args[1..], host, interrupted),
             "impact" => Impact(args[1..], host, interrupted),
             "distances" => Distances(args[1..], host, interrupted),
             _ => Estimate(args[1..], host, interrupted),
@@ -84,6 +86,12 @@ internal static class CommandLine
     {
         DistancesRequest? request = DistancesRequest.Parse(words, host.Time.GetUtcNow(), out string problem);
         return request is null ? Refuse(host, problem) : new DistancesCommand(host).Run(request, interrupted);
+    }
+
+    private static int Tune(string[] words, CliHost host, CancellationToken interrupted)
+    {
+        TuneRequest? request = TuneRequest.Parse(words, host.Time.GetUtcNow(), out string problem);
+        return request is null ? Refuse(host, problem) : new TuneCommand(host).Run(request, interrupted);
     }
 
     private static string UnknownVerb(string verb)

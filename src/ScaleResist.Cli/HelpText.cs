@@ -11,6 +11,7 @@ internal static class HelpText
 
         Usage: scaleresist estimate NETWORK --lake DIR [options]   the main job
                scaleresist survey NETWORK [options]                what it would take
+               scaleresist tune NETWORK [options]                  accuracy against time
                scaleresist impact NETWORK --lake DIR [options]     planned changes
                scaleresist distances NETWORK --lake DIR [options]  lightest routes
                scaleresist estimate --help, and so for every verb
@@ -143,6 +144,30 @@ internal static class HelpText
 
         Example: scaleresist distances streets.csv --lake lake --run-id monday
                  --node-weights junctions.csv --pairs trips.csv
+
+        """;
+
+    public const string Tune = """
+        scaleresist tune NETWORK [options]
+
+        Measures this network on this machine (a run of 64 probes, a few panels of
+        larger ones, the exact route where it is affordable) and prints how accuracy
+        and time trade, each point with its command. Takes a few such runs' time.
+
+          --lake DIR            also write the points as table frontier in this lake
+          --run-id ID           name of that run; else from the file's name and the time
+          --want LIST           index,components,nodes,links (all four unless said),
+                                coordinates: what the estimate would write
+          --weights MEANING     none, conductance or resistance: what column 3 means
+          --columns SRC,DST[,W] columns by name or number
+          --memory-budget M     16GiB, 500MB: leave out what is foreseen to need more
+          --confidence P        of the intervals (0.95 unless said)
+          --seed S              of the random signs (1 unless said)
+          --threads T           1 to 256 (all cores unless said)
+          --verbose             show the stack of a fault
+
+        Example: scaleresist tune roads.csv --columns from,to,km
+                 --weights resistance --want index,links
 
         """;
 }

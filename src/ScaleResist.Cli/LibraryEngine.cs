@@ -75,6 +75,21 @@ internal sealed class LibraryEngine : IEstimateEngine
         }
     }
 
+    public TuneOutcome Tune(TuneRequest request, double before, Func<ITableSink> openTables, IRunObserver observer, CancellationToken interrupted)
+    {
+        long begin = Stopwatch.GetTimestamp();
+        Network network = Load(request.Network, request.Reading, observer, interrupted);
+        before += Stopwatch.GetElapsedTime(begin).TotalSeconds;
+        try
+        {
+            return new TuneOutcome(network, Frontier.Of(network, request.Plan, before, openTables, observer, interrupted));
+        }
+        catch (SolveException unsolved)
+        {
+            throw Unsolved(request.Network, unsolved);
+        }
+    }
+
     // Doubles end where conductances of one component lie some fourteen decades apart; that is for the input to mend.
     private static InputException Unsolved(string network, SolveException unsolved) => new(network, null, unsolved.Message,
         "its conductances lie too far apart: merge nodes that nothing parts, or drop links that carry nothing", unsolved);

@@ -54,14 +54,16 @@ internal sealed class EstimateCommand(CliHost host)
         return ExitCode.Done;
     }
 
-    private static ParquetTableSink OpenSink(string staging, EstimateRequest request, InputFacts facts) => new(staging,
-        new Dictionary<string, string>
-        {
-            ["scaleresist.schema_version"] = Tables.SchemaVersion.ToString(CultureInfo.InvariantCulture),
-            ["scaleresist.program_version"] = ProgramVersion.Number,
-            ["scaleresist.run_id"] = request.RunId,
-            ["scaleresist.input_sha256"] = facts.Sha256,
-            ["scaleresist.seed"] = request.Plan.Seed.ToString(CultureInfo.InvariantCulture),
-        },
-        request.Plan.Threads);
+    private static ParquetTableSink OpenSink(string staging, EstimateRequest request, InputFacts facts) =>
+        new(staging, Provenance(request.RunId, facts, request.Plan), request.Plan.Threads);
+
+    /// <summary>What every part of a run's tables says of its rows.</summary>
+    internal static Dictionary<string, string> Provenance(string runId, InputFacts facts, EstimatePlan plan) => new()
+    {
+        ["scaleresist.schema_version"] = Tables.SchemaVersion.ToString(CultureInfo.InvariantCulture),
+        ["scaleresist.program_version"] = ProgramVersion.Number,
+        ["scaleresist.run_id"] = runId,
+        ["scaleresist.input_sha256"] = facts.Sha256,
+        ["scaleresist.seed"] = plan.Seed.ToString(CultureInfo.InvariantCulture),
+    };
 }

@@ -14,7 +14,10 @@ internal sealed record SurveyOutcome(Network Network, NetworkSurvey Survey);
 /// <summary>What a finished impact run leaves beside its tables.</summary>
 internal sealed record ImpactOutcome(InputFacts Input, CleaningFacts Cleaning, ImpactSummary Summary);
 
-/// <summary>Runs estimates, surveys and impacts.</summary>
+/// <summary>The frontier that a tuning found.</summary>
+internal sealed record TuneOutcome(Network Network, IReadOnlyList<FrontierPoint> Points);
+
+/// <summary>Runs estimates, surveys, tunings and impacts.</summary>
 internal interface IEstimateEngine
 {
     /// <summary>Reads the network and estimates what the plan wants.</summary>
@@ -35,4 +38,12 @@ internal interface IEstimateEngine
     /// <inheritdoc cref="Run"/>
     ImpactOutcome Impact(ImpactRequest request, Func<InputFacts, ITableSink> openSink, IRunObserver observer,
         CancellationToken interrupted) => throw new NotSupportedException("this engine has no impact");
+
+    /// <summary>Reads the network, measures it and foresees what estimates would give and take.</summary>
+    /// <param name="request">The validated command.</param>
+    /// <param name="before">Seconds that the process took before.</param>
+    /// <param name="openTables">Takes the tables of runs that are done to be measured; nobody keeps them.</param>
+    /// <param name="observer">Follows the phases, reading included.</param>
+    /// <param name="interrupted">Ends the measurements with an <see cref="OperationCanceledException"/>.</param>
+    TuneOutcome Tune(TuneRequest request, double before, Func<ITableSink> openTables, IRunObserver observer, CancellationToken interrupted);
 }

@@ -27,11 +27,8 @@ internal static class RunPlan
         ["time_budget"] = request.Plan.TimeBudget?.TotalSeconds,
         ["memory_budget"] = request.Plan.MemoryBudget,
         ["mode_error"] = request.Plan.ModeErrorOf(0),
-        // Without --weights a third column is refused, so a run that finished had none.
-        ["weights"] = request.Reading.Weights is WeightMeaning.Unsaid
-            ? "none"
-            : request.Reading.Weights.ToString().ToLowerInvariant(),
-        ["columns"] = request.Reading.Columns is { } columns ? string.Join(',', columns) : null,
+        ["weights"] = WeightsOf(request.Reading),
+        ["columns"] = ColumnsOf(request.Reading),
         ["pairs"] = request.Pairs,
         ["pairs_sha256"] = request.Pairs is string pairs ? InputDigest.Sha256(pairs, interrupted) : null,
         ["node_weights"] = request.NodeWeights,
@@ -39,6 +36,25 @@ internal static class RunPlan
         ["terminals"] = request.Terminals,
         ["terminals_sha256"] = request.Terminals is string terminals ? InputDigest.Sha256(terminals, interrupted) : null,
     };
+
+    /// <summary>The plan of a tuning; threads and memory are part of what it finds.</summary>
+    public static JsonObject Of(TuneRequest request) => new()
+    {
+        ["verb"] = "tune",
+        ["want"] = string.Join(',', EstimateValidation.NamesOf(request.Plan.Want)),
+        ["confidence"] = request.Plan.Confidence,
+        ["seed"] = request.Plan.Seed,
+        ["threads"] = request.Plan.Threads,
+        ["memory_budget"] = request.Plan.MemoryBudget,
+        ["weights"] = WeightsOf(request.Reading),
+        ["columns"] = ColumnsOf(request.Reading),
+    };
+
+    // Without --weights a third column is refused, so a run that finished had none.
+    private static string WeightsOf(ReadOptions reading) =>
+        reading.Weights is WeightMeaning.Unsaid ? "none" : reading.Weights.ToString().ToLowerInvariant();
+
+    private static string? ColumnsOf(ReadOptions reading) => reading.Columns is { } columns ? string.Join(',', columns) : null;
 
     /// <summary>The first difference between a finished run's plan and a new one, or null: <c>--probes 64, not 16</c>.</summary>
     public static string? Difference(JsonObject finished, JsonObject asked)

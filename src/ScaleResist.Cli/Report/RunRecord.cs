@@ -112,7 +112,10 @@ internal sealed record RunRecord
         };
 
     /// <summary>The record as UTF-8 JSON.</summary>
-    public byte[] ToJson() => [.. JsonSerializer.SerializeToUtf8Bytes(this, Format), (byte)'\n'];
+    public byte[] ToJson() => ToJson(this);
+
+    /// <summary>Any record as run.json writes it.</summary>
+    internal static byte[] ToJson<T>(T record) => [.. JsonSerializer.SerializeToUtf8Bytes(record, Format), (byte)'\n'];
 }
 
 /// <summary>The network after cleaning.</summary>

@@ -81,6 +81,8 @@ internal static class SummaryText
                 + $"{Numbers.Value(audit.WorstError!.Value, 2)} (worst); {audit.Held} of {Numbers.Many(audit.Intervals, "interval")} held; "
                 + $"solves off by {Numbers.Value(audit.SolverError, 2)} where {Numbers.Value(audit.SolverErrorAllowed, 2)} is allowed");
         }
+        if (record is { Audit: null, Probing.StoppedBy: "time" } && record.Rows.Keys.Intersect(["links", "pairs"]).Any())
+            yield return Entry("audit", "none: the time budget left no time for it");
         yield return Entry("time", $"{Numbers.Duration((record.Finished - record.Started).TotalSeconds)}: "
             + string.Join(", ", ShortPhases(record.Phases).Select(p => $"{p.Name} {Numbers.Duration(p.Seconds)}")));
         yield return Entry("memory",

@@ -40,6 +40,6 @@ internal static class SurveyText
         yield return SummaryText.Entry("route", survey.IsExact
             ? "--route auto is exact: no error bars"
             : $"--route auto probes {(survey.Exact is null ? "all but the bridges" : "what the exact part leaves")}: "
-                + $"{Numbers.Count(plan.MostProbes)} probes unless --probes or --target-error says otherwise");
+                + $"{Numbers.Count(plan.ForeseenProbes)} probes unless --probes or --target-error says otherwise");
     }
 }

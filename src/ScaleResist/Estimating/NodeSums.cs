@@ -80,8 +80,10 @@ public sealed unsafe class NodeSums
     /// <param name="seed">Of the directions' signs.</param>
     /// <param name="threads">Threads for all but the solves.</param>
     /// <param name="cancel">Ends the solves.</param>
+    /// <param name="mayStep">Asked before each panel of solves; null allows them.</param>
     public void AddFirst(
-        ProbePanel panel, int probes, LaplacianSolver solver, SolverWorkspace<float> workspace, ulong seed, int threads, CancellationToken cancel)
+        ProbePanel panel, int probes, LaplacianSolver solver, SolverWorkspace<float> workspace, ulong seed, int threads, CancellationToken cancel,
+        Func<bool>? mayStep = null)
     {
         if (Probes > 0)
             throw new InvalidOperationException("deflation comes before the first panel");
@@ -91,7 +93,7 @@ public sealed unsafe class NodeSums
         for (int step = 0; step < steps; step++)
         {
             chosen = [.. chosen.Where(b => indices[0].RelativeError(blocks.ComponentOf(b), probes) > WorthDeflating)];
-            if (chosen.Length == 0)
+            if (chosen.Length == 0 || mayStep?.Invoke() == false)
                 break;
             deflation ??= new Deflation(blocks, rows, indices[0].Hanging, chosen);
             deflation.Step(solver, workspace, seed, threads, cancel);

@@ -1,4 +1,5 @@
-// The audit: random links and pairs solved to certified enclosures before the first probe, and what the probes say of them held against those.
+// The audit: random links and pairs drawn before the first probe, solved to certified enclosures after the last, and what the probes say of them held
+// against those.
 // Invariant: an audit changes no other number. It is drawn by seed and blames the error bars only where chance would do so in one run of a
 // thousand: by the binomial test on links, whose errors are nearly independent; and by a single value six standard errors off, which counts
 // whatever the dependence (pairs share the slow modes of a network, so that all their intervals may miss together). A solver that stops too early
@@ -32,17 +33,20 @@ internal sealed class Audit
     private readonly Network network;
     private readonly List<(long Link, int U, int V)> links;
     private readonly List<(int U, int V)> pairs;
-    private readonly CertifiedPairs references; // links, then pairs
+    private CertifiedPairs? references; // links, then pairs
 
-    private Audit(Blocks blocks, EstimatePlan plan, ExactPart? exact, bool linksAreProbed, LaplacianSolver solver, CancellationToken cancel)
+    /// <summary>Draws.</summary>
+    /// <param name="blocks">Of the network.</param>
+    /// <param name="plan">Seed and probes.</param>
+    /// <param name="exact">What needs no probes, or null.</param>
+    /// <param name="linksAreProbed">Whether links are, so that they have numbers to be audited.</param>
+    public Audit(Blocks blocks, EstimatePlan plan, ExactPart? exact, bool linksAreProbed)
     {
         network = blocks.Network;
         int count = CountFor(plan);
         RandomPairs random = new(blocks, exact, plan.Seed, Purpose);
         links = linksAreProbed ? random.Links(count / 2) : [];
         pairs = random.Pairs(count - links.Count);
-        references = CertifiedPairs.Solve(
-            network, solver, [.. links.Select(link => (link.U, link.V)), .. pairs], plan.Threads, cancel, ReferenceWidth);
         Pairs = new PairSums(network, blocks.Bridges, pairs);
     }
 
@@ -52,18 +56,15 @@ internal sealed class Audit
     /// <summary>How many links and pairs the audit of a plan solves.</summary>
     public static int CountFor(EstimatePlan plan) => plan.ForeseenProbes >= ProbesForMany ? Many : Few;
 
-    /// <summary>Draws and solves.</summary>
-    /// <param name="blocks">Of the network.</param>
-    /// <param name="plan">Seed, threads and probes.</param>
-    /// <param name="exact">What needs no probes, or null.</param>
-    /// <param name="linksAreProbed">Whether links are, so that they have numbers to be audited.</param>
-    /// <param name="solver">Of the network.</param>
-    /// <param name="cancel">Ends the solves.</param>
-    public static Audit Solve(
-        Blocks blocks, EstimatePlan plan, ExactPart? exact, bool linksAreProbed, LaplacianSolver solver, CancellationToken cancel) =>
-        new(blocks, plan, exact, linksAreProbed, solver, cancel);
+    /// <summary>Solves the references.</summary>
+    public Audit Solve(LaplacianSolver solver, int threads, CancellationToken cancel)
+    {
+        references = CertifiedPairs.Solve(
+            network, solver, [.. links.Select(link => (link.U, link.V)), .. pairs], threads, cancel, ReferenceWidth);
+        return this;
+    }
 
-    /// <summary>Compares, and writes the rows that could be compared.</summary>
+    /// <summary>Compares, once it is solved, and writes the rows that could be compared.</summary>
     /// <param name="bridges">Of the network.</param>
     /// <param name="sums">Of links; null where none is probed.</param>
     /// <param name="plan">Confidence of the intervals, and the error allowed to solves.</param>
@@ -72,6 +73,7 @@ internal sealed class Audit
     public AuditFacts Write(Bridges bridges, LinkSums? sums, EstimatePlan plan, double solverError, ITableWriter writer)
     {
         double confidence = plan.Confidence;
+        CertifiedPairs references = this.references ?? throw new InvalidOperationException("the audit is not solved");
         LinkResistances inside = new(network, bridges, sums, null, confidence), near = new(network, bridges, sums, null, SixStandardErrors);
         List<Row> rows = [];
         for (int i = 0; i < links.Count; i++)

@@ -59,8 +59,8 @@ public sealed record EstimatePlan
     public Route Route { get; init; } = Route.Auto;
 
     /// <summary>
-    /// The number of probes K, at least 4, where anything is probed; null: as many as the target error takes and the time budget allows, without a
-    /// target at most <see cref="DefaultProbes"/>.
+    /// The number of probes K, at least 4, where anything is probed; null: as many as the target error takes and the time budget allows, without
+    /// either <see cref="DefaultProbes"/>.
     /// </summary>
     public int? Probes { get; init; }
 
@@ -69,11 +69,29 @@ public sealed record EstimatePlan
     /// </summary>
     public double? TargetError { get; init; }
 
-    /// <summary>The most probes the run can take.</summary>
-    public int MostProbes => Probes ?? (TargetError is null ? DefaultProbes : LargestProbes);
+    /// <summary>
+    /// Whether K is known only at the end: where a target error or a time budget decides. A time budget alone does not where coordinates are wanted,
+    /// whose memory and file grow with K.
+    /// </summary>
+    public bool EndIsOpen => Probes is null && (TargetError is not null || (TimeBudget is not null && !Want.HasFlag(Want.Coordinates)));
 
-    /// <summary>About how many it will take: with a target E, 0.1 / E^2, from a relative standard error of 0.22 sqrt(2/K).</summary>
-    public int ForeseenProbes => TargetError is double error ? (int)Math.Clamp(0.1 / (error * error), 2 * ProbePanel.Width, LargestProbes) : MostProbes;
+    /// <summary>
+    /// The run ends after so many panels, yet prepares, solves and deflates as if all its probes were to come, and measures their errors; null: no trial.
+    /// </summary>
+    internal int? TrialPanels { get; init; }
+
+    /// <summary>Panels solved side by side; null: as many as threads.</summary>
+    internal int? PanelsAtOnce { get; init; }
+
+    /// <summary>The most probes the run can take.</summary>
+    public int MostProbes => Probes ?? (EndIsOpen ? LargestProbes : DefaultProbes);
+
+    /// <summary>
+    /// About how many it will take: with a target E, 0.1 / E^2, from a relative standard error of 0.22 sqrt(2/K); what time allows, nobody knows.
+    /// </summary>
+    public int ForeseenProbes => TargetError is double error
+        ? (int)Math.Clamp(0.1 / (error * error), 2 * ProbePanel.Width, LargestProbes)
+        : Probes ?? DefaultProbes;
 
     /// <summary>The confidence of the intervals, in (0, 1).</summary>
     public double Confidence { get; init; } = 0.95;
@@ -100,12 +118,12 @@ public sealed record EstimatePlan
     public double? ModeError { get; init; }
 
     /// <summary>
-    /// The mode error in force for a panel. With a target error, where K is known only at the end, panel i gets half of what K = 16 (i+1) would:
+    /// The mode error in force for a panel. Where K is known only at the end, panel i gets half of what K = 16 (i+1) would:
     /// the sum of (i+1)^(-1/2) over P panels is below 2 P^(1/2), so that the mean over the panels keeps to the twentieth wherever the run stops.
     /// </summary>
     public double ModeErrorOf(int panel) => ModeError ?? SoundModeErrorOf(panel);
 
     /// <summary>The same without <see cref="ModeError"/>: what the error bars need, and an audit demands.</summary>
     internal double SoundModeErrorOf(int panel) =>
-        TargetError is null ? 0.05 * Math.Sqrt(2.0 / MostProbes) : 0.025 * Math.Sqrt(2.0 / (ProbePanel.Width * (panel + 1.0)));
+        EndIsOpen ? 0.025 * Math.Sqrt(2.0 / (ProbePanel.Width * (panel + 1.0))) : 0.05 * Math.Sqrt(2.0 / MostProbes);
 }

@@ -85,14 +85,13 @@ public static class EstimateRun
                 solver = phases.Do("preparing", network.LinkCount, "links",
                     () => new LaplacianSolver(network, plan.ForeseenProbes, plan.Seed, cancel));
                 if ((left & (Want.Links | Want.Pairs)) != 0)
-                {
-                    audit = phases.Do("solving an audit", Audit.CountFor(plan), "pairs",
-                        () => Audit.Solve(blocks, plan, exact?.Part, !route.AllExact, solver, cancel));
-                }
-                probed = phases.Do("solving", plan.TargetError is null ? plan.MostProbes : null, "probes",
+                    audit = new Audit(blocks, plan, exact?.Part, !route.AllExact);
+                probed = phases.Do("solving", plan.EndIsOpen ? null : plan.MostProbes, "probes",
                     () => ProbedEstimates.Run(
                         blocks, Left(left), inputs, exact?.ExactBlocks, exactPairs, !route.AllExact, audit?.Pairs, solver,
                         observer, cancel));
+                audit = audit is null || probed.OutOfTime ? null
+                    : phases.Do("solving an audit", Audit.CountFor(plan), "pairs", () => audit.Solve(solver, plan.Threads, cancel));
             }
             if (wantsCut && connectivity is null)
             {
@@ -175,6 +174,7 @@ public static class EstimateRun
                 DeflationSolves = probed?.Nodes?.DeflationSolves ?? 0,
             },
             Probing = probed?.Facts,
+            TrialErrors = probed?.Errors ?? default,
             Audit = audited,
             Terminals = terminals?.Facts,
             Connectivity = connectivity,
@@ -182,7 +182,11 @@ public static class EstimateRun
             Rows = rows,
         };
 
-        EstimatePlan Left(Want want) => plan with { Want = want, TimeBudget = plan.TimeBudget - Stopwatch.GetElapsedTime(begin) };
+        EstimatePlan Left(Want want)
+        {
+            EstimatePlan rest = plan with { Want = want, TimeBudget = plan.TimeBudget - Stopwatch.GetElapsedTime(begin) };
+            return rest with { PanelsAtOnce = RunCost.PanelsAtOnce(network, rest, phases.Times.Last(phase => phase.Name == "preparing").Seconds) };
+        }
 
         LinkRows WalkLinks()
         {

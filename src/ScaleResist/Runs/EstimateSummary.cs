@@ -260,6 +260,9 @@ public sealed record EstimateSummary
     /// <summary>The exact part, or null where nothing but bridges was exact.</summary>
     public required ExactFacts? Exact { get; init; }
 
+    /// <summary>Of a trial: the percentile of relative standard errors over the tables of rows, and the index's; null where there is none.</summary>
+    internal (double? Rows, double? Index) TrialErrors { get; init; }
+
     /// <summary>Solver statistics, or null where nothing was solved.</summary>
     public required SolverFacts? Solver { get; init; }
 

@@ -21,6 +21,7 @@ internal sealed class ProbeDial
     private const double ShareForetold = 0.8;
     private const double LeastShareOfNodes = 0.01; // of a component whose index counts
     private const double BatchMargin = 1.1;
+    private const double Overrun = 1.1;
     private const uint Purpose = 2;
 
     private readonly Network network;
@@ -28,7 +29,6 @@ internal sealed class ProbeDial
     private readonly List<Measure> measures = [];
     private readonly long begin = Stopwatch.GetTimestamp();
     private double lastBatch;
-    private double lastEnd;
     private int panels;
 
     /// <summary>Prepares the samples.</summary>
@@ -40,10 +40,10 @@ internal sealed class ProbeDial
     {
         network = blocks.Network;
         this.plan = plan;
-        if (plan.TargetError is null)
+        if (plan is { TargetError: null, TrialPanels: null })
             return;
         if (plan.Want.HasFlag(Want.Index))
-            measures.Add(new Measure(() => IndexErrors(sums.Nodes!), Share: 1) { Steady = false });
+            measures.Add(new Measure(() => IndexErrors(sums.Nodes!), Share: 1) { IsIndex = true });
         if (plan.Want.HasFlag(Want.Links) && sums.Links is not null)
         {
             List<(long Link, long Arc, int U)> sample = SampleLinks(blocks, exact);
@@ -79,33 +79,54 @@ internal sealed class ProbeDial
     /// <summary>The largest of the percentiles that the target is compared with, of all panels so far; null without a target.</summary>
     public double? Error() => plan.TargetError is null ? null : measures.Select(measure => measure.Of()).Append(0).Max();
 
+    /// <summary>The same over the tables of rows, and the largest of the indices', of all panels so far; null where there is none.</summary>
+    public (double? Rows, double? Index) Errors()
+    {
+        return (Largest(false), Largest(true));
+
+        double? Largest(bool index) => measures.Where(measure => measure.IsIndex == index).Max(measure => (double?)measure.Of());
+    }
+
     /// <summary>Decides after a panel, by probes and target.</summary>
     public void AfterPanel()
     {
         panels++;
         if (plan.TargetError is double target && panels >= FewestPanels && IsMet(target))
             Stopped = StoppedBy.Target;
-        else if (panels == ProbePanel.CountFor(plan.MostProbes))
+        else if (panels == Math.Min(ProbePanel.CountFor(plan.MostProbes), plan.TrialPanels ?? int.MaxValue))
             Stopped = StoppedBy.Probes;
     }
 
+    /// <summary>Whether another panel of solves before the next probes leaves time for the rest.</summary>
+    /// <param name="batch">Seconds that the solves of the first batch took.</param>
+    public bool MayDeflate(double batch) => plan.TimeBudget is not TimeSpan budget || plan.Probes is not null
+        || Elapsed + batch + RunCost.SecondsAfter(network, plan, ProbePanel.Width) <= budget.TotalSeconds;
+
     /// <summary>Decides after a batch of panels, by the clock, unless the number of probes was asked for.</summary>
     /// <param name="next">Probes after another batch.</param>
-    /// <exception cref="BudgetException">Not even the first batch leaves time to write.</exception>
-    public void AfterBatch(int next)
+    /// <param name="batch">Seconds that this one took, without a deflation.</param>
+    /// <exception cref="BudgetException">Not even the first batch leaves time to write, nor would a tenth more.</exception>
+    public void AfterBatch(int next, double batch)
     {
-        if (plan.TimeBudget is not TimeSpan budget || plan.Probes is not null || Stopped is not null)
+        if (plan.TimeBudget is not TimeSpan budget || plan.Probes is not null)
             return;
-        bool first = lastEnd == 0;
-        double now = Stopwatch.GetElapsedTime(begin).TotalSeconds, batch = now - lastEnd;
-        int probes = panels * ProbePanel.Width;
-        if (first && now + RunCost.SecondsAfter(network, plan, probes) > budget.TotalSeconds)
-            throw RunCost.TooLong(probes, now + RunCost.SecondsAfter(network, plan, probes), budget, "use a larger budget");
-        double foreseen = now + (BatchMargin * Math.Max(batch, lastBatch)) + RunCost.SecondsAfter(network, plan, next);
+        bool first = lastBatch == 0;
+        double now = Elapsed, after = RunCost.SecondsAfter(network, plan, panels * ProbePanel.Width);
+        double audit = RunCost.AuditSeconds(plan, batch);
+        // What is solved is worth a little more time than there is.
+        if (first && now + RunCost.WritingSeconds(network, plan) > Overrun * budget.TotalSeconds)
+            throw RunCost.TooLong(panels * ProbePanel.Width, now + after, budget, "use a larger budget");
+        OutOfTime = now + after + audit > budget.TotalSeconds;
+        double foreseen = now + (BatchMargin * Math.Max(batch, lastBatch)) + RunCost.SecondsAfter(network, plan, next) + (OutOfTime ? 0 : audit);
         if (foreseen > budget.TotalSeconds)
-            Stopped = StoppedBy.Time;
-        (lastEnd, lastBatch) = (now, first ? 0 : batch); // the first one compiles
+            Stopped ??= StoppedBy.Time;
+        lastBatch = batch;
     }
+
+    /// <summary>Whether a time budget leaves no time for an audit.</summary>
+    public bool OutOfTime { get; private set; }
+
+    private double Elapsed => Stopwatch.GetElapsedTime(begin).TotalSeconds;
 
     private bool IsMet(double target)
     {
@@ -116,7 +137,7 @@ internal sealed class ProbeDial
             double error = measure.Of();
             if (error < target)
                 continue;
-            if (measure.Steady)
+            if (!measure.IsIndex)
                 measure.NotBefore = (int)Math.Min(int.MaxValue, ShareForetold * panels * (error / target) * (error / target));
             return false;
         }
@@ -163,8 +184,8 @@ internal sealed class ProbeDial
     // A quantile of relative standard errors over some rows; 0 where there is none.
     private sealed record Measure(Func<IEnumerable<Estimate>> Rows, double Share)
     {
-        // Whether it falls as 1/sqrt(K), so that a value foretells when to look again; and when.
-        public bool Steady { get; init; } = true;
+        // The index's error is known from as many samples as there are probes; all others fall as 1/sqrt(K), and foretell when to look again.
+        public bool IsIndex { get; init; }
 
         public int NotBefore { get; set; }
 

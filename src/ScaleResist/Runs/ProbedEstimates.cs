@@ -28,6 +28,12 @@ internal sealed class ProbedEstimates
     /// <summary>How many probes there were, and why not more.</summary>
     public ProbingFacts? Facts { get; private set; }
 
+    /// <summary>Whether a time budget leaves no time for an audit.</summary>
+    public bool OutOfTime { get; private set; }
+
+    /// <summary>Of a trial: the percentile of relative standard errors over the tables of rows, and the index's; null where there is none.</summary>
+    public (double? Rows, double? Index) Errors { get; private set; }
+
     /// <summary>Draws, solves and adds the panels of a plan: all, or as many as target and time ask for.</summary>
     /// <param name="blocks">Of the network.</param>
     /// <param name="plan">What is wanted of the probes.</param>
@@ -63,7 +69,7 @@ internal sealed class ProbedEstimates
         ProbeDial dial = new(blocks, plan, sums, exact);
         sums.Pairs?.SolveFew(solver, plan.ForeseenProbes, plan.Threads, cancel);
         int panels = ProbePanel.CountFor(plan.MostProbes), added = 0;
-        Slot[] slots = new Slot[Math.Min(plan.Threads, panels)];
+        Slot[] slots = new Slot[Math.Min(plan.PanelsAtOnce ?? plan.Threads, panels)];
         try
         {
             for (int i = 0; i < slots.Length; i++)
@@ -74,6 +80,7 @@ internal sealed class ProbedEstimates
             for (int first = 0; dial.Stopped is null; first += slots.Length)
             {
                 int count = Math.Min(slots.Length, panels - first);
+                long batch = Stopwatch.GetTimestamp();
                 List<Action> work = [];
                 for (int i = 0; i < count; i++)
                 {
@@ -89,8 +96,8 @@ internal sealed class ProbedEstimates
                     });
                 }
                 Together(work, plan.Threads);
-                if (first == 0)
-                    begin += sums.AddFirst(network, slots[0], plan, solver, cancel);
+                double solved = Stopwatch.GetElapsedTime(batch).TotalSeconds;
+                double deflating = first == 0 ? sums.AddFirst(network, slots[0], plan, solver, () => dial.MayDeflate(solved), cancel) : 0;
                 if (sums.Coordinates is not null)
                     RunCost.CheckMemory(network, plan, added + (count * ProbePanel.Width));
                 for (int i = 0; i < count && dial.Stopped is null; i++)
@@ -102,10 +109,16 @@ internal sealed class ProbedEstimates
                     dial.AfterPanel();
                 }
                 if (first == 0 && plan.Probes is not null)
-                    RunCost.CheckTime(network, plan, (panels + slots.Length - 1) / slots.Length, Stopwatch.GetElapsedTime(begin));
-                dial.AfterBatch(Math.Min(plan.MostProbes, added + (slots.Length * ProbePanel.Width)));
+                {
+                    RunCost.CheckTime(network, plan, (panels + slots.Length - 1) / slots.Length,
+                        Stopwatch.GetElapsedTime(begin).TotalSeconds - deflating, deflating);
+                }
+                dial.AfterBatch(Math.Min(plan.MostProbes, added + (slots.Length * ProbePanel.Width)), Stopwatch.GetElapsedTime(batch).TotalSeconds - deflating);
                 observer.Report(added);
             }
+            sums.OutOfTime = dial.OutOfTime;
+            if (plan.TrialPanels is not null)
+                sums.Errors = dial.Errors();
             sums.Facts = new ProbingFacts
             {
                 Probes = added,
@@ -122,13 +135,14 @@ internal sealed class ProbedEstimates
         return sums;
     }
 
-    // The first panel's check and its nodes; both, and a deflation, are once for all panels: the ticks they took are not a batch's.
-    private long AddFirst(Network network, Slot slot, EstimatePlan plan, LaplacianSolver solver, CancellationToken cancel)
+    // The first panel's check and its nodes; both, and a deflation, are once for all panels: the seconds they took are not a batch's.
+    private double AddFirst(
+        Network network, Slot slot, EstimatePlan plan, LaplacianSolver solver, Func<bool> mayDeflate, CancellationToken cancel)
     {
         long begin = Stopwatch.GetTimestamp();
         SolverError = SolveCheck.ModeError(network, slot.Panel, solver, slot.Workspace, plan.Threads, cancel);
-        Nodes?.AddFirst(slot.Panel, plan.ForeseenProbes, solver, slot.Workspace, plan.Seed, plan.Threads, cancel);
-        return Stopwatch.GetTimestamp() - begin;
+        Nodes?.AddFirst(slot.Panel, plan.ForeseenProbes, solver, slot.Workspace, plan.Seed, plan.Threads, cancel, mayDeflate);
+        return Stopwatch.GetElapsedTime(begin).TotalSeconds;
     }
 
     private void Add(ProbePanel panel, NodeSignPanel? signs, bool nodes, int threads)

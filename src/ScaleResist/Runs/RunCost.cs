@@ -10,11 +10,14 @@ namespace ScaleResist.Runs;
 /// <summary>What a run costs, foreseen.</summary>
 internal static class RunCost
 {
-    private const double SecondsPerLinkRow = 0.75e-6;
-    private const double SecondsPerNodeRow = 1.4e-6;
+    private const double SecondsPerLinkRow = 0.55e-6;
+    private const double SecondsPerNodeRow = 1.6e-6;
     private const double SecondsPerCoordinate = 1e-8;
     private const double SecondsToEnd = 0.3;
     private const double Margin = 1.2;
+
+    private const double RoomForRounds = 3;
+    private const double BatchesOfAudit = 1.2;
     private const double BaseBytes = 200e6;
     private const int PanelsPerThread = 6; // right-hand sides, solutions, and those of an iteration
     private const int LossPanelsPerThread = 2; // signs on nodes, and their solutions
@@ -29,12 +32,24 @@ internal static class RunCost
         return (plan.Want.HasFlag(Want.Links) ? network.LinkCount * SecondsPerLinkRow : 0) + (nodeTables * network.NodeCount * SecondsPerNodeRow);
     }
 
+    /// <summary>
+    /// Panels to solve at a time. A panel takes about as long as preparing, side by side with others some half longer: where a time budget has no room
+    /// for two rounds of them, one at a time wastes a thread, yet ends sooner.
+    /// </summary>
+    public static int PanelsAtOnce(Network network, EstimatePlan plan, double preparing) =>
+        plan.TimeBudget is TimeSpan left && plan.Probes is null
+            && left.TotalSeconds - SecondsAfter(network, plan, ProbePanel.Width) < RoomForRounds * preparing ? 1 : plan.Threads;
+
     /// <summary>Seconds to keep for what comes after the last probe, with a margin.</summary>
-    public static double SecondsAfter(Network network, EstimatePlan plan, int probes)
-    {
-        double coordinates = plan.Want.HasFlag(Want.Coordinates) ? SecondsPerCoordinate * network.NodeCount * probes : 0;
-        return SecondsToEnd + (Margin * (WritingSeconds(network, plan) + coordinates));
-    }
+    public static double SecondsAfter(Network network, EstimatePlan plan, int probes) =>
+        SecondsToEnd + (Margin * (WritingSeconds(network, plan) + CoordinateSeconds(network, plan, probes)));
+
+    /// <summary>Seconds that an audit takes, from those of a batch of panels.</summary>
+    public static double AuditSeconds(EstimatePlan plan, double batch) => (plan.Want & (Want.Links | Want.Pairs)) == 0 ? 0 : BatchesOfAudit * batch;
+
+    /// <summary>Seconds that writing the coordinates of so many probes takes.</summary>
+    public static double CoordinateSeconds(Network network, EstimatePlan plan, int probes) =>
+        plan.Want.HasFlag(Want.Coordinates) ? SecondsPerCoordinate * network.NodeCount * probes : 0;
 
     /// <summary>Bytes of a network in memory, with what building it leaves and what is kept by node.</summary>
     public static double NetworkBytes(Network network) =>
@@ -65,15 +80,20 @@ internal static class RunCost
     }
 
     /// <summary>Refuses a named number of probes where, after the first batch of panels, the rest is foreseen to take longer than the budget.</summary>
+    /// <param name="network">The network.</param>
+    /// <param name="plan">The run's.</param>
+    /// <param name="batches">Of panels, in all.</param>
+    /// <param name="batch">Seconds of one.</param>
+    /// <param name="once">Seconds spent once beside them.</param>
     /// <exception cref="BudgetException">It does not fit.</exception>
-    public static void CheckTime(Network network, EstimatePlan plan, int batches, TimeSpan batch)
+    public static void CheckTime(Network network, EstimatePlan plan, int batches, double batch, double once)
     {
         if (plan.TimeBudget is not TimeSpan budget)
             return;
-        double writing = WritingSeconds(network, plan), all = (batches * batch.TotalSeconds) + writing;
+        double rest = once + AuditSeconds(plan, batch) + WritingSeconds(network, plan), all = (batches * batch) + rest;
         if (all <= budget.TotalSeconds)
             return;
-        int affordable = (int)Math.Min(int.MaxValue, Math.Max(0, (budget.TotalSeconds - writing) / batch.TotalSeconds * plan.MostProbes / batches));
+        int affordable = (int)Math.Min(int.MaxValue, Math.Max(0, (budget.TotalSeconds - rest) / batch * plan.MostProbes / batches));
         throw TooLong(plan.MostProbes, all, budget, affordable >= 4 ? $"use --probes {affordable}, or a larger budget" : "use a larger budget");
     }
 

@@ -96,6 +96,22 @@ public static class Tables
         new("r", ColumnKind.FloatList),
     ]);
 
+    /// <summary>One row a way to run an estimate, as <c>tune</c> foresees it; see <see cref="FrontierPoint"/>.</summary>
+    public static TableDefinition Frontier { get; } = new("frontier",
+    [
+        new("route", ColumnKind.Text),
+        new("probes", ColumnKind.Int64, Nullable: true),
+        new("predicted_error", ColumnKind.Double, Nullable: true),
+        new("predicted_index_error", ColumnKind.Double, Nullable: true),
+        new("achieved_error", ColumnKind.Double, Nullable: true),
+        new("achieved_index_error", ColumnKind.Double, Nullable: true),
+        new("predicted_seconds", ColumnKind.Double),
+        new("achieved_seconds", ColumnKind.Double, Nullable: true),
+        new("predicted_bytes", ColumnKind.Int64),
+        new("on_frontier", ColumnKind.Boolean),
+        new("command", ColumnKind.Text),
+    ]);
+
     /// <summary>One row a link or pair that an audit solved.</summary>
     public static TableDefinition Audit(ColumnKind label) => new("audit",
     [

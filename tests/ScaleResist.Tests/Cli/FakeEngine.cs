@@ -34,6 +34,9 @@ internal sealed class FakeEngine : IEstimateEngine
     public SurveyOutcome Survey(SurveyRequest request, IRunObserver observer, CancellationToken interrupted) =>
         throw new NotSupportedException("this engine surveys nothing");
 
+    public TuneOutcome Tune(TuneRequest request, double before, Func<ITableSink> openTables, IRunObserver observer, CancellationToken interrupted) =>
+        throw new NotSupportedException("this engine tunes nothing");
+
     public EstimateOutcome Run(EstimateRequest request, Func<InputFacts, ITableSink> openSink, IRunObserver observer,
         CancellationToken interrupted)
     {

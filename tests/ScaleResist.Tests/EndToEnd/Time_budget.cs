@@ -11,7 +11,8 @@ public sealed class Time_budget
 {
     [Theory]
     [Trait("Category", "Slow")]
-    [InlineData("probes", 64, 64)]
+    [InlineData("probes", 64, 64, "--probes", "64")]
+    [InlineData("time", 64, 4095)]
     [InlineData("time", 64, 4095, "--target-error", "0.0001")]
     public void A_hundred_thousand_links_end_in_five_seconds(string stoppedBy, int least, int most, params string[] more)
     {

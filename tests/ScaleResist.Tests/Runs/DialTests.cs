@@ -90,11 +90,22 @@ public sealed class DialTests
     public void A_budget_with_time_to_spare_changes_nothing()
     {
         Network network = TestNetworks.Of(Family.SmallWorld, 1000);
-        EstimatePlan plan = new() { Route = Route.Probe, Want = Tables };
+        EstimatePlan plan = new() { Route = Route.Probe, Want = Tables, Probes = 64 };
         MemorySink free = Run(network, plan, out EstimateSummary all), timed = Run(network, plan with { TimeBudget = TimeSpan.FromHours(1) }, out EstimateSummary some);
         Assert.Equal((64, "probes"), (all.Probing!.Probes, all.Probing.StoppedBy));
         Assert.Equal(all.Probing, some.Probing);
         Assert.Equal(free["links"].Column<double>("resistance"), timed["links"].Column<double>("resistance"));
+    }
+
+    [Fact]
+    public void A_budget_alone_is_used_up_to_the_most_probes_there_are_but_not_where_every_row_would_grow_with_them()
+    {
+        EstimatePlan plan = new() { Route = Route.Probe, Want = Tables, TimeBudget = TimeSpan.FromHours(1) };
+        Run(TestNetworks.Of(Family.Grid, 100), plan, out EstimateSummary rows);
+        Assert.Equal((4096, "probes"), (rows.Probing!.Probes, rows.Probing.StoppedBy));
+        Assert.NotNull(rows.Audit);
+        Run(TestNetworks.Of(Family.Grid, 100), plan with { Want = Tables | Want.Coordinates }, out EstimateSummary lists);
+        Assert.Equal((64, "probes"), (lists.Probing!.Probes, lists.Probing.StoppedBy));
     }
 
     [Fact]
