@@ -6,15 +6,22 @@
 //     t_(k+1)(u,v) = sum_y p_k(u)_y c_yv / d_v,           t_k(u,u) = 1/d_u sum over neighbours y that may be passed of c_uy t_(k-1)(u,y).
 // The end of a link that has more neighbours spreads its walks into a dense row, once for all its links; the last step is gathered from the other.
 
+using System.Runtime.Intrinsics.X86;
 using ScaleResist.Graphs;
+using ScaleResist.Kernels;
 
 namespace ScaleResist.Estimating;
 
 /// <summary>t_2 .. t_(2s-1) between the ends of every link, and from every node back to it.</summary>
 internal sealed class WalkMoments
 {
+    private const int NearAhead = 1, FarAhead = 4; // walks
+
     private readonly Network network;
-    private readonly double[] share; // 1 / d where a walk passes, else 0
+    private readonly float[] passes;
+    private readonly long[] passedStart; // by node, its neighbours that may be passed, beside c / d of each
+    private readonly int[] passed;
+    private readonly double[] shares;
     private readonly double[] ofLinks;
     private readonly double[] ofNodes;
 
@@ -22,9 +29,16 @@ internal sealed class WalkMoments
     {
         this.network = network;
         Count = (2 * reach.Steps) - 2;
-        share = new double[network.NodeCount];
-        for (int u = 0; u < share.Length; u++)
-            share[u] = reach.Passes[u] == 0 ? 0 : 1 / network.Strengths[u];
+        passes = reach.Passes;
+        passedStart = new long[network.NodeCount + 1];
+        for (int u = 0; u < network.NodeCount; u++)
+        {
+            long count = 0;
+            for (long k = network.RowStart[u]; k < network.RowStart[u + 1]; k++)
+                count += passes[network.Neighbours[k]] != 0 ? 1 : 0;
+            passedStart[u + 1] = passedStart[u] + count;
+        }
+        (passed, shares) = (new int[passedStart[^1]], new double[passedStart[^1]]);
         ofLinks = new double[network.LinkCount * Count];
         ofNodes = new double[(long)network.NodeCount * Count];
     }
@@ -43,15 +57,17 @@ internal sealed class WalkMoments
     {
         WalkMoments moments = new(network, reach);
         List<(int Start, int End)> chunks = RowChunks.Of(network);
+        ParallelOptions parallel = new() { MaxDegreeOfParallelism = threads, CancellationToken = cancel };
+        Parallel.For(0, chunks.Count, parallel, i => moments.FillPassed(chunks[i].Start, chunks[i].End));
         Parallel.For(
-            0, chunks.Count, new ParallelOptions { MaxDegreeOfParallelism = threads, CancellationToken = cancel }, () => new Spread(network.NodeCount),
+            0, chunks.Count, parallel, () => new Spread(network.NodeCount),
             (i, _, spread) =>
             {
                 for (int u = chunks[i].Start; u < chunks[i].End; u++)
                     moments.AddLinksOf(u, spread);
                 return spread;
             },
-            _ => { });
+            spread => spread.Dispose());
         moments.AddNodes();
         return moments;
     }
@@ -63,7 +79,21 @@ internal sealed class WalkMoments
         return more > fewer || (more == fewer && u < v);
     }
 
-    private void AddLinksOf(int u, Spread spread)
+    private void FillPassed(int start, int end)
+    {
+        for (int u = start; u < end; u++)
+        {
+            long at = passedStart[u];
+            for (long k = network.RowStart[u]; k < network.RowStart[u + 1]; k++)
+            {
+                int y = network.Neighbours[k];
+                if (passes[y] != 0)
+                    (passed[at], shares[at++]) = (y, network.Conductance(k) / network.Strengths[y]);
+            }
+        }
+    }
+
+    private unsafe void AddLinksOf(int u, Spread spread)
     {
         long start = network.RowStart[u], end = network.RowStart[u + 1], later = network.FirstLaterArc(u);
         spread.Links.Clear();
@@ -77,12 +107,8 @@ internal sealed class WalkMoments
             return;
         double own = 1 / network.Strengths[u];
         spread.Walks.Clear();
-        for (long k = start; k < end; k++)
-        {
-            int y = network.Neighbours[k];
-            if (share[y] != 0)
-                spread.Walks.Add((y, own * network.Conductance(k) * share[y]));
-        }
+        for (long at = passedStart[u]; at < passedStart[u + 1]; at++)
+            spread.Walks.Add((passed[at], own * shares[at]));
         for (int i = 0; i < Count - 1; i++)
         {
             Step(spread);
@@ -90,7 +116,7 @@ internal sealed class WalkMoments
                 ofLinks[(link * Count) + i] = spread.Row[v] / network.Strengths[v];
             if (i == Count - 2)
                 GatherLast(spread);
-            spread.Take(share);
+            spread.Take(passes, network.Strengths, more: i < Count - 2);
         }
     }
 
@@ -99,13 +125,23 @@ internal sealed class WalkMoments
     {
         fixed (int* neighbours = network.Neighbours)
         fixed (double* conductances = network.Conductances)
-        fixed (double* row = spread.Row)
         {
-            foreach ((int y, double p) in spread.Walks)
+            double* row = spread.Row;
+            ReadOnlySpan<(int Node, double P)> walks = System.Runtime.InteropServices.CollectionsMarshal.AsSpan(spread.Walks);
+            for (int i = 0; i < walks.Length; i++)
             {
+                (int y, double p) = walks[i];
+                long end = network.RowStart[y + 1];
+                // Rows come from memory, places of sums from a cache: each is asked for as early as its address is known.
+                if (Sse.IsSupported && i + FarAhead < walks.Length)
+                {
+                    Sse.Prefetch0(neighbours + network.RowStart[walks[i + FarAhead].Node]);
+                    int near = walks[i + NearAhead].Node;
+                    for (long k = network.RowStart[near]; k < network.RowStart[near + 1]; k++)
+                        Sse.Prefetch0(row + neighbours[k]);
+                }
                 spread.Room(network.Degree(y));
                 int count = spread.ReachedCount;
-                long end = network.RowStart[y + 1];
                 fixed (int* reached = spread.Reached)
                 {
                     for (long k = network.RowStart[y]; k < end; k++)
@@ -122,17 +158,14 @@ internal sealed class WalkMoments
         }
     }
 
-    private void GatherLast(Spread spread)
+    private unsafe void GatherLast(Spread spread)
     {
-        double[] row = spread.Row;
+        double* row = spread.Row;
         foreach ((int v, long link) in spread.Links)
         {
             double sum = 0;
-            for (long k = network.RowStart[v]; k < network.RowStart[v + 1]; k++)
-            {
-                int y = network.Neighbours[k];
-                sum += network.Conductance(k) * row[y] * share[y];
-            }
+            for (long at = passedStart[v]; at < passedStart[v + 1]; at++)
+                sum += shares[at] * row[passed[at]];
             ofLinks[(link * Count) + Count - 1] = sum / network.Strengths[v];
         }
     }
@@ -151,8 +184,8 @@ internal sealed class WalkMoments
                 double before = c * atU * atV; // t_1
                 for (int i = 0; i < Count; i++)
                 {
-                    ofNodes[(u * Count) + i] += c * atU * before * (share[v] != 0 ? 1 : 0);
-                    ofNodes[(v * Count) + i] += c * atV * before * (share[u] != 0 ? 1 : 0);
+                    ofNodes[(u * Count) + i] += c * atU * before * passes[v];
+                    ofNodes[(v * Count) + i] += c * atV * before * passes[u];
                     before = ofLinks[(link * Count) + i];
                 }
             }
@@ -160,8 +193,10 @@ internal sealed class WalkMoments
     }
 
     // A thread's workspace: where the walks from one node have got to.
-    private sealed class Spread(int nodes)
+    private sealed unsafe class Spread(int nodes) : IDisposable
     {
+        private readonly Panel<double> memory = new((nodes + 7) / 8); // for its large pages
+
         /// <summary>The links that the node serves.</summary>
         public List<(int Other, long Link)> Links { get; } = [];
 
@@ -169,7 +204,7 @@ internal sealed class WalkMoments
         public List<(int Node, double P)> Walks { get; } = [];
 
         /// <summary>Sums by node; zero but at the nodes reached.</summary>
-        public double[] Row { get; } = new double[nodes];
+        public double* Row => memory.Pointer;
 
         /// <summary>Nodes reached, and room for one more.</summary>
         public int[] Reached { get; private set; } = new int[1024];
@@ -187,17 +222,20 @@ internal sealed class WalkMoments
         }
 
         /// <summary>Turns the sums into the walks that go on, and clears them.</summary>
-        public void Take(double[] share)
+        public void Take(float[] passes, double[] strengths, bool more)
         {
+            double* row = Row;
             Walks.Clear();
             for (int i = 0; i < ReachedCount; i++)
             {
                 int y = Reached[i];
-                if (share[y] != 0)
-                    Walks.Add((y, Row[y] * share[y]));
-                Row[y] = 0;
+                if (more && passes[y] != 0)
+                    Walks.Add((y, row[y] / strengths[y]));
+                row[y] = 0;
             }
             ReachedCount = 0;
         }
+
+        public void Dispose() => memory.Dispose();
     }
 }

@@ -11,8 +11,8 @@ internal sealed class WalkReach
     /// <summary>The most steps.</summary>
     public const int MostSteps = 3;
 
-    // Walks of 2 to 2s - 2 steps that preparing follows at most, as a multiple of the arcs: about a second of work for ten million arcs.
-    private const double WalksPerArc = 40;
+    // Walks of 2 to 2s - 2 steps that preparing follows at most, as a multiple of the arcs: around hubs each is a miss of the caches.
+    private const double WalksPerArc = 5;
     private const double WalksPerArcOfThreeSteps = 400; // most of them meet: meshes and rings hold a fraction as many nodes
 
     // A third step pays where walks pass nearly everywhere.
@@ -66,6 +66,9 @@ internal sealed class WalkReach
             ? new WalkReach(network, 2, two)
             : new WalkReach(network, 1, 0);
     }
+
+    /// <summary>Two or three steps through nodes of at most a given degree, whatever the work.</summary>
+    public static WalkReach Through(Network network, int steps, int mostDegree) => new(network, steps, mostDegree);
 
     // The largest degree, by halves from the largest there is, through which walks of up to so many steps stay within the work.
     private static int? DegreeWithin(Network network, int largest, int steps, double work)

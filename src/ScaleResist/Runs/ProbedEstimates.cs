@@ -48,7 +48,7 @@ internal sealed class ProbedEstimates
         Network network = blocks.Network;
         ProbedEstimates sums = new()
         {
-            Links = links ? new LinkSums(network, blocks.Bridges) : null,
+            Links = links ? new LinkSums(network, blocks.Bridges, LinkSteps.Of(network, RunCost.BytesForSteps(network, plan), plan.Threads, cancel)) : null,
             Nodes = (plan.Want & (Want.Index | Want.Nodes)) != 0 ? new NodeSums(blocks, inputs.NodeWeights, exact) : null,
             Pairs = plan.Want.HasFlag(Want.Pairs) ? new PairSums(network, blocks.Bridges, inputs.Pairs ?? [], exactPairs) : null,
             Coordinates = plan.Want.HasFlag(Want.Coordinates) ? new Coordinates(network) : null,
@@ -101,6 +101,7 @@ internal sealed class ProbedEstimates
         }
         finally
         {
+            sums.Links?.Complete();
             foreach (Slot? slot in slots)
                 slot?.Dispose();
         }
