@@ -15,8 +15,11 @@ internal sealed class WalkReach
     private const double WalksPerArc = 5;
     private const double WalksPerArcOfThreeSteps = 400; // most of them meet: meshes and rings hold a fraction as many nodes
 
-    // A third step pays where walks pass nearly everywhere.
+    private const double WalksPerArcOfTheMean = 40; // so that a node of the mean degree is passed, in regular networks all are
+
+    // A third step pays where walks pass nearly everywhere, a second where they pass at all: shares of the arcs.
     private const double ShareOfThreeSteps = 0.98;
+    private const double ShareOfTwoSteps = 0.02;
 
     private WalkReach(Network network, int steps, int mostDegree)
     {
@@ -62,9 +65,12 @@ internal sealed class WalkReach
         {
             return new WalkReach(network, 3, three);
         }
-        return mostSteps >= 2 && DegreeWithin(network, largest, 2, WalksPerArc * arcs) is int two
-            ? new WalkReach(network, 2, two)
-            : new WalkReach(network, 1, 0);
+        if (mostSteps < 2)
+            return new WalkReach(network, 1, 0);
+        int two = DegreeWithin(network, largest, 2, WalksPerArc * arcs) ?? 0, mean = (int)Math.Ceiling(arcs / Math.Max(1, network.NodeCount));
+        if (two < mean && Walks(network, mean, 2) <= WalksPerArcOfTheMean * arcs)
+            two = mean;
+        return ArcsFrom(network, two) >= ShareOfTwoSteps * arcs ? new WalkReach(network, 2, two) : new WalkReach(network, 1, 0);
     }
 
     /// <summary>Two or three steps through nodes of at most a given degree, whatever the work.</summary>
