@@ -12,7 +12,7 @@ namespace ScaleResist.Tests.Estimating;
 public class LinkAccuracyTests(ITestOutputHelper output)
 {
     [Theory]
-    [InlineData(Family.Preferential, 1000, 0, 0.004)]
+    [InlineData(Family.Preferential, 1000, 0, 0.012)]
     [InlineData(Family.SmallWorld, 1000, 0, 0.021)]
     [InlineData(Family.Grid, 900, 0, 0.020)]
     [InlineData(Family.Road, 1000, 0, 0.032)]
