@@ -19,7 +19,7 @@ using System.Runtime.CompilerServices;
 namespace ScaleResist.Estimating;
 
 /// <summary>What conditioning on the two end nodes says of a link before any probe.</summary>
-/// <param name="Lower">g / (1 + c g): the least resistance the link can have.</param>
+/// <param name="Lower">The least resistance the link can have: g / (1 + c g), or more where it is <see cref="Raised"/>.</param>
 /// <param name="Upper">1 / c: the most.</param>
 /// <param name="FactorU">Factor of b_u in the first residual: 1 / ((d_u - c)(1 + c g)).</param>
 /// <param name="FactorV">Factor of b_v.</param>
@@ -42,6 +42,9 @@ public readonly record struct LinkBounds(double Lower, double Upper, double Fact
         double damp = 1 / (1 + (c * g));
         return new LinkBounds(g * damp, 1 / c, restU * damp, restV * damp) { Range = damp / c };
     }
+
+    /// <summary>The same with a lower bound that is higher by less than the range.</summary>
+    public LinkBounds Raised(double gain) => this with { Lower = Lower + gain, Range = Range - gain };
 
     /// <summary>The same for two nodes that no link joins: R >= 1/d_u + 1/d_v, without an upper end.</summary>
     public static LinkBounds OfPair(double du, double dv) =>

@@ -4,7 +4,7 @@
 //
 //   FillRow      b_u = sum over links of u of +-sqrt(c): reads the adjacency and the neighbours' keys, writes one row
 //   AddLink      one link's part of such a row
-//   LinkSquares  reads z and b at both ends (4 rows), writes nothing: two sums go back in registers
+//   LinkSquares  reads z, b and up to two walks of b at both ends (4 to 8 rows), writes nothing: two sums go back in registers
 
 using System.Runtime.CompilerServices;
 using System.Runtime.Intrinsics;
@@ -82,6 +82,34 @@ internal static unsafe class ProbeKernels
         return (Total(shorted * shorted), Total(single * single));
     }
 
+    /// <summary>
+    /// The same where the first residual looks further: Shorted = sum of (D - (f_0 b_u - f_1 b_v) - (f_2 y_u - f_3 y_v) - ..)^2 for walks y of b.
+    /// </summary>
+    /// <param name="z">n x 16.</param>
+    /// <param name="b">n x 16.</param>
+    /// <param name="one">y_1, n x 16.</param>
+    /// <param name="two">y_2, n x 16, or null.</param>
+    /// <param name="u">One end.</param>
+    /// <param name="v">The other.</param>
+    /// <param name="factors">f, 4 or with y_2 6 values.</param>
+    /// <param name="signs">Signs of the link as seen from u.</param>
+    /// <param name="unit">1 / sqrt(c).</param>
+    /// <param name="lanes">Lanes in use.</param>
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    public static (float Shorted, float Single) LinkSquares(
+        float* z, float* b, float* one, float* two, int u, int v, float* factors, uint signs, float unit, uint lanes)
+    {
+        long atU = (long)u * Width, atV = (long)v * Width;
+        if (PanelKernels.Scalar)
+            return LinkSquaresScalar(z, b, one, two, atU, atV, factors, signs, unit, lanes);
+        Vector512<float> difference = Vector512.Load(z + atU) - Vector512.Load(z + atV);
+        Vector512<float> shorted = difference - Weighed(b, atU, atV, factors) - Weighed(one, atU, atV, factors + 2);
+        if (two != null)
+            shorted -= Weighed(two, atU, atV, factors + 4);
+        Vector512<float> single = (difference - Signed(unit, signs)) & Mask(lanes);
+        return (Total(shorted * shorted), Total(single * single));
+    }
+
     /// <summary>Adds +-size to the lanes in use of a row, - where a sign is set.</summary>
     public static void AddLink(float* row, float size, uint signs, uint lanes)
     {
@@ -137,6 +165,29 @@ internal static unsafe class ProbeKernels
         }
         return (TotalScalar(shorted), TotalScalar(single));
     }
+
+    private static (float Shorted, float Single) LinkSquaresScalar(
+        float* z, float* b, float* one, float* two, long atU, long atV, float* factors, uint signs, float unit, uint lanes)
+    {
+        float* shorted = stackalloc float[Width];
+        float* single = stackalloc float[Width];
+        for (int lane = 0; lane < Width; lane++)
+        {
+            float difference = z[atU + lane] - z[atV + lane];
+            float rest = difference - ((factors[0] * b[atU + lane]) - (factors[1] * b[atV + lane]))
+                - ((factors[2] * one[atU + lane]) - (factors[3] * one[atV + lane]));
+            if (two != null)
+                rest -= (factors[4] * two[atU + lane]) - (factors[5] * two[atV + lane]);
+            float other = (lanes >> lane & 1) == 0 ? 0 : difference - ((signs >> lane & 1) != 0 ? -unit : unit);
+            shorted[lane] = rest * rest;
+            single[lane] = other * other;
+        }
+        return (TotalScalar(shorted), TotalScalar(single));
+    }
+
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static Vector512<float> Weighed(float* panel, long atU, long atV, float* factors) =>
+        (Vector512.Create(factors[0]) * Vector512.Load(panel + atU)) - (Vector512.Create(factors[1]) * Vector512.Load(panel + atV));
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
     private static Vector512<float> Mask(uint lanes) =>

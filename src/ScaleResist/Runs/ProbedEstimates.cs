@@ -60,7 +60,8 @@ internal sealed class ProbedEstimates
         Network network = blocks.Network;
         ProbedEstimates sums = new()
         {
-            Links = links ? new LinkSums(network, blocks.Bridges) : null,
+            Links = links ? new LinkSums(
+                network, blocks.Bridges, LinkSteps.Of(network, RunCost.BytesForSteps(network, plan), plan.Threads, cancel)) : null,
             Losses = links && plan.Want.HasFlag(Want.Links) ? new LossSums(network, blocks.Bridges) : null,
             Nodes = (plan.Want & (Want.Index | Want.Nodes)) != 0 ? new NodeSums(blocks, inputs.NodeWeights, exact) : null,
             Pairs = plan.Want.HasFlag(Want.Pairs) ? new PairSums(network, blocks.Bridges, inputs.Pairs ?? [], exactPairs) : null,
@@ -129,6 +130,7 @@ internal sealed class ProbedEstimates
         }
         finally
         {
+            sums.Links?.Complete();
             foreach (Slot? slot in slots)
                 slot?.Dispose();
         }

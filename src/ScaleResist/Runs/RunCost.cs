@@ -24,6 +24,7 @@ internal static class RunCost
     private const double LinkBytes = 16;
     private const double LossBytes = 14;
     private const int DeflationPanels = 2; // directions, and their right-hand sides
+    private const int WalkPanelCount = 3; // two walks, and what preparing keeps by node
 
     /// <summary>Seconds that writing the wanted tables takes.</summary>
     public static double WritingSeconds(Network network, EstimatePlan plan)
@@ -65,6 +66,13 @@ internal static class RunCost
         double coordinates = plan.Want.HasFlag(Want.Coordinates) ? (double)network.NodeCount * probes * sizeof(float) : 0;
         return (long)(BaseBytes + NetworkBytes(network) + (network.LinkCount * (LinkBytes + (losses ? LossBytes : 0))) + panels + coordinates);
     }
+
+    /// <summary>
+    /// Bytes that several steps around each link may take: what --memory-budget leaves beside one step. Only that option decides, not the
+    /// machine, so that results do not depend on where a plan runs.
+    /// </summary>
+    public static double BytesForSteps(Network network, EstimatePlan plan) => plan.MemoryBudget is long budget
+        ? budget - ProbedBytes(network, plan, plan.ForeseenProbes) - (WalkPanelCount * 64.0 * network.NodeCount) : double.PositiveInfinity;
 
     /// <summary>Refuses the probed route where it is foreseen to need more memory than the budget.</summary>
     /// <exception cref="BudgetException">It does not fit.</exception>

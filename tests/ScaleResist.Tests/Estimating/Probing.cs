@@ -16,7 +16,7 @@ internal sealed class Probing
         Network = network;
         Blocks blocks = Blocks.Find(network);
         Bridges = blocks.Bridges;
-        sums = new LinkSums(network, Bridges);
+        sums = new LinkSums(network, Bridges, LinkSteps.Of(network, double.PositiveInfinity, 1, default));
         Nodes = new NodeSums(blocks, weights);
         plain = new double[network.LinkCount];
         Panels(network, probes, seed, modeError, panel =>

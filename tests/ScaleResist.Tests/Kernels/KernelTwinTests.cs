@@ -111,6 +111,38 @@ public unsafe class KernelTwinTests
     }
 
     [Theory]
+    [MemberData(nameof(Spreads))]
+    public void Walk_kernels_equal_their_scalar_twins(double decades)
+    {
+        Network network = TestNetworks.Of(Family.Preferential, 300, decades: decades);
+        float[] weights = [.. Enumerable.Range(0, 300).Select(u => u % 7 == 0 ? 0 : (float)(1 / network.Strengths[u]))];
+        using Panel<float> x = Filled<float>(300, 3), z = Filled<float>(300, 4), y = new(300), twin = new(300);
+        float[] vector = [], scalar = [];
+        vector = All(y);
+        WithScalar(() => scalar = All(twin));
+        AssertSame(y, twin);
+        Assert.Equal(vector, scalar);
+        Assert.Contains(vector, value => value != 0);
+
+        float[] All(Panel<float> into)
+        {
+            WalkKernels.Step(network.Laplacian, weights, x, into, 0, 300);
+            float* factors = stackalloc float[6] { 0.3f, 0.7f, 0.2f, -0.4f, 0.15f, 0.6f };
+            List<float> squares = [];
+            for (int u = 1; u < 300; u++)
+            {
+                foreach (bool further in (ReadOnlySpan<bool>)[false, true])
+                {
+                    (float shorted, float single) = ProbeKernels.LinkSquares(
+                        z.Pointer, x.Pointer, into.Pointer, further ? z.Pointer : null, u, u - 1, factors, (uint)(u * 7919) & 0xFFFF, 1.5f, 0x7FFF);
+                    squares.AddRange([shorted, single]);
+                }
+            }
+            return [.. squares];
+        }
+    }
+
+    [Theory]
     [InlineData(Family.Grid, 400)]
     [InlineData(Family.Road, 700)]
     [InlineData(Family.SmallWorld, 300)]
