@@ -11,25 +11,26 @@ internal sealed class Axis
     private readonly double to;
     private readonly bool isLog;
 
-    private Axis(double from, double to, bool isLog, string title)
+    private Axis(double from, double to, bool isLog, string title, IReadOnlyList<double>? ticks = null)
     {
         this.from = from;
         this.to = to > from ? to : from + (from == 0 ? 1 : Math.Abs(from));
         this.isLog = isLog;
         Title = title;
+        Ticks = ticks ?? (isLog ? LogTicks() : LinearTicks());
     }
 
-    /// <summary>What it measures, unit included.</summary>
+    /// <summary>What it measures, unit included; only axes across show it, of heights the caption tells.</summary>
     public string Title { get; }
 
     /// <summary>The values named on it.</summary>
-    public IReadOnlyList<double> Ticks => isLog ? LogTicks() : LinearTicks();
+    public IReadOnlyList<double> Ticks { get; }
 
-    public static Axis Linear(double from, double to, string title) => new(from, to, false, title);
+    public static Axis Linear(double from, double to, string title = "") => new(from, to, false, title);
 
-    /// <summary>Both ends must be positive.</summary>
-    public static Axis Log(double from, double to, string title) => from > 0
-        ? new Axis(from, to, true, title)
+    /// <summary>Both ends must be positive; ticks stand where the caller says, or at round numbers.</summary>
+    public static Axis Log(double from, double to, string title = "", IReadOnlyList<double>? ticks = null) => from > 0
+        ? new Axis(from, to, true, title, ticks)
         : throw new ArgumentOutOfRangeException(nameof(from), from, "a logarithmic axis begins above 0");
 
     /// <summary>The place of a value, in percent of the length.</summary>

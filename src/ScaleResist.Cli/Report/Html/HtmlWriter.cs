@@ -5,6 +5,21 @@ using System.Text;
 
 namespace ScaleResist.Cli.Report.Html;
 
+/// <summary>A column of a table.</summary>
+/// <param name="Head">Its head: after '#' a column of figures, after '~' of small pictures, which phones leave out.</param>
+/// <param name="Cell">What a row says in it.</param>
+/// <param name="Shown">Whether it is there at all.</param>
+internal sealed record Column<T>(string Head, Func<T, HtmlText> Cell, bool Shown = true)
+{
+    /// <summary>Class of its cells.</summary>
+    public string? Class => Head[0] switch
+    {
+        '#' => "figure",
+        '~' => "picture",
+        _ => null,
+    };
+}
+
 /// <summary>A page in the making: <c>using (html.Open("ul")) html.Element("li", $"{count} nodes");</c>.</summary>
 internal sealed class HtmlWriter
 {
@@ -61,11 +76,9 @@ internal sealed class HtmlWriter
     }
 
     /// <summary>A table with a caption; the first column heads its rows.</summary>
-    /// <param name="caption">What it holds.</param>
-    /// <param name="columns">Heads; one that begins with '#' is a column of figures (the sign is not shown).</param>
-    /// <param name="rows">Cells.</param>
-    public void Table(string caption, IReadOnlyList<string> columns, IEnumerable<IReadOnlyList<HtmlText>> rows)
+    public void Table<T>(string caption, IEnumerable<T> rows, IEnumerable<Column<T>> columns)
     {
+        Column<T>[] shown = [.. columns.Where(column => column.Shown)];
         using (Open("div", ("class", "scroll"), ("role", "region"), ("aria-label", caption), ("tabindex", "0")))
         using (Open("table"))
         {
@@ -73,25 +86,31 @@ internal sealed class HtmlWriter
             using (Open("thead"))
             using (Open("tr"))
             {
-                foreach (string column in columns)
-                    Element("th", column.TrimStart('#'), ("scope", "col"), ("class", ClassOf(column)));
+                foreach (Column<T> column in shown)
+                    Element("th", column.Head.TrimStart('#', '~'), ("scope", "col"), ("class", column.Class));
             }
             using (Open("tbody"))
             {
-                foreach (IReadOnlyList<HtmlText> row in rows)
+                foreach (T row in rows)
                 {
                     using (Open("tr"))
                     {
-                        for (int i = 0; i < row.Count; i++)
-                        {
-                            if (i == 0)
-                                Element("th", row[i], ("scope", "row"), ("class", ClassOf(columns[i])));
-                            else
-                                Element("td", row[i], ("class", ClassOf(columns[i])));
-                        }
+                        Element("th", shown[0].Cell(row), ("scope", "row"), ("class", shown[0].Class));
+                        foreach (Column<T> column in shown.Skip(1))
+                            Element("td", column.Cell(row), ("class", column.Class));
                     }
                 }
             }
+        }
+    }
+
+    /// <summary>What the colours of a plot stand for.</summary>
+    public void Key(IEnumerable<(string Name, string Kind)> entries)
+    {
+        using (Open("p", ("class", "key")))
+        {
+            foreach ((string name, string kind) in entries)
+                Element("span", name, ("class", kind));
         }
     }
 
@@ -109,8 +128,6 @@ internal sealed class HtmlWriter
     public override string ToString() => open.Count == 0
         ? page.ToString()
         : throw new InvalidOperationException($"<{open.Peek()}> is open.");
-
-    private static string? ClassOf(string column) => column.StartsWith('#') ? "figure" : null;
 
     private void Start(string name, ReadOnlySpan<(string Name, string? Value)> attributes)
     {

@@ -18,12 +18,11 @@ internal readonly record struct Bar(double From, double To, double Height, doubl
 internal readonly record struct Point(double X, double Y, double? Lower = null, double? Upper = null);
 
 /// <summary>Points of one kind.</summary>
-/// <param name="Name">Written beside the last point.</param>
-/// <param name="Kind">Class of the style sheet: <c>first</c> or <c>second</c>.</param>
+/// <param name="Kind">Class of the style sheet: <c>first</c>, <c>second</c> or <c>third</c>.</param>
 /// <param name="Points">From left to right.</param>
 /// <param name="Measured">Points that were measured: filled; the others are open.</param>
 /// <param name="Line">Whether they are joined.</param>
-internal sealed record Series(string Name, string Kind, IReadOnlyList<Point> Points, Func<Point, bool>? Measured = null, bool Line = true);
+internal sealed record Series(string Kind, IReadOnlyList<Point> Points, Func<Point, bool>? Measured = null, bool Line = true);
 
 /// <summary>Writes plots.</summary>
 internal static class Plot
@@ -33,9 +32,9 @@ internal static class Plot
     private const int Foot = 46;
 
     /// <summary>Bars over their bins; the height axis begins at 0.</summary>
-    public static void Histogram(HtmlWriter html, PlotText text, Axis x, string heightTitle, IReadOnlyList<Bar> bars)
+    public static void Histogram(HtmlWriter html, PlotText text, Axis x, IReadOnlyList<Bar> bars)
     {
-        Axis y = Axis.Linear(0, bars.Max(bar => bar.Height) * 1.02, heightTitle);
+        Axis y = Axis.Linear(0, bars.Max(bar => bar.Height) * 1.02);
         using (Begin(html, text, Top + Height + Foot))
         {
             Grid(html, x, y);
@@ -47,9 +46,9 @@ internal static class Plot
                 double foot = marked > 0 ? Math.Max(1, Height - Down(y, marked)) : 0;
                 double rest = bar.Height > marked ? Math.Max(1, Height - Down(y, bar.Height) - foot) : 0;
                 if (foot > 0)
-                    Rectangle(html, "bar marked", left, width, Height - foot, foot);
+                    Rectangle(html, "bar second", left, width, Height - foot, foot);
                 if (rest > 0)
-                    Rectangle(html, "bar", left, width, Height - foot - rest, rest);
+                    Rectangle(html, "bar first", left, width, Height - foot - rest, rest);
             }
             Baseline(html);
         }
@@ -76,12 +75,6 @@ internal static class Plot
                         Line(html, one.Kind, at, Down(y, lower), at, Down(y, upper));
                     html.Empty("circle", ("class", one.Kind + (one.Measured?.Invoke(point) == false ? " open" : "")), ("r", "4.5"),
                         ("cx", Percent(at)), ("cy", Pixels(Top + Down(y, point.Y))));
-                }
-                if (one.Name.Length > 0 && one.Points.Count > 0)
-                {
-                    Point first = one.Points[0];
-                    html.Element("text", one.Name, ("class", one.Kind), ("x", Percent(x.Percent(first.X))), ("dx", "8"),
-                        ("y", Pixels(Top + Down(y, first.Y) - 8)));
                 }
             }
         }
@@ -124,10 +117,10 @@ internal static class Plot
     }
 
     /// <summary>A bar in a table's cell, beside the figure that it shows: nothing to read aloud.</summary>
-    public static HtmlText CellBar(double share, bool marked = false) => Cell(marked ? "cell marked" : "cell", 0, share, share);
+    public static HtmlText CellBar(double share, bool marked = false) => Cell(marked ? "cell second" : "cell", 0, share, share);
 
     /// <summary>An interval in a table's cell, on an axis from 0 to 1.</summary>
-    public static HtmlText CellInterval(double lower, double value, double upper) => Cell("cell interval", lower, upper, value);
+    public static HtmlText CellInterval(double lower, double value, double upper) => Cell("cell within", lower, upper, value);
 
     private static HtmlText Cell(string kind, double from, double to, double value)
     {
@@ -137,7 +130,7 @@ internal static class Plot
             (from, to) = (Math.Clamp(from, 0, 1), Math.Clamp(to, 0, 1));
             html.Empty("line", ("class", "track"), ("x1", "0%"), ("x2", "100%"), ("y1", "6"), ("y2", "6"));
             html.Empty("rect", ("x", Percent(100 * from)), ("width", Percent(Math.Max(0.5, 100 * (to - from)))), ("y", "3"), ("height", "6"));
-            if (kind == "cell interval")
+            if (kind == "cell within")
                 html.Empty("circle", ("cx", Percent(100 * Math.Clamp(value, 0, 1))), ("cy", "6"), ("r", "3.5"));
         }
         return HtmlText.Trusted(html);

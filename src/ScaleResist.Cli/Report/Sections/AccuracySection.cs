@@ -72,27 +72,29 @@ internal sealed class AccuracySection(RunRecord record) : IReportSection
         double[] counts = [.. new[] { probes / 4.0, probes, probes * 4.0, probes * 16.0 }.Where(count => count == probes || count is >= 4 and <= 4096)];
         Series[] series =
         [
-            .. errors.Select(one => new Series(one.Name, one.Kind, [.. counts.Select(count => new Point(count, At(one.Error, count)))],
+            .. errors.Select(one => new Series(one.Kind, [.. counts.Select(count => new Point(count, At(one.Error, count)))],
                 point => point.X == probes)),
         ];
         IEnumerable<double> all = series.SelectMany(one => one.Points).Select(point => point.Y);
         using (html.Open("figure"))
         {
             html.Element("h3", "Error against probes");
+            html.Key(errors.Select(one => (one.Name, one.Kind)));
             Plot.Points(html, new PlotText("accuracy-probes", "Relative standard error against the number of probes",
                     string.Join("; ", errors.Select(one => $"{one.Name}: {Numbers.Value(100 * one.Error, 2)} % at {probes} probes"))
                     + ". It halves with four times the probes."),
-                Axis.Log(counts[0] / 1.25, counts[^1] * 1.25, "Probes, logarithmic"),
-                Axis.Log(all.Min() * 70, all.Max() * 150, "percent"), [.. series.Select(Percent)]);
+                Axis.Log(counts[0] / 1.25, counts[^1] * 1.25, "Probes, logarithmic", counts),
+                Axis.Log(all.Min() * 70, all.Max() * 150), [.. series.Select(Percent)]);
             html.Element("figcaption", $"Relative standard error in percent, logarithmic. Filled: this run, {(long)probes} probes. Open: foreseen "
                 + $"from it by the square root; time grows with the probes.");
             html.Behind("The same in figures", () => html.Table("Relative standard error by number of probes",
-                ["#Probes", .. errors.Select(one => "#" + one.Name), "Which"],
-                counts.Select(count => (IReadOnlyList<HtmlText>)
+                counts,
                 [
-                    $"{Numbers.Count((long)count)}", .. errors.Select(one => (HtmlText)$"{Numbers.Value(100 * At(one.Error, count), 2)} %"),
-                    count == probes ? (HtmlText)$"this run" : $"foreseen",
-                ])));
+                    new("#Probes", count => $"{Numbers.Count((long)count)}"),
+                    .. errors.Select(one =>
+                        new Column<double>("#" + one.Name, count => $"{Numbers.Value(100 * At(one.Error, count), 2)} %")),
+                    new("Which", count => count == probes ? (HtmlText)$"this run" : $"foreseen"),
+                ]));
         }
 
         double At(double error, double count) => error * Math.Sqrt(probes / count);
@@ -112,12 +114,14 @@ internal sealed class AccuracySection(RunRecord record) : IReportSection
                 Axis.Linear(-reach, reach, "Error in percent of the certified value"), rows.Select(row => 100 * row.RelativeError));
             html.Element("figcaption", $"Each dot is a link or pair drawn at random: right of the line the estimate is too high, left of it too low.");
             html.Behind("The same in figures", () => html.Table("Audited links and pairs",
-                ["Link or pair", "#Estimate", "#Certified from", "#To", "#Error"],
-                rows.Select(row => (IReadOnlyList<HtmlText>)
+                rows,
                 [
-                    Phrases.Ends(row.Source, row.Target), $"{Figure.Of(row.Resistance, 5)}", $"{Figure.Of(row.ReferenceLower, 7)}",
-                    $"{Figure.Of(row.ReferenceUpper, 7)}", $"{Figure.Percent(row.RelativeError, 2)}",
-                ])));
+                    new("Link or pair", row => Phrases.Ends(row.Source, row.Target)),
+                    new("#Estimate", row => $"{Figure.Of(row.Resistance, 5)}"),
+                    new("#Certified from", row => $"{Figure.Of(row.ReferenceLower, 7)}"),
+                    new("#To", row => $"{Figure.Of(row.ReferenceUpper, 7)}"),
+                    new("#Error", row => $"{Figure.Percent(row.RelativeError, 2)}"),
+                ]));
         }
     }
 }

@@ -22,40 +22,58 @@ internal sealed class CriticalSection(RunRecord record) : IReportSection
     public void Write(HtmlWriter html)
     {
         if (links!.Bridges.Count > 0)
-        {
-            long most = Math.Max(1, links.Bridges[0].NodesCutOff ?? 1);
-            html.Element("h3", "Bridges that cut off most");
-            html.Table(CaptionOf(links.Bridges.Count, record.Network.Bridges, "bridge"), ["Link", "#Nodes cut off", "Share", "#Resistance"],
-                links.Bridges.Select(link => (IReadOnlyList<HtmlText>)
-                [
-                    Phrases.Ends(link.Source, link.Target), $"{link.NodesCutOff ?? 0}",
-                    Plot.CellBar((link.NodesCutOff ?? 0) / (double)most, marked: true), $"{Figure.Of(link.Resistance.Value, 4)}",
-                ]));
-        }
+            Bridges(html, links.Bridges);
         if (links.Losses.Count > 0)
-        {
-            html.Element("h3", "Losses that raise the Kirchhoff index most");
-            double most = links.Losses.Max(link => link.LossImpact ?? 0);
-            html.Table(CaptionOf(links.Losses.Count, null, "link"), ["Link", "#Rise of the index", "Share", "#Standard error"],
-                links.Losses.Select(link => (IReadOnlyList<HtmlText>)
-                [
-                    Phrases.Ends(link.Source, link.Target), $"{Figure.Of(link.LossImpact!.Value, 4)}",
-                    Plot.CellBar(most > 0 ? Math.Max(0, link.LossImpact.Value / most) : 0),
-                    link.LossImpactSe is > 0 and double error ? (HtmlText)$"{Figure.Of(error, 2)}" : $"exact",
-                ]));
-        }
+            Losses(html, links.Losses);
         if (links.Others.Count > 0)
-        {
-            html.Element("h3", "Links with the fewest ways around");
-            html.Table(CaptionOf(links.Others.Count, record.Network.Links - record.Network.Bridges, "link that is no bridge", "links that are no bridges"),
-                ["Link", "#Spanning probability", "From 0 to 1", "#Resistance", "#Interval"],
-                links.Others.Select(link => (IReadOnlyList<HtmlText>)
-                [
-                    Phrases.Ends(link.Source, link.Target), $"{Figure.Of(link.SpanningProbability, 4)}",
-                    Plot.CellInterval(link.Conductance * link.Resistance.Lower, link.SpanningProbability, link.Conductance * link.Resistance.Upper),
-                    $"{Figure.Of(link.Resistance.Value, 4)}", Phrases.Interval(link.Resistance, 4),
-                ]));
-        }
+            Others(html, links.Others);
+    }
+
+    private void Bridges(HtmlWriter html, IReadOnlyList<LinkRow> rows)
+    {
+        double most = rows.Max(link => link.NodesCutOff ?? 0);
+        html.Element("h3", "Bridges that cut off most");
+        html.Table(CaptionOf(rows.Count, record.Network.Bridges, "bridge"), rows,
+        [
+            new("Link", link => Phrases.Ends(link.Source, link.Target)),
+            new("#Nodes cut off", link => $"{link.NodesCutOff ?? 0}"),
+            new("~Beside the first", link => Plot.CellBar((link.NodesCutOff ?? 0) / Math.Max(1, most), marked: true)),
+            new("#Resistance", link => $"{Figure.Of(link.Resistance.Value, 4)}"),
+        ]);
+    }
+
+    private static void Losses(HtmlWriter html, IReadOnlyList<LinkRow> rows)
+    {
+        double most = rows.Max(link => link.LossImpact ?? 0);
+        html.Element("h3", "Losses that raise the Kirchhoff index most");
+        html.Table(CaptionOf(rows.Count, null, "link"), rows,
+        [
+            new("Link", link => Phrases.Ends(link.Source, link.Target)),
+            new("#Rise of the index", link => $"{Figure.Of(link.LossImpact!.Value, 4)}"),
+            new("~Beside the first", link => Plot.CellBar(most > 0 ? link.LossImpact!.Value / most : 0)),
+            new("#Standard error", link => $"{Figure.Of(link.LossImpactSe ?? 0, 2)}", rows.Any(link => link.LossImpactSe > 0)),
+        ]);
+    }
+
+    // Intervals share an axis from a round number below the lowest to 1.
+    private void Others(HtmlWriter html, IReadOnlyList<LinkRow> rows)
+    {
+        bool estimated = rows.Any(link => link.Resistance.StandardError > 0);
+        double from = Math.Floor(rows.Min(link => link.Conductance * link.Resistance.Lower) * 20) / 20;
+        from = Math.Clamp(from, 0, 0.95);
+        html.Element("h3", "Links with the fewest ways around");
+        html.Table(
+            CaptionOf(rows.Count, record.Network.Links - record.Network.Bridges, "link that is no bridge", "links that are no bridges"), rows,
+        [
+            new("Link", link => Phrases.Ends(link.Source, link.Target)),
+            new("#Spanning probability", link => $"{Figure.Of(link.SpanningProbability, 4)}"),
+            new($"~From {Numbers.Value(from, 2)} to 1", link => Plot.CellInterval(
+                Place(link.Conductance * link.Resistance.Lower), Place(link.SpanningProbability), Place(link.Conductance * link.Resistance.Upper)), estimated),
+            new("#Resistance", link => $"{Figure.Of(link.Resistance.Value, 4)}"),
+            new("#Interval", link => Phrases.Interval(link.Resistance, 4), estimated),
+        ]);
+
+        double Place(double probability) => (probability - from) / (1 - from);
     }
 
     private static string CaptionOf(int shown, long? all, string one, string? many = null) =>

@@ -62,13 +62,15 @@ internal sealed class IndexSection(RunRecord record) : IReportSection
     private void Components(HtmlWriter html)
     {
         long more = record.Network.Components - record.Index.Count;
-        html.Table(more > 0 ? "The largest components" : "All components",
-            ["Component", "#Nodes", "#Links", "#Kirchhoff index", "#Interval", "#Mean resistance"],
-            record.Index.Select(entry => (IReadOnlyList<HtmlText>)
-            [
-                $"{(long)entry.ComponentId}", $"{entry.Nodes}", $"{entry.Links}", $"{entry.KirchhoffIndex.Value}",
-                Phrases.Interval(entry.KirchhoffIndex, 6), $"{entry.MeanResistance}",
-            ]));
+        html.Table(more > 0 ? "The largest components" : "All components", record.Index,
+        [
+            new("Component", entry => $"{(long)entry.ComponentId}"),
+            new("#Nodes", entry => $"{entry.Nodes}"),
+            new("#Links", entry => $"{entry.Links}"),
+            new("#Kirchhoff index", entry => $"{Figure.Of(entry.KirchhoffIndex.Value, entry.KirchhoffIndex.StandardError == 0 ? 9 : 6)}"),
+            new("#Interval", entry => Phrases.Interval(entry.KirchhoffIndex, 6), record.Index.Any(entry => entry.KirchhoffIndex.StandardError > 0)),
+            new("#Mean resistance", entry => $"{entry.MeanResistance}"),
+        ]);
         if (more > 0)
             html.Element("p", $"{more} more component{EstimateReport.Plural(more)} in the table index.", ("class", "beside"));
     }

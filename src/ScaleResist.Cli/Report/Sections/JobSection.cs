@@ -1,5 +1,6 @@
 // What was asked of what data, by which program on which machine: enough to judge the run and to do it again.
 
+using System.Text.Json;
 using System.Text.Json.Nodes;
 using ScaleResist.Cli.Report.Html;
 using ScaleResist.Graphs;
@@ -70,9 +71,12 @@ internal sealed class JobSection(RunRecord record) : IReportSection
         {
             if (value is null || key == "verb")
                 continue;
-            yield return (key.Replace('_', ' '), value.GetValueKind() == System.Text.Json.JsonValueKind.String
-                ? $"{new Label(value.GetValue<string>().Replace(",", ", "))}"
-                : (HtmlText)$"{value.ToJsonString()}");
+            yield return (key.Replace('_', ' '), value.GetValueKind() switch
+            {
+                JsonValueKind.String => $"{new Label(value.GetValue<string>().Replace(",", ", "))}",
+                JsonValueKind.Number when value.ToJsonString().Contains('.') => $"{Figure.Of(value.GetValue<double>(), 4)}",
+                _ => $"{value.ToJsonString()}",
+            });
         }
     }
 

@@ -49,22 +49,18 @@ internal sealed class LinksSection(LinkFindings? links) : IReportSection
         {
             html.Element("h3", title, ("id", $"links-{id}"));
             if (marked)
-            {
-                using (html.Open("p", ("class", "key")))
-                {
-                    html.Element("span", "bridges", ("class", "marked"));
-                    html.Element("span", "other links", ("class", "plain"));
-                }
-            }
+                html.Key([("bridges", "second"), ("other links", "first")]);
             Plot.Histogram(html, new PlotText($"links-{id}-plot", title, $"{axis} from {Numbers.Value(least, 3)} to {Numbers.Value(most, 3)}. The fullest "
                 + $"of {bins.Count} bins, {Numbers.Value(tallest.From, 3)} to {Numbers.Value(tallest.To, 3)}, holds {Numbers.Count(tallest.Count)} of "
-                + $"{Numbers.Count(all)} links."), x, "Links", [.. bins.Select(bin => new Bar(bin.From, bin.To, bin.Count, bin.Marked))]);
+                + $"{Numbers.Count(all)} links."), x, [.. bins.Select(bin => new Bar(bin.From, bin.To, bin.Count, bin.Marked))]);
             html.Element("figcaption", $"From {Figure.Of(least, 4)} to {Figure.Of(most, 4)}; heights count links.");
-            html.Behind("The same in figures", () => html.Table($"{title}, in bins", ["#From", "#To", "#Links", "#Of them bridges"],
-                bins.Where(bin => bin.Count > 0).Select(bin => (IReadOnlyList<HtmlText>)
-                [
-                    $"{Figure.Of(bin.From, 4)}", $"{Figure.Of(bin.To, 4)}", $"{bin.Count}", $"{bin.Marked}",
-                ])));
+            html.Behind("The same in figures", () => html.Table($"{title}, in bins", bins.Where(bin => bin.Count > 0),
+            [
+                new("#From", bin => $"{Figure.Of(bin.From, 4)}"),
+                new("#To", bin => $"{Figure.Of(bin.To, 4)}"),
+                new("#Links", bin => $"{bin.Count}"),
+                new("#Of them bridges", bin => $"{bin.Marked}", marked),
+            ]));
         }
     }
 

@@ -24,28 +24,34 @@ internal sealed class NodesSection(RunRecord record) : IReportSection
         bool few = nodes!.Closest.Count == nodes.Remotest.Count && nodes.Closest[^1].Node == nodes.Remotest[0].Node;
         if (few)
         {
-            Rows(html, "All nodes", nodes.Closest);
+            Rows(html, "All nodes", "By closeness", nodes.Closest);
             return;
         }
-        Rows(html, "The remotest", nodes.Remotest);
-        Rows(html, "The closest", nodes.Closest);
+        string all = Numbers.Count(nodes.Remotest[0].ClosenessRank);
+        Rows(html, "The remotest", $"The last {nodes.Remotest.Count} of {all} by closeness, the last first", nodes.Remotest);
+        Rows(html, "The closest", $"The first {nodes.Closest.Count} of {all} by closeness", nodes.Closest);
     }
 
-    private static void Rows(HtmlWriter html, string title, IReadOnlyList<NodeRow> rows)
+    private static void Rows(HtmlWriter html, string title, string caption, IReadOnlyList<NodeRow> rows)
     {
         html.Element("h3", title);
-        html.Table($"{title}: rank and resistance", ["Node", "#Rank", "#From – to", "#Links", "#Closeness", "#Total resistance", "#Diagonal of L⁺"],
-            rows.Select(row => (IReadOnlyList<HtmlText>)
-            [
-                $"{new Label(row.Node)}", $"{row.ClosenessRank}", Range(row), $"{row.Degree}", $"{Figure.Of(row.Closeness, 4)}",
-                $"{Figure.Of(row.TotalResistance, 5)}",
-                row.ResistanceDiagonalSe > 0
-                    ? (HtmlText)$"{Figure.Of(row.ResistanceDiagonal, 4)} ± {Figure.Of(row.ResistanceDiagonalSe, 2)}"
-                    : $"{Figure.Of(row.ResistanceDiagonal, 4)}",
-            ]));
+        html.Table(caption, rows,
+        [
+            new("Node", row => $"{new Label(row.Node)}"),
+            new("#Rank", row => $"{row.ClosenessRank}"),
+            new("#From – to", Range, rows.Any(row => row.ResistanceDiagonalSe > 0)),
+            new("#Links", row => $"{row.Degree}"),
+            new("#Total resistance", row => $"{Figure.Of(row.TotalResistance, 5)}"),
+            new("#Closeness", row => $"{Figure.Of(row.Closeness, 4)}"),
+            new("#Diagonal of L⁺", Diagonal),
+        ]);
     }
 
+    private static HtmlText Diagonal(NodeRow row) => row.ResistanceDiagonalSe > 0
+        ? (HtmlText)$"{Figure.Of(row.ResistanceDiagonal, 4)} ± {Figure.Of(row.ResistanceDiagonalSe, 2)}"
+        : $"{Figure.Of(row.ResistanceDiagonal, 4)}";
+
     private static HtmlText Range(NodeRow row) => row.RankLower == row.RankUpper
-        ? (HtmlText)$"exact"
+        ? (HtmlText)$"{row.RankLower}"
         : $"{row.RankLower} – {row.RankUpper}";
 }

@@ -20,10 +20,12 @@ internal sealed class PairsSection(PairFindings? pairs) : IReportSection
     {
         long more = pairs!.Rows - pairs.First.Count;
         html.Table(more > 0 ? $"The first {pairs.First.Count} of {Numbers.Count(pairs.Rows)} pairs" : "All pairs",
-            ["Pair", "#Resistance", "#Interval", "Method"],
-            pairs.First.Select(pair => (IReadOnlyList<HtmlText>)
-            [
-                Phrases.Ends(pair.Source, pair.Target), $"{pair.Resistance.Value}", Phrases.Interval(pair.Resistance, 6), $"{pair.Method}",
-            ]));
+            pairs.First,
+        [
+            new("Pair", pair => Phrases.Ends(pair.Source, pair.Target)),
+            new("#Resistance", pair => $"{pair.Resistance.Value}"),
+            new("#Interval", pair => Phrases.Interval(pair.Resistance, 6)),
+            new("Method", pair => $"{pair.Method}"),
+        ]);
     }
 }

@@ -26,10 +26,13 @@ internal sealed class ResourcesSection(RunRecord record) : IReportSection
             ("Peak memory", $"{Figure.Bytes(record.PeakResidentBytes)}"),
             ("Threads", $"{(long)record.Threads}"),
         ]);
-        html.Table("Phases in order", ["Phase", "#Time", "Share", "#Memory", "Growth"], record.Phases.Select(phase => (IReadOnlyList<HtmlText>)
+        html.Table("Phases in order", record.Phases,
         [
-            $"{phase.Name}", $"{Figure.Duration(phase.Seconds)}", Plot.CellBar(phase.Seconds / longest),
-            $"{Figure.Bytes(phase.PeakResidentBytes)}", Plot.CellBar(phase.PeakResidentBytes / largest),
-        ]));
+            new("Phase", phase => $"{phase.Name}"),
+            new("#Time", phase => $"{Figure.Duration(phase.Seconds)}"),
+            new("~Beside the longest", phase => Plot.CellBar(phase.Seconds / longest)),
+            new("#Memory", phase => $"{Figure.Bytes(phase.PeakResidentBytes)}"),
+            new("~Beside the peak", phase => Plot.CellBar(phase.PeakResidentBytes / largest)),
+        ]);
     }
 }
