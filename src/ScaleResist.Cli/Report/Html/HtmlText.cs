@@ -14,7 +14,17 @@ namespace ScaleResist.Cli.Report.Html;
 internal readonly record struct Figure(double Value, string Shown)
 {
     /// <summary>A measured value.</summary>
-    public static Figure Of(double value, int digits) => new(value, Numbers.Value(value, digits));
+    public static Figure Of(double value, int digits) => new(value, Show(value, digits));
+
+    /// <summary>A number as a page shows it: powers of ten are written as such.</summary>
+    public static string Show(double value, int digits)
+    {
+        string text = Numbers.Value(value, digits);
+        int power = double.IsFinite(value) ? text.IndexOf('e') : -1;
+        return power < 0
+            ? text
+            : $"{text[..power]}\u00a0×\u00a010{string.Concat(text[(power + 1)..].Select(digit => digit == '-' ? '⁻' : "⁰¹²³⁴⁵⁶⁷⁸⁹"[digit - '0']))}";
+    }
 
     /// <summary>A share in percent.</summary>
     public static Figure Percent(double share, int digits = 3) => new(share, Numbers.Value(100 * share, digits) + "\u00a0%");

@@ -111,8 +111,8 @@ internal static class Plot
             foreach (double end in (double[])[0, 100])
                 html.Empty("line", ("class", "span"), ("x1", Percent(end)), ("x2", Percent(end)), ("y1", "4"), ("y2", "20"));
             html.Empty("circle", ("class", "second"), ("r", "5"), ("cx", Percent(at)), ("cy", "12"));
-            html.Element("text", $"{Numbers.Value(lower)}", ("x", "0%"), ("y", "38"));
-            html.Element("text", $"{Numbers.Value(upper)}", ("x", "100%"), ("y", "38"), ("text-anchor", "end"));
+            html.Element("text", Figure.Show(lower, 6), ("x", "0%"), ("y", "38"));
+            html.Element("text", Figure.Show(upper, 6), ("x", "100%"), ("y", "38"), ("text-anchor", "end"));
         }
     }
 
@@ -182,7 +182,7 @@ internal static class Plot
     {
         >= 1e6 and < 1e9 => Numbers.Value(value / 1e6, 3) + "M",
         >= 1e4 and < 1e6 => Numbers.Value(value / 1e3, 3) + "k",
-        _ => Numbers.Value(value, 3),
+        _ => Figure.Show(value, 4),
     };
 
     private static string Percent(double value) => value.ToString("0.###", CultureInfo.InvariantCulture) + "%";

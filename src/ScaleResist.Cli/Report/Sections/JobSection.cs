@@ -28,8 +28,9 @@ internal sealed class JobSection(RunRecord record) : IReportSection
         [
             ("Self-loops dropped", $"{record.Cleaning.SelfLoops}"),
             ("Parallel links merged", $"{record.Cleaning.ParallelLinks}"),
-            ("Left", $"{record.Network.Nodes} nodes, {record.Network.Links} links, {(long)record.Network.Components} component"
-                + $"{EstimateReport.Plural(record.Network.Components)}"),
+            ("Left", $"{record.Network.Nodes} node{EstimateReport.Plural(record.Network.Nodes)}, "
+                + $"{record.Network.Links} link{EstimateReport.Plural(record.Network.Links)}, "
+                + $"{(long)record.Network.Components} component{EstimateReport.Plural(record.Network.Components)}"),
         ]);
         html.Element("h3", "Plan");
         html.Facts(Plan());

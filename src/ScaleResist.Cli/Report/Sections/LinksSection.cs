@@ -72,7 +72,7 @@ internal sealed class LinksSection(LinkFindings? links) : IReportSection
         {
             string how = method switch
             {
-                "bridge" => "bridges, exact",
+                "bridge" => $"bridge{EstimateReport.Plural(count)}, exact",
                 "exact" => "exact",
                 "probe" => "estimated by probes",
                 _ => method,
