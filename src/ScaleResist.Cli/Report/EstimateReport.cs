@@ -1,7 +1,6 @@
 // report.html of an estimate: which sections, in which order, under which masthead. Invariant: a function of the run's record, so that
 // everything it shows is in run.json or the tables.
 
-using ScaleResist.Cli.Report.Findings;
 using ScaleResist.Cli.Report.Html;
 using ScaleResist.Cli.Report.Sections;
 

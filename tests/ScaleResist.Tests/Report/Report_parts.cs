@@ -3,10 +3,7 @@
 using System.Xml.Linq;
 using ScaleResist.Cli.Report.Findings;
 using ScaleResist.Cli.Report.Html;
-using ScaleResist.Runs;
 using ScaleResist.Tests.Cli;
-using ScaleResist.Tests.EndToEnd;
-using ScaleResist.Tests.Lake;
 
 namespace ScaleResist.Tests.Report;
 
@@ -35,10 +32,12 @@ public sealed class Report_parts
         Assert.EndsWith("… (10,000 characters)", bdi.Attribute("title")!.Value);
     }
 
-    [Theory]
-    [InlineData("a\0b\u0001\u001b\u0085c", "a\ufffdb\ufffd\ufffd\ufffdc")]
-    [InlineData("\ud83dx", "\ufffdx")]
-    public void What_HTML_forbids_becomes_a_replacement_character(string label, string shown) => Assert.Equal(shown, Element(label).Value);
+    [Fact]
+    public void What_HTML_forbids_becomes_a_replacement_character()
+    {
+        Assert.Equal("a\ufffdb\ufffd\ufffd\ufffdc", Element("a\0b\u0001\u001b\u0085c").Value);
+        Assert.Equal("\ufffdx\ufffd", Element("\ud83dx\udd0c").Value);
+    }
 
     [Fact]
     public void A_pair_of_surrogates_is_never_cut_in_two()

@@ -1,6 +1,5 @@
 // Time and memory, phase by phase. Invariant: the only section, with the job's dates, that differs between two runs of one command.
 
-using ScaleResist.Cli.Progress;
 using ScaleResist.Cli.Report.Html;
 
 namespace ScaleResist.Cli.Report.Sections;
