@@ -23,7 +23,10 @@ for (const report of reports) {
   const url = pathToFileURL(path.resolve(report)).href;
   for (const view of views) {
     const name = `${path.basename(path.dirname(report))} ${view.width} ${view.scheme} ${view.media}`;
-    const fault = text => faults.push(`${name}: ${text}`);
+    const fault = text => {
+      faults.push(text);
+      console.log(`${name}: ${text}`);
+    };
     const page = await browser.newPage({ viewport: { width: view.width, height: 900 }, colorScheme: view.scheme });
     page.on('console', message => fault(`console: ${message.text()}`));
     page.on('pageerror', error => fault(`error: ${error.message}`));
@@ -69,6 +72,4 @@ for (const report of reports) {
   }
 }
 await browser.close();
-for (const fault of faults)
-  console.log(fault);
 process.exit(faults.length > 0 ? 1 : 0);
