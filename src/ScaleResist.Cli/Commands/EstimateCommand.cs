@@ -6,6 +6,7 @@ using System.Text.Json.Nodes;
 using ScaleResist.Cli.Lake;
 using ScaleResist.Cli.Progress;
 using ScaleResist.Cli.Report;
+using ScaleResist.Cli.Report.Findings;
 using ScaleResist.Graphs;
 using ScaleResist.Runs;
 
@@ -30,6 +31,7 @@ internal sealed class EstimateCommand(CliHost host)
             return finished.Answer(interrupted);
 
         ParquetTableSink? sink = null;
+        FindingsSink? findings = null;
         EstimateOutcome? outcome = null;
         PhaseClock? clock = null;
         try
@@ -37,7 +39,7 @@ internal sealed class EstimateCommand(CliHost host)
             ProgressView.Follow(host, view =>
             {
                 clock = new PhaseClock(view, host.Time);
-                outcome = host.Engine.Run(request, facts => sink = OpenSink(staged.Path, request, facts), clock, interrupted);
+                outcome = host.Engine.Run(request, Open, clock, interrupted);
             });
         }
         finally
@@ -47,11 +49,14 @@ internal sealed class EstimateCommand(CliHost host)
         }
         interrupted.ThrowIfCancellationRequested();
         RunRecord record = RunRecord.Of(request, plan, outcome!, sink?.CompleteRows() ?? new Dictionary<string, long>(),
-            clock!.Phases, started, host.Time.GetUtcNow());
+            clock!.Phases, findings?.Findings ?? RunFindings.None, started, host.Time.GetUtcNow());
         string summary = string.Join(Environment.NewLine, SummaryText.Of(record, folder.Published));
+        staged.Write(RunFolder.ReportName, EstimateReport.Render(record));
         staged.Publish(record.ToJson());
         host.Out.WriteLine(summary);
         return ExitCode.Done;
+
+        FindingsSink Open(InputFacts facts) => findings = new FindingsSink(sink = OpenSink(staged.Path, request, facts));
     }
 
     private static ParquetTableSink OpenSink(string staging, EstimateRequest request, InputFacts facts) =>

@@ -11,6 +11,9 @@ internal sealed partial class RunFolder
     /// <summary>Name of the run's record.</summary>
     public const string RecordName = "run.json";
 
+    /// <summary>Name of the report.</summary>
+    public const string ReportName = "report.html";
+
     /// <summary>Name of the mark of a finished run.</summary>
     public const string SuccessName = "_SUCCESS";
 
@@ -143,6 +146,19 @@ internal sealed class StagedRun : IDisposable
 
     /// <summary>The folder to write into.</summary>
     public string Path => folder.Staging;
+
+    /// <summary>Writes a file beside the tables, and flushes it.</summary>
+    public void Write(string name, ReadOnlySpan<byte> content)
+    {
+        try
+        {
+            Durable.WriteNew(System.IO.Path.Combine(Path, name), content);
+        }
+        catch (Exception error) when (LakeException.IsFileSystemError(error))
+        {
+            throw LakeException.From(Path, error);
+        }
+    }
 
     /// <summary>Makes the run visible: record and mark, flush, one rename.</summary>
     /// <param name="record">The content of run.json.</param>

@@ -1,19 +1,26 @@
-// Measures the phases of a run on their way to whatever shows them.
+// Measures the phases of a run, time and memory, on their way to whatever shows them.
 
+using ScaleResist.Cli.Report;
 using ScaleResist.Runs;
 
 namespace ScaleResist.Cli.Progress;
 
+/// <summary>A phase and what it took.</summary>
+/// <param name="Name">The phase.</param>
+/// <param name="Seconds">Wall-clock seconds.</param>
+/// <param name="PeakResidentBytes">The most memory resident by its end.</param>
+internal sealed record PhaseUse(string Name, double Seconds, long PeakResidentBytes);
+
 /// <summary>Records the wall time of each phase; a phase that comes back adds up.</summary>
 internal sealed class PhaseClock(IRunObserver view, TimeProvider time) : IRunObserver
 {
-    private readonly List<PhaseTime> phases = [];
+    private readonly List<PhaseUse> phases = [];
     private readonly Lock gate = new();
     private string? current;
     private long since;
 
     /// <summary>The phases so far, in order of first appearance.</summary>
-    public IReadOnlyList<PhaseTime> Phases
+    public IReadOnlyList<PhaseUse> Phases
     {
         get
         {
@@ -47,12 +54,13 @@ internal sealed class PhaseClock(IRunObserver view, TimeProvider time) : IRunObs
         {
             if (current is null)
                 return;
+            long peak = Machine.PeakResidentBytes();
             double seconds = time.GetElapsedTime(since).TotalSeconds;
             int known = phases.FindIndex(p => p.Name == current);
             if (known < 0)
-                phases.Add(new PhaseTime(current, seconds));
+                phases.Add(new PhaseUse(current, seconds, peak));
             else
-                phases[known] = phases[known] with { Seconds = phases[known].Seconds + seconds };
+                phases[known] = phases[known] with { Seconds = phases[known].Seconds + seconds, PeakResidentBytes = peak };
             current = null;
         }
     }

@@ -6,6 +6,8 @@ using System.Text.Json;
 using System.Text.Json.Nodes;
 using System.Text.Json.Serialization;
 using ScaleResist.Cli.Commands;
+using ScaleResist.Cli.Progress;
+using ScaleResist.Cli.Report.Findings;
 using ScaleResist.Estimating;
 using ScaleResist.Graphs;
 using ScaleResist.Runs;
@@ -52,7 +54,7 @@ internal sealed record RunRecord
 
     public required Machine Machine { get; init; }
 
-    public required IReadOnlyList<PhaseTime> Phases { get; init; }
+    public required IReadOnlyList<PhaseUse> Phases { get; init; }
 
     public required ExactFacts? Exact { get; init; }
 
@@ -79,12 +81,19 @@ internal sealed record RunRecord
     /// <summary>Rows by table.</summary>
     public required IReadOnlyDictionary<string, long> Rows { get; init; }
 
+    /// <summary>What the tables say at a glance: what report.html shows of them.</summary>
+    public required RunFindings Findings { get; init; }
+
     public required long PeakResidentBytes { get; init; }
+
+    /// <summary>The plan's confidence.</summary>
+    [JsonIgnore]
+    public double Confidence => Plan["confidence"]?.GetValue<double>() ?? double.NaN;
 
     /// <summary>Collects the record of a run that has just written its last row.</summary>
     public static RunRecord Of(EstimateRequest request, JsonObject plan, EstimateOutcome outcome,
-        IReadOnlyDictionary<string, long> rows, IReadOnlyList<PhaseTime> phases, DateTimeOffset started,
-        DateTimeOffset finished) => new()
+        IReadOnlyDictionary<string, long> rows, IReadOnlyList<PhaseUse> phases, RunFindings findings,
+        DateTimeOffset started, DateTimeOffset finished) => new()
         {
             RunId = request.RunId,
             ExitStatus = ExitCode.Done,
@@ -108,6 +117,7 @@ internal sealed record RunRecord
             Index = [.. outcome.Summary.Index.Take(MostIndexRows)],
             CriticalLinks = outcome.Summary.CriticalLinks,
             Rows = rows,
+            Findings = findings,
             PeakResidentBytes = Machine.PeakResidentBytes(),
         };
 

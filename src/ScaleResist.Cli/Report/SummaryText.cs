@@ -1,5 +1,7 @@
 // What a person reads after a run, in at most 25 lines: what was read, what came out and how far to trust it, where it is.
 
+using ScaleResist.Cli.Lake;
+using ScaleResist.Cli.Progress;
 using ScaleResist.Estimating;
 using ScaleResist.Graphs;
 using ScaleResist.Runs;
@@ -29,11 +31,10 @@ internal static class SummaryText
         if (largest is not null)
         {
             Estimate index = largest.KirchhoffIndex;
-            double confidence = record.Plan["confidence"]?.GetValue<double>() ?? double.NaN;
             yield return Entry("Kirchhoff",
                 (index.StandardError == 0
                     ? $"index {Numbers.Value(index.Value, 12)}, exact"
-                    : $"index {Numbers.Value(index.Value)}, {Numbers.Value(100 * confidence, 4)} % interval "
+                    : $"index {Numbers.Value(index.Value)}, {Numbers.Value(100 * record.Confidence, 4)} % interval "
                         + $"{Numbers.Value(index.Lower)} to {Numbers.Value(index.Upper)}")
                 + (record.Network.Components > 1 ? " (largest component)" : "")
                 + $"; mean resistance {Numbers.Value(largest.MeanResistance, 5)}");
@@ -90,6 +91,7 @@ internal static class SummaryText
         yield return Entry("tables", published + ": "
             + string.Join(", ", record.Rows.Select(t => $"{t.Key} {Numbers.Count(t.Value)}")));
         yield return Entry("query", Query(published, record.Rows.Keys));
+        yield return Entry("report", Path.Combine(published, RunFolder.ReportName));
         if (record.Audit?.Warning is string warning)
             yield return Entry("warning", $"{warning}; do not trust the error bars of this run, and report it");
     }
@@ -152,7 +154,7 @@ internal static class SummaryText
     }
 
     // The tables' writing in one sum; run.json has them one by one.
-    private static IEnumerable<PhaseTime> ShortPhases(IEnumerable<PhaseTime> phases) => phases
+    private static IEnumerable<PhaseTime> ShortPhases(IEnumerable<PhaseUse> phases) => phases
         .GroupBy(p => p.Name.StartsWith("writing ", StringComparison.Ordinal) ? "writing" : p.Name)
         .Select(g => new PhaseTime(g.Key, g.Sum(p => p.Seconds)));
 

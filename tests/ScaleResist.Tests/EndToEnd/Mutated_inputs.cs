@@ -56,7 +56,7 @@ public sealed class Mutated_inputs : IDisposable
             Assert.Equal(["run=a"], Directory.GetFileSystemEntries(lake).Select(Path.GetFileName));
             string[] entries = Directory.GetFileSystemEntries(Path.Combine(lake, "run=a"));
             // An audit is there where anything but bridges was probed.
-            Assert.Equal(["_SUCCESS", "components", "index", "links", "nodes", "run.json"],
+            Assert.Equal(["_SUCCESS", "components", "index", "links", "nodes", "report.html", "run.json"],
                 entries.Select(Path.GetFileName).Where(name => name != "audit").Order(StringComparer.Ordinal));
         }
         else

@@ -24,7 +24,7 @@ public sealed class Wanted_tables
             ["--run-id", "a", "--weights", "conductance", "--probes", "16", "--want", want, .. pairs]);
         string[] tables = [.. want.Split(','), .. want.Contains("links") || want == "pairs" ? ["audit"] : Array.Empty<string>()];
         Assert.Equal(tables.Order(), Directory.GetDirectories(place.Run("a")).Select(Path.GetFileName).Order());
-        Assert.Equal(["_SUCCESS", "run.json"], Directory.GetFiles(place.Run("a")).Select(Path.GetFileName).Order());
+        Assert.Equal(["_SUCCESS", "report.html", "run.json"], Directory.GetFiles(place.Run("a")).Select(Path.GetFileName).Order());
         Assert.Equal(["run=a"], Directory.GetFileSystemEntries(place.Lake).Select(Path.GetFileName));
 
         using JsonDocument json = JsonDocument.Parse(File.ReadAllBytes(Path.Combine(place.Run("a"), "run.json")));
