@@ -45,7 +45,7 @@ internal sealed class ImpactCommand(CliHost host)
         }
         interrupted.ThrowIfCancellationRequested();
         ImpactRecord record = ImpactRecord.Of(request, plan, outcome!, sink?.CompleteRows() ?? new Dictionary<string, long>(),
-            clock!.Phases, started, host.Time.GetUtcNow());
+            [.. clock!.Phases.Select(phase => new PhaseTime(phase.Name, phase.Seconds))], started, host.Time.GetUtcNow());
         string summary = string.Join(Environment.NewLine, ImpactText.Of(record, folder.Published));
         staged.Publish(record.ToJson());
         host.Out.WriteLine(summary);

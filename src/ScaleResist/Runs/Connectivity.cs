@@ -27,16 +27,23 @@ internal static class Connectivity
         return WeakestCut.Of(network, network.Components[0], solve.Solve, IsSmall(network) ? ManySolves : FewSolves, plan.Seed, plan.Threads);
     }
 
-    /// <summary>By solves; null where they would cost too much beside the probes.</summary>
+    /// <summary>By solves; null where they would cost too much beside the probes, or where even doubles do not reach what they ask for.</summary>
     public static ConnectivityFacts? BySolves(Network network, LaplacianSolver solver, int probes, EstimatePlan plan, CancellationToken cancel)
     {
         if (network.Components[0].Nodes < 2 || (!IsSmall(network) && probes < ManyProbes))
             return null;
         double tolerance = IsSmall(network) ? Tolerance : RoughTolerance;
         using SolverWorkspace<double> workspace = solver.NewWorkspace<double>();
-        return WeakestCut.Of(
-            network, network.Components[0], (b, x) => solver.Solve(b, x, 8, tolerance, workspace, cancel),
-            IsSmall(network) ? ManySolves : FewSolves, plan.Seed, plan.Threads);
+        try
+        {
+            return WeakestCut.Of(
+                network, network.Components[0], (b, x) => solver.Solve(b, x, 8, tolerance, workspace, cancel),
+                IsSmall(network) ? ManySolves : FewSolves, plan.Seed, plan.Threads);
+        }
+        catch (SolveException)
+        {
+            return null; // the probes are rougher and stand; the column says that this one number was not found
+        }
     }
 
     private static bool IsSmall(Network network) => network.LinkCount <= SmallLinks;

@@ -185,7 +185,7 @@ public static class EstimateRun
         EstimatePlan Left(Want want)
         {
             EstimatePlan rest = plan with { Want = want, TimeBudget = plan.TimeBudget - Stopwatch.GetElapsedTime(begin) };
-            return rest with { PanelsAtOnce = RunCost.PanelsAtOnce(network, rest, phases.Times.Last(phase => phase.Name == "preparing").Seconds) };
+            return rest with { PanelsAtOnce = RunCost.PanelsAtOnce(network, rest, phases.Times.LastOrDefault(phase => phase.Name == "preparing")?.Seconds ?? 0) };
         }
 
         LinkRows WalkLinks()
