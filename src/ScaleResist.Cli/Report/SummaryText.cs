@@ -79,8 +79,8 @@ internal static class SummaryText
         {
             yield return Entry("audit", $"{Numbers.Many(audit.Compared, "random link")} and pairs solved: relative error "
                 + $"{Numbers.Value(audit.MedianError!.Value, 2)} (median), {Numbers.Value(audit.Percentile95Error!.Value, 2)} (95 %), "
-                + $"{Numbers.Value(audit.WorstError!.Value, 2)} (worst); {audit.Held} of {Numbers.Many(audit.Intervals, "interval")} held; "
-                + $"solves off by {Numbers.Value(audit.SolverError, 2)} where {Numbers.Value(audit.SolverErrorAllowed, 2)} is allowed");
+                + $"{Numbers.Value(audit.WorstError!.Value, 2)} (worst); {audit.Held} of {Numbers.Many(audit.Intervals, "interval")} held"
+                + (audit.SolverError is double off ? $"; solves off by {Numbers.Value(off, 2)} where {Numbers.Value(audit.SolverErrorAllowed, 2)} is allowed" : ""));
         }
         if (record is { Audit: null, Probing.StoppedBy: "time" } && record.Rows.Keys.Intersect(["links", "pairs"]).Any())
             yield return Entry("audit", "none: the time budget left no time for it");

@@ -177,8 +177,8 @@ public sealed record AuditFacts
     /// <summary>Links and pairs further from the truth than six standard errors.</summary>
     public required int FarOff { get; init; }
 
-    /// <summary>The largest error of the first panel's columns, relative to a mode's standard deviation, as a second solve found it.</summary>
-    public required double SolverError { get; init; }
+    /// <summary>The largest error of the first panel's columns, relative to a mode's standard deviation, as a second solve found it; null without one.</summary>
+    public required double? SolverError { get; init; }
 
     /// <summary>What it may be: a twentieth of the relative statistical error.</summary>
     public required double SolverErrorAllowed { get; init; }

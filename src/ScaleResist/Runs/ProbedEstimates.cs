@@ -22,8 +22,8 @@ internal sealed class ProbedEstimates
 
     public Coordinates? Coordinates { get; init; }
 
-    /// <summary>The mode error of the first panel, as a check by a second solve found it.</summary>
-    public double SolverError { get; private set; }
+    /// <summary>The mode error of the first panel, as a check by a second solve found it; null where a time budget left no time for one.</summary>
+    public double? SolverError { get; private set; }
 
     /// <summary>How many probes there were, and why not more.</summary>
     public ProbingFacts? Facts { get; private set; }
@@ -82,21 +82,12 @@ internal sealed class ProbedEstimates
             {
                 int count = Math.Min(slots.Length, panels - first);
                 long batch = Stopwatch.GetTimestamp();
-                List<Action> work = [];
                 for (int i = 0; i < count; i++)
                 {
-                    (Slot slot, int number) = (slots[i], first + i);
-                    slot.Panel.Draw(number, plan.MostProbes, plan.Threads);
-                    slot.Signs?.Draw(number, plan.MostProbes, plan.Threads);
-                    work.Add(() =>
-                    {
-                        double error = plan.ModeErrorOf(number);
-                        slot.Panel.Solve(solver, error, slot.Workspace, cancel);
-                        if (slot.Signs is NodeSignPanel signs)
-                            solver.SolveProbes(signs.B, signs.X, signs.Probes, error, slot.Workspace, cancel);
-                    });
+                    slots[i].Panel.Draw(first + i, plan.MostProbes, plan.Threads);
+                    slots[i].Signs?.Draw(first + i, plan.MostProbes, plan.Threads);
                 }
-                Together(work, plan.Threads);
+                SolveBatch(count);
                 double solved = Stopwatch.GetElapsedTime(batch).TotalSeconds;
                 double deflating = first == 0 ? sums.AddFirst(network, slots[0], plan, solver, () => dial.MayDeflate(solved), cancel) : 0;
                 if (sums.Coordinates is not null)
@@ -135,15 +126,19 @@ internal sealed class ProbedEstimates
                 slot?.Dispose();
         }
         return sums;
+
+        void SolveBatch(int count) => Together(
+            [.. slots.Take(count).Select<Slot, Action>(slot => () => slot.Solve(solver, plan.ModeErrorOf(slot.Panel.Number), cancel))], plan.Threads);
     }
 
     // The first panel's check and its nodes; both, and a deflation, are once for all panels: the seconds they took are not a batch's.
     private double AddFirst(
-        Network network, Slot slot, EstimatePlan plan, LaplacianSolver solver, Func<bool> mayDeflate, CancellationToken cancel)
+        Network network, Slot slot, EstimatePlan plan, LaplacianSolver solver, Func<bool> mayTakeTime, CancellationToken cancel)
     {
         long begin = Stopwatch.GetTimestamp();
-        SolverError = SolveCheck.ModeError(network, slot.Panel, solver, slot.Workspace, plan.Threads, cancel);
-        Nodes?.AddFirst(slot.Panel, plan.ForeseenProbes, solver, slot.Workspace, plan.Seed, plan.Threads, cancel, mayDeflate);
+        if (mayTakeTime())
+            SolverError = SolveCheck.ModeError(network, slot.Panel, solver, slot.Workspace, plan.Threads, cancel);
+        Nodes?.AddFirst(slot.Panel, plan.ForeseenProbes, solver, slot.Workspace, plan.Seed, plan.Threads, cancel, mayTakeTime);
         return Stopwatch.GetElapsedTime(begin).TotalSeconds;
     }
 
@@ -173,6 +168,13 @@ internal sealed class ProbedEstimates
 
     private sealed record Slot(ProbePanel Panel, NodeSignPanel? Signs, SolverWorkspace<float> Workspace) : IDisposable
     {
+        public void Solve(LaplacianSolver solver, double error, CancellationToken cancel)
+        {
+            Panel.Solve(solver, error, Workspace, cancel);
+            if (Signs is not null)
+                solver.SolveProbes(Signs.B, Signs.X, Signs.Probes, error, Workspace, cancel);
+        }
+
         public void Dispose()
         {
             Panel.Dispose();
