@@ -14,6 +14,7 @@ internal static class RunCost
     private const double SecondsPerNodeRow = 1.6e-6;
     private const double SecondsPerCoordinate = 1e-8;
     private const double SecondsOfStepsPerArc = 1.2e-6; // around hubs; meshes a fraction
+    private const double BytesForStepsUnlessSaid = 1.5e9; // two steps around fifty million links
     private const double ShareOfTimeForSteps = 0.1;
     private const double SecondsToEnd = 0.3;
     private const double Margin = 1.2;
@@ -70,13 +71,13 @@ internal static class RunCost
     }
 
     /// <summary>
-    /// Bytes that several steps around each link may take: what --memory-budget leaves beside one step, and none where preparing them would take
+    /// Bytes that several steps around each link may take: what --memory-budget leaves beside one step, 1.5 GB without it, and none where preparing them would take
     /// more than a tenth of a time budget. Only these options decide, not the machine, so that results do not depend on where a plan runs.
     /// </summary>
     public static double BytesForSteps(Network network, EstimatePlan plan) =>
         plan.TimeBudget is TimeSpan time && 2.0 * network.LinkCount * SecondsOfStepsPerArc > ShareOfTimeForSteps * time.TotalSeconds ? 0
         : plan.MemoryBudget is long budget
-        ? budget - ProbedBytes(network, plan, plan.ForeseenProbes) - (WalkPanelCount * 64.0 * network.NodeCount) : double.PositiveInfinity;
+        ? budget - ProbedBytes(network, plan, plan.ForeseenProbes) - (WalkPanelCount * 64.0 * network.NodeCount) : BytesForStepsUnlessSaid;
 
     /// <summary>Refuses the probed route where it is foreseen to need more memory than the budget.</summary>
     /// <exception cref="BudgetException">It does not fit.</exception>
