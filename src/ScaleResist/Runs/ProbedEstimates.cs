@@ -100,10 +100,12 @@ internal sealed class ProbedEstimates
                     added += slots[i].Panel.Probes;
                     dial.AfterPanel();
                 }
-                if (first == 0 && plan.Probes is not null)
+                // The first batch compiles: where there is another, that one foretells the rest.
+                if (plan.Probes is not null && first == (panels > slots.Length ? slots.Length : 0))
                 {
-                    RunCost.CheckTime(network, plan, (panels + slots.Length - 1) / slots.Length,
-                        Stopwatch.GetElapsedTime(begin).TotalSeconds - deflating, deflating);
+                    double seconds = Stopwatch.GetElapsedTime(batch).TotalSeconds - deflating;
+                    double once = Stopwatch.GetElapsedTime(begin).TotalSeconds - (((first / slots.Length) + 1) * seconds);
+                    RunCost.CheckTime(network, plan, (panels + slots.Length - 1) / slots.Length, seconds, once);
                 }
                 dial.AfterBatch(Math.Min(plan.MostProbes, added + (slots.Length * ProbePanel.Width)), Stopwatch.GetElapsedTime(batch).TotalSeconds - deflating);
                 observer.Report(added);

@@ -92,12 +92,12 @@ internal static class RunCost
         }
     }
 
-    /// <summary>Refuses a named number of probes where, after the first batch of panels, the rest is foreseen to take longer than the budget.</summary>
+    /// <summary>Refuses a named number of probes where, after the first batches of panels, the rest is foreseen to take longer than the budget.</summary>
     /// <param name="network">The network.</param>
     /// <param name="plan">The run's.</param>
     /// <param name="batches">Of panels, in all.</param>
     /// <param name="batch">Seconds of one.</param>
-    /// <param name="once">Seconds spent once beside them.</param>
+    /// <param name="once">Seconds spent once beside them, on compiling and deflating.</param>
     /// <exception cref="BudgetException">It does not fit.</exception>
     public static void CheckTime(Network network, EstimatePlan plan, int batches, double batch, double once)
     {
