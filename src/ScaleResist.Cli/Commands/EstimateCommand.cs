@@ -60,15 +60,15 @@ internal sealed class EstimateCommand(CliHost host)
     }
 
     private static ParquetTableSink OpenSink(string staging, EstimateRequest request, InputFacts facts) =>
-        new(staging, Provenance(request.RunId, facts, request.Plan), request.Plan.Threads);
+        new(staging, Provenance(request.RunId, facts, request.Plan.Seed), request.Plan.Threads);
 
     /// <summary>What every part of a run's tables says of its rows.</summary>
-    internal static Dictionary<string, string> Provenance(string runId, InputFacts facts, EstimatePlan plan) => new()
+    internal static Dictionary<string, string> Provenance(string runId, InputFacts facts, ulong seed) => new()
     {
         ["scaleresist.schema_version"] = Tables.SchemaVersion.ToString(CultureInfo.InvariantCulture),
         ["scaleresist.program_version"] = ProgramVersion.Number,
         ["scaleresist.run_id"] = runId,
         ["scaleresist.input_sha256"] = facts.Sha256,
-        ["scaleresist.seed"] = plan.Seed.ToString(CultureInfo.InvariantCulture),
+        ["scaleresist.seed"] = seed.ToString(CultureInfo.InvariantCulture),
     };
 }

@@ -1,6 +1,5 @@
 // The verb `impact`: claim the run, compute into staging, publish, tell, as `estimate` does.
 
-using System.Globalization;
 using System.Text.Json.Nodes;
 using ScaleResist.Cli.Lake;
 using ScaleResist.Cli.Progress;
@@ -79,14 +78,6 @@ internal sealed class ImpactCommand(CliHost host)
         return plan;
     }
 
-    private static ParquetTableSink OpenSink(string staging, ImpactRequest request, InputFacts facts) => new(staging,
-        new Dictionary<string, string>
-        {
-            ["scaleresist.schema_version"] = Tables.SchemaVersion.ToString(CultureInfo.InvariantCulture),
-            ["scaleresist.program_version"] = ProgramVersion.Number,
-            ["scaleresist.run_id"] = request.RunId,
-            ["scaleresist.input_sha256"] = facts.Sha256,
-            ["scaleresist.seed"] = request.Plan.Seed.ToString(CultureInfo.InvariantCulture),
-        },
-        request.Plan.Threads);
+    private static ParquetTableSink OpenSink(string staging, ImpactRequest request, InputFacts facts) =>
+        new(staging, EstimateCommand.Provenance(request.RunId, facts, request.Plan.Seed), request.Plan.Threads);
 }

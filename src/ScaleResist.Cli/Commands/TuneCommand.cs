@@ -39,7 +39,7 @@ internal sealed class TuneCommand(CliHost host)
         using (Scratch scratch = new(Path.Combine(staged.Path, "measured")))
             outcome = Measure(request, scratch, out phases, interrupted);
         interrupted.ThrowIfCancellationRequested();
-        ParquetTableSink sink = new(staged.Path, EstimateCommand.Provenance(folder.RunId, outcome.Network.Input, request.Plan), request.Plan.Threads);
+        ParquetTableSink sink = new(staged.Path, EstimateCommand.Provenance(folder.RunId, outcome.Network.Input, request.Plan.Seed), request.Plan.Threads);
         ITableWriter writer = sink.Open(Tables.Frontier);
         writer.Write(FrontierPoint.ToBatch(outcome.Points, request.CommandOf));
         writer.Complete();

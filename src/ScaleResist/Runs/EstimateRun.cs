@@ -41,7 +41,7 @@ public static class EstimateRun
         if (plan.Probes is not null && plan.TargetError is not null)
             throw new ArgumentException("A plan has a number of probes or a target error, not both.", nameof(plan));
         long begin = Stopwatch.GetTimestamp();
-        Phases phases = new(observer);
+        RunPhases phases = new(observer);
         Dictionary<string, long> rows = [];
         ColumnKind label = LabelColumns.KindOf(network.Labels);
         Blocks blocks = phases.Do("finding bridges", network.LinkCount, "links", () => Blocks.Find(network));
@@ -209,20 +209,5 @@ public static class EstimateRun
                 write(writer);
                 return writer.Complete();
             });
-    }
-
-    private sealed class Phases(IRunObserver observer)
-    {
-        public List<PhaseTime> Times { get; } = [];
-
-        public T Do<T>(string name, double? total, string unit, Func<T> work)
-        {
-            observer.Begin(name, total, unit);
-            long start = Stopwatch.GetTimestamp();
-            T result = work();
-            Times.Add(new PhaseTime(name, Stopwatch.GetElapsedTime(start).TotalSeconds));
-            observer.End();
-            return result;
-        }
     }
 }

@@ -112,19 +112,3 @@ internal sealed class ImpactRoute : IDisposable
         $"the run needs about {bytes / 1e9:0.0} GB, and --memory-budget is {plan.MemoryBudget / 1e9:0.0} GB; use fewer --threads, "
         + $"cases of fewer links or a larger budget"));
 }
-
-/// <summary>Times the phases of a run and tells an observer.</summary>
-internal sealed class RunPhases(IRunObserver observer)
-{
-    public List<PhaseTime> Times { get; } = [];
-
-    public T Do<T>(string name, double? total, string unit, Func<T> work)
-    {
-        observer.Begin(name, total, unit);
-        long start = System.Diagnostics.Stopwatch.GetTimestamp();
-        T result = work();
-        Times.Add(new PhaseTime(name, System.Diagnostics.Stopwatch.GetElapsedTime(start).TotalSeconds));
-        observer.End();
-        return result;
-    }
-}
