@@ -51,7 +51,7 @@ internal sealed class DistancesCommand(CliHost host)
         }
         interrupted.ThrowIfCancellationRequested();
         DistancesRecord record = DistancesRecord.Of(request, plan, outcome!.Value.Network, outcome.Value.Summary, sink!.CompleteRows(),
-            [.. clock!.Phases.Select(phase => new PhaseTime(phase.Name, phase.Seconds))], started, host.Time.GetUtcNow());
+            clock!.Times, started, host.Time.GetUtcNow());
         string summary = string.Join(Environment.NewLine, DistancesText.Of(record, folder.Published));
         staged.Publish(record.ToJson());
         host.Out.WriteLine(summary);

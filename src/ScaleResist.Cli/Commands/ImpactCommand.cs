@@ -5,7 +5,6 @@ using ScaleResist.Cli.Lake;
 using ScaleResist.Cli.Progress;
 using ScaleResist.Cli.Report;
 using ScaleResist.Graphs;
-using ScaleResist.Runs;
 
 namespace ScaleResist.Cli.Commands;
 
@@ -44,7 +43,7 @@ internal sealed class ImpactCommand(CliHost host)
         }
         interrupted.ThrowIfCancellationRequested();
         ImpactRecord record = ImpactRecord.Of(request, plan, outcome!, sink?.CompleteRows() ?? new Dictionary<string, long>(),
-            [.. clock!.Phases.Select(phase => new PhaseTime(phase.Name, phase.Seconds))], started, host.Time.GetUtcNow());
+            clock!.Times, started, host.Time.GetUtcNow());
         string summary = string.Join(Environment.NewLine, ImpactText.Of(record, folder.Published));
         staged.Publish(record.ToJson());
         host.Out.WriteLine(summary);

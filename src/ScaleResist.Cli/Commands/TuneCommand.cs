@@ -58,7 +58,7 @@ internal sealed class TuneCommand(CliHost host)
             clock = new PhaseClock(view, host.Time);
             outcome = host.Engine.Tune(request, host.SecondsBefore(), () => scratch.Open(request.Plan.Threads), clock, interrupted);
         });
-        phases = [.. clock!.Phases.Select(phase => new PhaseTime(phase.Name, phase.Seconds))];
+        phases = clock!.Times;
         return outcome!;
     }
 

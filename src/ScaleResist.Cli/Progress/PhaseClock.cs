@@ -29,6 +29,9 @@ internal sealed class PhaseClock(IRunObserver view, TimeProvider time) : IRunObs
         }
     }
 
+    /// <summary>The same without memory.</summary>
+    public IReadOnlyList<PhaseTime> Times => [.. Phases.Select(phase => new PhaseTime(phase.Name, phase.Seconds))];
+
     public void Begin(string phase, double? total, string unit)
     {
         Stop();

@@ -1,6 +1,5 @@
 // run.json of a distances run, in the form of RunRecord.
 
-using System.Text.Json;
 using System.Text.Json.Nodes;
 using ScaleResist.Cli.Commands;
 using ScaleResist.Graphs;
@@ -68,5 +67,5 @@ internal sealed record DistancesRecord
         };
 
     /// <summary>The record as UTF-8 JSON.</summary>
-    public byte[] ToJson() => [.. JsonSerializer.SerializeToUtf8Bytes(this, RunRecord.Format), (byte)'\n'];
+    public byte[] ToJson() => RunRecord.ToJson(this);
 }

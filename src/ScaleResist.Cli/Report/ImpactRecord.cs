@@ -1,6 +1,5 @@
 // run.json of an impact run, in the form of RunRecord.
 
-using System.Text.Json;
 using System.Text.Json.Nodes;
 using ScaleResist.Cli.Commands;
 using ScaleResist.Graphs;
@@ -65,5 +64,5 @@ internal sealed record ImpactRecord
         };
 
     /// <summary>The record as UTF-8 JSON.</summary>
-    public byte[] ToJson() => [.. JsonSerializer.SerializeToUtf8Bytes(this, RunRecord.Format), (byte)'\n'];
+    public byte[] ToJson() => RunRecord.ToJson(this);
 }

@@ -1,5 +1,5 @@
-// Reports in headless Chromium: tests/browser/check.mjs says what it checks, tests/browser/install installs what it needs.
-// Invariant: where that is not installed the test is skipped, and says so.
+// Reports in headless Chromium: tests/browser/check.mjs says what it checks, and tests/browser/install, which the test runs where that has not been
+// done, installs what it needs.
 
 using System.Diagnostics;
 using System.Runtime.CompilerServices;
@@ -10,7 +10,7 @@ namespace ScaleResist.Tests.Report;
 
 public sealed class Reports_in_a_browser
 {
-    [BrowserFact]
+    [Fact]
     [Trait("Category", "Slow")]
     [Trait("Category", "Browser")]
     public void Reports_are_whole_readable_and_silent_on_phone_desk_and_paper()
@@ -23,28 +23,22 @@ public sealed class Reports_in_a_browser
         File.WriteAllText(place.Network, $"from,to\n<script>alert(1)</script>,{long1}\n{long1},{long2}\n{long2},<script>alert(1)</script>\n"
             + $"{long2},\"\"\"q\"\" & 'r'\"\nשלום עולם,{long2}\n");
         Command.Succeed(place.Network, place.Lake, "--run-id", "odd");
-        ProcessStartInfo info = new("node") { WorkingDirectory = BrowserFact.Folder(), RedirectStandardOutput = true, RedirectStandardError = true };
-        info.ArgumentList.Add("check.mjs");
-        foreach (string run in (string[])["sample", "probed", "pieces", "odd"])
-            info.ArgumentList.Add(Path.Combine(place.Run(run), "report.html"));
+        if (!Directory.Exists(Path.Combine(Folder(), "node_modules", "axe-core")))
+            RunIn(Folder(), "bash", "install");
+        Assert.Empty(RunIn(Folder(), "node", ["check.mjs", .. new[] { "sample", "probed", "pieces", "odd" }.Select(run => Path.Combine(place.Run(run), "report.html"))]));
+    }
+
+    private static string RunIn(string folder, string program, params string[] arguments)
+    {
+        ProcessStartInfo info = new(program, arguments) { WorkingDirectory = folder, RedirectStandardOutput = true, RedirectStandardError = true };
         using Process process = Process.Start(info)!;
         Task<string> error = process.StandardError.ReadToEndAsync();
         string output = process.StandardOutput.ReadToEnd();
         process.WaitForExit();
         Assert.True(process.ExitCode == 0, output + error.Result);
-        Assert.Empty(output);
-    }
-}
-
-/// <summary>A fact that needs the browser.</summary>
-internal sealed class BrowserFact : FactAttribute
-{
-    public BrowserFact()
-    {
-        if (!Directory.Exists(Path.Combine(Folder(), "node_modules", "axe-core")))
-            Skip = "the browser is not installed: tests/browser/install";
+        return output;
     }
 
-    public static string Folder([CallerFilePath] string here = "") =>
+    private static string Folder([CallerFilePath] string here = "") =>
         Path.GetFullPath(Path.Combine(Path.GetDirectoryName(here)!, "..", "..", "browser"));
 }
